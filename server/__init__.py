@@ -1,0 +1,3 @@
+"""Firmhead: sizes a booster pumping station for a pressure zone."""
+
+__version__ = "0.1.0"

@@ -1,0 +1,56 @@
+"""Types of the arrays, and the checks of what comes in."""
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+FloatArray = NDArray[np.float64]
+BoolArray = NDArray[np.bool_]
+StateArray = NDArray[np.int8]
+IndexArray = NDArray[np.intp]
+
+
+def finite(name: str, value: ArrayLike, unit: str) -> FloatArray:
+    """Return `value` as floats; ValueError if any of it is not a finite number."""
+    array = np.asarray(value, dtype=np.float64)
+    if not np.all(np.isfinite(array)):
+        raise ValueError(f"{name} must be a finite number; got {_first(array, ~np.isfinite(array))} {unit}")
+    return array
+
+
+def within(name: str, value: ArrayLike, low: float, high: float, unit: str) -> FloatArray:
+    """Return `value` as floats; ValueError if any of it lies outside `low` to `high`."""
+    array = finite(name, value, unit)
+    wrong = (array < low) | (array > high)
+    if np.any(wrong):
+        raise ValueError(
+            f"{name} must be between {low:g} and {high:g} {unit}; got {_first(array, wrong)} {unit}"
+        )
+    return array
+
+
+def positive(name: str, value: ArrayLike, unit: str) -> FloatArray:
+    """Return `value` as floats; ValueError if any of it is zero or less."""
+    array = finite(name, value, unit)
+    if np.any(array <= 0):
+        raise ValueError(f"{name} must be above zero; got {_first(array, array <= 0)} {unit}")
+    return array
+
+
+def not_negative(name: str, value: ArrayLike, unit: str) -> FloatArray:
+    """Return `value` as floats; ValueError if any of it is below zero."""
+    array = finite(name, value, unit)
+    if np.any(array < 0):
+        raise ValueError(f"{name} must not be below zero; got {_first(array, array < 0)} {unit}")
+    return array
+
+
+def read_only(array: FloatArray) -> FloatArray:
+    """Return a copy that cannot be written to, for the fields of frozen results."""
+    kept = np.array(array, dtype=np.float64)
+    kept.flags.writeable = False
+    return kept
+
+
+def _first(array: FloatArray, wrong: BoolArray) -> str:
+    """Write the first wrong value for a message."""
+    return f"{np.atleast_1d(array)[np.atleast_1d(wrong)][0]:g}"

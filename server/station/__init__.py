@@ -1,0 +1,1 @@
+"""The document as entered: models, paths, canonical bytes, edits. Knows units, nothing above."""

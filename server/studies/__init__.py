@@ -1,0 +1,1 @@
+"""Studies: what is computed from a document, as pure functions of it."""

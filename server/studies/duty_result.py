@@ -1,0 +1,197 @@
+"""The duty study's result: every case, every running combination, every slot.
+
+Axes: C cases, K running combinations, N slots, P named points. Arrays are read-only SI floats; a number
+without meaning is NaN and masked by `state` (never shown; null with a reason at every edge).
+"""
+
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from server.studies.shapes import Case, Stamp
+
+Floats = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class SlotFacts:
+    """What a slot is, as lowered: N entries in slot order."""
+
+    id: str
+    title: str
+    role: str
+    pump: str | None
+    curve: str | None
+    best_efficiency_flow: float | None  # [m3/s] at tested speed; None when unknown
+    best_efficiency: float | None
+    shutoff_head: float | None  # [m] at tested speed
+    last_flow: float  # [m3/s] last row
+    allowable_low: float | None  # ratio of best-efficiency flow
+    allowable_high: float | None
+    minimum_flow: float  # ratio of best-efficiency flow
+    minimum_flow_assumed: bool
+    motor_power: float | None  # [W]
+    largest_shaft_power: float | None  # [W] to the last row at top speed
+    motor_efficiency: float | None
+    drive_efficiency: float | None
+    specific_speed: float | None  # metric ns (rev/min, m3/s, m)
+    rise_to_shutoff: float | None  # ratio (shut-off head - BEP head) / BEP head
+    suction_bore: float | None  # [m]
+    discharge_bore: float | None  # [m]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class PointFacts:
+    """What a named point is: P entries in document order."""
+
+    id: str
+    title: str
+    role: str
+    elevation: float
+    required_pressure: float | None  # [Pa] gauge, as typed at the point
+    fire_pressure: float | None
+    residual_pressure: float | None
+    highest_pressure: float | None
+    highest_pressure_abnormal: float | None
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class GradeLine:
+    """Grade line at stations along the way of one (case, combination): for the strip and the memo."""
+
+    label: tuple[str, ...]
+    elevation: tuple[float | None, ...]
+    grade: tuple[float | None, ...]
+    pressure: tuple[float | None, ...]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class DutyResult:
+    """Duty of one set in all its cases. The scenario cases come first, three supply states each."""
+
+    stamp: Stamp
+    pump_set: str
+    slots: tuple[SlotFacts, ...]
+    points: tuple[PointFacts, ...]
+    held_point: str | None  # id of the point whose pressure is held, None: discharge gauge
+    set_point: float | None  # [Pa]
+    lowest_speed: float
+    highest_speed: float
+    density: float
+    cases: tuple[Case, ...]  # C
+    shown: NDArray[np.bool_]  # (C,) the scenario's own supply state
+    is_fire: NDArray[np.bool_]  # (C,) judged by the fire requirements
+    demand: Floats  # (C,) station flow asked for, fire included [m3/s]
+    fire_flow: Floats  # (C,) part of it [m3/s]
+    fire_point: NDArray[np.intp]  # (C,) index into points of the flowing hydrant, -1 none
+    combinations: NDArray[np.bool_]  # (K, N)
+    available: NDArray[np.bool_]  # (C, K) installed by the horizon, not out, allowed by role
+    chosen: NDArray[np.intp]  # (C,) index into K, -1 none
+    choice_class: NDArray[np.int8]  # (C,) 0 inside POR in all states, 1 AOR, 2 holds, 3 at limit, 4 none
+    state: NDArray[np.int8]  # (C, K) server.hydraulics.states.State
+    flow: Floats  # (C, K) [m3/s]
+    station_head: Floats  # (C, K) manifold to manifold [m]
+    required_head: Floats  # (C,) manifold to manifold, to hold the set point [m]
+    set_point_held: NDArray[np.bool_]  # (C, K)
+    held_pressure: Floats  # (C, K) at the held point or gauge [Pa]
+    speed: Floats  # (C, K, N) ratio
+    leg_flow: Floats  # (C, K, N) [m3/s]
+    best_efficiency_share: Floats  # (C, K, N) flow over best-efficiency flow at the running speed
+    efficiency: Floats  # (C, K, N) ratio
+    npsh_available: Floats  # (C, K, N) [m]
+    npsh_required: Floats  # (C, K, N) [m]
+    shaft_power: Floats  # (C, K, N) [W]
+    wire_power: Floats  # (C, K, N) [W]
+    point_pressure: Floats  # (C, K, P) gauge [Pa]
+    point_grade: Floats  # (C, K, P) [m]
+    supply_grade: Floats  # (C,) grade of the supply at the demanded flow [m]
+    connection_pressure: Floats  # (C,) gauge, at ground level at the connection [Pa]
+    suction_pressure: Floats  # (C,) at the suction gauge [Pa]
+    suction_grade: Floats  # (C,) at the suction manifold [m]
+    discharge_grade: Floats  # (C, K) at the discharge manifold [m]
+    discharge_pressure: Floats  # (C, K) at the discharge gauge [Pa]
+    zone_entry_grade: Floats  # (C, K) at the end of the main [m]
+    suction_line_velocity: Floats  # (C, R_suction) [m/s]
+    main_velocity: Floats  # (C, R_main) [m/s]
+    suction_branch_velocity: Floats  # (C, K, N) [m/s]
+    discharge_branch_velocity: Floats  # (C, K, N) [m/s]
+    pressure_per_speed: Floats  # (C, K) change of the held pressure for 1 % of speed [Pa]
+    zero_flow_speed: Floats  # (C, K) speed that holds the set point at no flow, ratio
+    flow_at_end: Floats  # (C, K) flow at which the first pump reaches its last row, top speed [m3/s]
+    energy_residual: Floats  # (C, K) [m]
+    mass_residual: Floats  # (C, K) [m3/s]
+    made: "MadeCases"
+    needs_missing: tuple[tuple[str, str], ...] = ()  # (path of the absent field, reason code)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class ZeroFlow:
+    """The set against a shut zone, per supply state (3: low, normal, high)."""
+
+    point_pressure_held: Floats  # (3, P) set point held, no flow [Pa]
+    speed_held: Floats  # (3,) of the unit that holds it, ratio
+    discharge_pressure_largest: Floats  # (3,) largest pump at top speed [Pa]
+    point_pressure_largest: Floats  # (3, P)
+    discharge_pressure_all: Floats  # (3,) all at top speed, sensor lost [Pa]
+    point_pressure_all: Floats  # (3, P)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class StationOff:
+    """No pump running: the supply alone, per scenario and supply state."""
+
+    cases: tuple[Case, ...]
+    arithmetic_pressure: Floats  # (C, P) [Pa] may be below a vacuum: never shown as a pressure then
+    drains: NDArray[np.bool_]  # (C, P) below -(p_atm - p_v): no water
+    path: str  # "bypass", or "through_pumps": none is entered, the figure is an upper bound
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class AfterTrip:
+    """One running unit lost before the standby has started: the rest at top speed, per scenario case."""
+
+    cases: tuple[Case, ...]
+    running: NDArray[np.intp]  # (C,) units left; 0 when the only one tripped
+    lost: tuple[str | None, ...]  # slot id that tripped
+    state: NDArray[np.int8]  # (C,)
+    best_efficiency_share: Floats  # (C,) largest among the units left
+    point_pressure: Floats  # (C, P)
+    flow_at_end: Floats  # (C,) [m3/s]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Handover:
+    """Flows between one number of units and the next, per supply state, on aged pipes."""
+
+    fewer: tuple[int, ...]  # combination index before
+    more: tuple[int, ...]  # combination index after
+    fewer_end: Floats  # (H, 3) flow at which the fewer leave their preferred region [m3/s]
+    more_start: Floats  # (H, 3) flow at which the more enter theirs [m3/s]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class FirmCapacity:
+    """Largest flow with each unit in turn out, low supply, aged pipes, for one requirement."""
+
+    requirement: str  # "peak_hour" or "maximum_day_fire"
+    horizon: str
+    required_flow: float  # [m3/s]
+    by_head: float  # [m3/s] limited by head, curve end
+    by_head_limit: str  # "point:<id>", "curve_end"
+    by_all: float  # [m3/s] also by suction limits
+    by_all_limit: str  # "connection", "suction_gauge", "point:<id>", "curve_end"
+    unit_out: str  # slot id
+    all_running: float  # [m3/s] no unit out, limited by head
+    runs_out: int | None  # first year in which the demand exceeds it, linear growth; None: not within horizons
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class MadeCases:
+    """The cases that are always made besides the scenarios; None where it could not be had."""
+
+    zero_flow: ZeroFlow | None = None
+    station_off: StationOff | None = None
+    after_trip: AfterTrip | None = None
+    handover: Handover | None = None
+    firm_capacity: tuple[FirmCapacity, ...] = field(default=())

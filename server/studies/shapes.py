@@ -1,0 +1,102 @@
+"""Severities, cases, findings and the stamp that stands in front of every result."""
+
+from dataclasses import dataclass
+from enum import Enum
+from typing import Literal
+
+from server.units import Dimension
+
+SupplyState = Literal["low", "normal", "high"]
+SUPPLY_STATES: tuple[SupplyState, ...] = ("low", "normal", "high")
+PipeAge = Literal["new", "aged"]
+Path = str  # a field's or item's address in the document, "/zone/points/pt-c6n2vh/elevation"
+
+
+class Severity(str, Enum):
+    """How a finding weighs, worst first."""
+
+    STOP = "stop"
+    FAIL = "fail"
+    NOT_CHECKED = "not_checked"
+    CAUTION = "caution"
+    NOTE = "note"
+
+
+SEVERITY_ORDER: tuple[Severity, ...] = tuple(Severity)
+
+
+class Verdict(str, Enum):
+    """The answer to one requirement."""
+
+    MEETS = "meets"
+    AT_LIMIT = "at_limit"
+    DOES_NOT_MEET = "does_not_meet"
+    NOT_CHECKED = "not_checked"
+    NOT_APPLICABLE = "not_applicable"
+
+
+class Region(str, Enum):
+    """Where a pump stands against its preferred operating region."""
+
+    INSIDE = "inside"
+    EDGE = "edge"
+    OUTSIDE = "outside"
+    NOT_CHECKED = "not_checked"
+
+
+@dataclass(frozen=True, slots=True)
+class Amount:
+    """An SI number that knows its dimension; `value` is None when it could not be had."""
+
+    name: str
+    value: float | None
+    dimension: Dimension
+    decimals: int | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Case:
+    """A fully determined state: ids of scenario, set and horizon, and the states chosen."""
+
+    scenario: str
+    pump_set: str
+    horizon: str
+    supply: SupplyState
+    pipes: PipeAge
+    out: str | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Finding:
+    """One thing found, in all cases in which it stands; its sentence is made at the edge."""
+
+    code: str
+    severity: Severity
+    subject: Path
+    pump_set: str | None
+    criterion: Path | None = None
+    governing: Case | None = None
+    cases: tuple[Case, ...] = ()
+    provided: Amount | None = None
+    required: Amount | None = None
+    others: tuple[Amount, ...] = ()
+    names: tuple[tuple[str, str], ...] = ()  # words the sentence needs, as ("point", "Top Row 31")
+    basis: str = "common_practice"
+    mend: tuple[Path, ...] = ()
+    because: str | None = None
+
+    @property
+    def key(self) -> tuple[str, str, str | None, str | None]:
+        """What tells this finding from every other of the station."""
+        return self.code, self.subject, self.pump_set, self.criterion
+
+
+@dataclass(frozen=True, slots=True)
+class Stamp:
+    """Which study of which document by which program a result is."""
+
+    study: str
+    study_version: int
+    program: str
+    document: str
+    inputs: str
