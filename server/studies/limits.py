@@ -1,0 +1,76 @@
+"""The limits that the studies need while they solve, as SI floats; judging is done elsewhere."""
+
+from dataclasses import dataclass
+
+from server.station.station import Station
+from server.studies.findings.criteria import criteria_of
+
+
+@dataclass(frozen=True, slots=True)
+class StudyLimits:
+    """Limits by name: pressures gauge [Pa], heads [m], ratios of 1."""
+
+    preferred_low: float
+    preferred_high: float
+    preferred_low_high_specific_speed: float
+    preferred_high_high_specific_speed: float
+    high_specific_speed: float  # metric ns
+    minimum_flow: float  # ratio of best-efficiency flow, where the maker states none
+    suction_main: float
+    suction_gauge: float
+    npsh_ratio: float
+    npsh_margin: float  # [m]
+    npsh_margin_outside: float  # [m]
+    service_pressure: float
+    fire_pressure: float
+    hydrant_residual: float
+    speed_lowest: float
+    speed_highest: float
+    highest_pressure: float
+    highest_pressure_abnormal: float
+    station_off_pressure: float
+    gap_narrow: float  # ratio of the gap's flow
+    stage_dead_band: float  # ratio of the switch-up flow
+
+    def preferred_region(self, specific_speed: float | None) -> tuple[float, float]:
+        """Return the preferred region of a pump of metric specific speed, as ratios of BEP flow."""
+        if specific_speed is not None and specific_speed > self.high_specific_speed:
+            return (
+                self.preferred_low_high_specific_speed,
+                self.preferred_high_high_specific_speed,
+            )
+        return self.preferred_low, self.preferred_high
+
+
+def limits_of(station: Station) -> StudyLimits:
+    """Return the limits of the station's criteria."""
+    criteria = criteria_of(station)
+
+    def si(key: str) -> float:
+        value = criteria[key].si
+        assert value is not None, key  # every rule named below has a number in both profiles
+        return value
+
+    return StudyLimits(
+        preferred_low=si("preferred-region-low"),
+        preferred_high=si("preferred-region-high"),
+        preferred_low_high_specific_speed=si("preferred-region-low-high-specific-speed"),
+        preferred_high_high_specific_speed=si("preferred-region-high-high-specific-speed"),
+        high_specific_speed=si("high-specific-speed"),
+        minimum_flow=si("minimum-flow"),
+        suction_main=si("suction-main-minimum"),
+        suction_gauge=si("suction-gauge-minimum"),
+        npsh_ratio=si("npsh-ratio-min"),
+        npsh_margin=si("npsh-margin-min"),
+        npsh_margin_outside=si("npsh-margin-outside-min"),
+        service_pressure=si("service-pressure-min"),
+        fire_pressure=si("fire-pressure-min"),
+        hydrant_residual=si("hydrant-residual-min"),
+        speed_lowest=si("speed-lowest"),
+        speed_highest=si("speed-highest"),
+        highest_pressure=si("service-pressure-max"),
+        highest_pressure_abnormal=si("service-pressure-max-abnormal"),
+        station_off_pressure=si("station-off-pressure-min"),
+        gap_narrow=si("gap-narrow"),
+        stage_dead_band=si("stage-dead-band"),
+    )
