@@ -1,0 +1,1 @@
+"""Figures: charts and drawings as data, and the two ways they are drawn."""
