@@ -14,6 +14,22 @@ from server.studies.shapes import Case, Stamp
 Floats = NDArray[np.float64]
 
 
+@dataclass(frozen=True, slots=True)
+class Missing:
+    """A field that is absent, or holds a kind that is not computed, and why it counts."""
+
+    path: str
+    reason: str  # code, "absent", "not_in_this_version", a refusal of the physics
+
+
+@dataclass(frozen=True, slots=True)
+class NotSolved:
+    """The answer where a set cannot be solved at all: every field that stands in the way."""
+
+    pump_set: str
+    missing: tuple[Missing, ...]
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class SlotFacts:
     """What a slot is, as lowered: N entries in slot order."""
@@ -149,7 +165,10 @@ class StationOff:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class AfterTrip:
-    """One running unit lost before the standby has started: the rest at top speed, per scenario case."""
+    """One running unit lost before the standby has started, the rest as the control drives them.
+
+    They stand at top speed wherever the set point cannot be held without the lost unit.
+    """
 
     cases: tuple[Case, ...]
     running: NDArray[np.intp]  # (C,) units left; 0 when the only one tripped
@@ -168,6 +187,8 @@ class Handover:
     more: tuple[int, ...]  # combination index after
     fewer_end: Floats  # (H, 3) flow at which the fewer leave their preferred region [m3/s]
     more_start: Floats  # (H, 3) flow at which the more enter theirs [m3/s]
+    preferred_start: Floats  # (K, 3) flow at which all units of a combination are inside theirs [m3/s]
+    preferred_end: Floats  # (K, 3) flow at which the first of them leaves it again [m3/s]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -178,12 +199,13 @@ class FirmCapacity:
     horizon: str
     required_flow: float  # [m3/s]
     by_head: float  # [m3/s] limited by head, curve end
-    by_head_limit: str  # "point:<id>", "curve_end"
-    by_all: float  # [m3/s] also by suction limits
-    by_all_limit: str  # "connection", "suction_gauge", "point:<id>", "curve_end"
+    by_head_limit: str  # "point:<id>", "curve_end", "no_unit"
+    by_all: float  # [m3/s] also by suction limits and NPSH margin
+    by_all_limit: str  # "connection", "suction_gauge", "npsh", "point:<id>", "curve_end", "no_unit"
     unit_out: str  # slot id
     all_running: float  # [m3/s] no unit out, limited by head
-    runs_out: int | None  # first year in which the demand exceeds it, linear growth; None: not within horizons
+    best_efficiency_share: float  # largest of the units left, at by_head
+    runs_out: int | None  # year in which the growing demand passes by_all, linear between horizons; None: not within them
 
 
 @dataclass(frozen=True, slots=True, eq=False)
