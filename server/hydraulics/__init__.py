@@ -1,1 +1,1 @@
-"""The physics of a booster station on SI arrays: numpy and scipy only, no document, no units, no logging."""
+"""The physics of a booster station on SI arrays: numpy and scipy only."""

@@ -13,7 +13,9 @@ def finite(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it is not a finite number."""
     array = np.asarray(value, dtype=np.float64)
     if not np.all(np.isfinite(array)):
-        raise ValueError(f"{name} must be a finite number; got {_first(array, ~np.isfinite(array))} {unit}")
+        raise ValueError(
+            f"{name} must be a finite number; got {_first(array, ~np.isfinite(array))} {unit}"
+        )
     return array
 
 
@@ -23,7 +25,8 @@ def within(name: str, value: ArrayLike, low: float, high: float, unit: str) -> F
     wrong = (array < low) | (array > high)
     if np.any(wrong):
         raise ValueError(
-            f"{name} must be between {low:g} and {high:g} {unit}; got {_first(array, wrong)} {unit}"
+            f"{name} must be between {low:g} and {high:g} {unit};"
+            f" got {_first(array, wrong)} {unit}"
         )
     return array
 
@@ -40,7 +43,9 @@ def not_negative(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it is below zero."""
     array = finite(name, value, unit)
     if np.any(array < 0):
-        raise ValueError(f"{name} must not be below zero; got {_first(array, array < 0)} {unit}")
+        raise ValueError(
+            f"{name} must not be below zero; got {_first(array, array < 0)} {unit}"
+        )
     return array
 
 

@@ -1,7 +1,7 @@
 """A line of pipe reaches in series, at one age."""
 
 from dataclasses import dataclass, replace
-from enum import Enum
+from enum import StrEnum
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -16,7 +16,7 @@ FASTEST_HAZEN_WILLIAMS_VELOCITY = 3.0  # [m/s]
 LEAST_HAZEN_WILLIAMS_COEFFICIENT = 100.0  # [-]
 
 
-class FrictionLaw(str, Enum):
+class FrictionLaw(StrEnum):
     """Law that gives the friction head of every reach of a conduit."""
 
     DARCY_WEISBACH = "darcy_weisbach"
@@ -55,11 +55,17 @@ class Conduit:
         for name in ("length", "bore", "resistance", "k", "barrels"):
             column = read_only(np.atleast_1d(finite(name, getattr(self, name), "")))
             object.__setattr__(self, name, column)
-        shapes = {getattr(self, n).shape for n in ("length", "bore", "resistance", "k", "barrels")}
+        shapes = {
+            getattr(self, n).shape for n in ("length", "bore", "resistance", "k", "barrels")
+        }
         if len(shapes) != 1 or self.length.ndim != 1:
-            raise ValueError(f"reaches must have one value each of every column; got {sorted(shapes)}")
+            raise ValueError(
+                f"reaches must have one value each of every column; got {sorted(shapes)}"
+            )
         if np.any(self.barrels < 1) or np.any(self.barrels != np.round(self.barrels)):
-            raise ValueError(f"barrels must be whole numbers of 1 or more; got {self.barrels.min():g}")
+            raise ValueError(
+                f"barrels must be whole numbers of 1 or more; got {self.barrels.min():g}"
+            )
         self.reach_head_loss(0.0, kinematic_viscosity=1.0e-6)
 
     @property
@@ -117,7 +123,7 @@ class Conduit:
         return np.asarray(lost.sum(axis=-1), dtype=np.float64)
 
     def velocities(self, flow: ArrayLike) -> FloatArray:
-        """Return the velocity in each reach, shape (..., R). [m/s]"""
+        """Return the velocity in each reach, shape (..., R) [m/s]."""
         each = np.asarray(flow, dtype=np.float64)[..., None] / self.barrels
         return np.asarray(each / (0.25 * np.pi * self.bore**2), dtype=np.float64)
 
@@ -130,7 +136,9 @@ class Conduit:
             If the reach has a single barrel: the line is then shut, not narrowed.
         """
         if self.barrels[reach] < 2:
-            raise ValueError(f"barrels of reach {reach + 1} must be 2 or more to take one out; got 1")
+            raise ValueError(
+                f"barrels of reach {reach + 1} must be 2 or more to take one out; got 1"
+            )
         fewer = np.array(self.barrels)
         fewer[reach] -= 1
         return replace(self, barrels=fewer)
@@ -140,8 +148,8 @@ class Conduit:
 
         Notes
         -----
-        Hazen-Williams: bore 50 to 1850 mm, velocity to 3 m/s, C of 100 or more; published limits
-        differ. Darcy-Weisbach with Colebrook-White has no such limit here.
+        Hazen-Williams: bore 50 to 1850 mm, velocity to 3 m/s, C of 100 or more; published
+        limits differ. Darcy-Weisbach with Colebrook-White has no such limit here.
         """
         speed = np.abs(self.velocities(flow))
         if self.law is FrictionLaw.DARCY_WEISBACH:
@@ -151,7 +159,9 @@ class Conduit:
             | (self.bore > LARGEST_HAZEN_WILLIAMS_BORE)
             | (self.resistance < LEAST_HAZEN_WILLIAMS_COEFFICIENT)
         )
-        return np.asarray(reach_wrong | (speed > FASTEST_HAZEN_WILLIAMS_VELOCITY), dtype=np.bool_)
+        return np.asarray(
+            reach_wrong | (speed > FASTEST_HAZEN_WILLIAMS_VELOCITY), dtype=np.bool_
+        )
 
 
 def conduit(
@@ -182,10 +192,13 @@ def conduit(
     >>> main = conduit(FrictionLaw.DARCY_WEISBACH, length=[820, 330], bore=[0.3, 0.246],
     ...                resistance=[6e-4, 1e-4], k=[6, 4])
     >>> float(main.head_loss(0.060, kinematic_viscosity=1.1697e-6).round(2))
-    5.42
+    4.92
     """
     columns = np.broadcast_arrays(
-        *(np.atleast_1d(np.asarray(c, dtype=np.float64)) for c in (length, bore, resistance, k, barrels))
+        *(
+            np.atleast_1d(np.asarray(c, dtype=np.float64))
+            for c in (length, bore, resistance, k, barrels)
+        )
     )
     return Conduit(
         law=law,

@@ -47,7 +47,9 @@ def velocity(flow: ArrayLike, *, bore: ArrayLike) -> FloatArray:
     1.2223
     """
     diameter = positive("bore", bore, "m")
-    return np.asarray(finite("flow", flow, "m3/s") / (0.25 * np.pi * diameter**2), dtype=np.float64)
+    return np.asarray(
+        finite("flow", flow, "m3/s") / (0.25 * np.pi * diameter**2), dtype=np.float64
+    )
 
 
 def quadratic_coefficient(k: ArrayLike, *, bore: ArrayLike) -> FloatArray:
@@ -75,7 +77,9 @@ def quadratic_coefficient(k: ArrayLike, *, bore: ArrayLike) -> FloatArray:
     .. [1] h = K V^2/(2g) with V = 4Q/(pi D^2).
     """
     area = 0.25 * np.pi * positive("bore", bore, "m") ** 2
-    return np.asarray(not_negative("k", k, "(no unit)") / (2.0 * GRAVITY * area**2), dtype=np.float64)
+    return np.asarray(
+        not_negative("k", k, "(no unit)") / (2.0 * GRAVITY * area**2), dtype=np.float64
+    )
 
 
 def minor_head_loss(flow: ArrayLike, *, bore: ArrayLike, k: ArrayLike) -> FloatArray:
@@ -233,7 +237,9 @@ def k_at_bore(k: ArrayLike, *, from_bore: ArrayLike, to_bore: ArrayLike) -> Floa
     return np.asarray(not_negative("k", k, "(no unit)") * ratio**4, dtype=np.float64)
 
 
-def equivalent_length(k: ArrayLike, *, bore: ArrayLike, friction_factor: ArrayLike) -> FloatArray:
+def equivalent_length(
+    k: ArrayLike, *, bore: ArrayLike, friction_factor: ArrayLike
+) -> FloatArray:
     """Return the length of straight pipe that loses as much as the fittings.
 
     Parameters

@@ -3,7 +3,7 @@
 import numpy as np
 from numpy.typing import ArrayLike
 
-from server.hydraulics.arrays import FloatArray, finite, positive, within
+from server.hydraulics.arrays import FloatArray, finite, not_negative, positive, within
 from server.hydraulics.water import GRAVITY
 
 LAMINAR_LIMIT = 2000.0  # Reynolds number up to which flow is taken as laminar [-]
@@ -55,9 +55,9 @@ def darcy_friction_factor(reynolds: ArrayLike, relative_roughness: ArrayLike) ->
 
     Notes
     -----
-    Laminar to Re 2000: 64/Re. From Re 4000: Colebrook-White to rounding error. Between them flow
-    is unsettled; the factor runs straight from one to the other (our choice), so that the head
-    loss is continuous and rises with flow.
+    Laminar to Re 2000: 64/Re. From Re 4000: Colebrook-White to rounding error. Between them
+    flow is unsettled; the factor runs straight from one to the other (our choice), so that the
+    head loss is continuous and rises with flow.
 
     References
     ----------
@@ -121,9 +121,9 @@ def colebrook_head_loss(
     """
     q = finite("flow", flow, "m3/s")
     diameter = positive("bore", bore, "m")
-    distance = within("length", length, 0.0, np.inf, "m")
+    distance = not_negative("length", length, "m")
     viscosity = positive("kinematic_viscosity", kinematic_viscosity, "m2/s")
-    rough = within("roughness", roughness, 0.0, np.inf, "m") / diameter
+    rough = not_negative("roughness", roughness, "m") / diameter
     within("roughness over bore", rough, 0.0, ROUGHEST, "(no unit)")
     speed = q / (0.25 * np.pi * diameter**2)
     product = _factor_times_reynolds(np.abs(speed) * diameter / viscosity, rough)
@@ -175,7 +175,7 @@ def hazen_williams_head_loss(
     """
     q = finite("flow", flow, "m3/s")
     diameter = positive("bore", bore, "m")
-    distance = within("length", length, 0.0, np.inf, "m")
+    distance = not_negative("length", length, "m")
     c = positive("coefficient", coefficient, "(no unit)")
     speed = q / (0.25 * np.pi * diameter**2)
     slope = (

@@ -40,7 +40,9 @@ class PiecewiseCubic:
         """Return where x lies between the first and the last row, ends inside."""
         at = np.asarray(x, dtype=np.float64)
         slack = ROUNDING * (self.last - self.first)
-        return np.asarray((at >= self.first - slack) & (at <= self.last + slack), dtype=np.bool_)
+        return np.asarray(
+            (at >= self.first - slack) & (at <= self.last + slack), dtype=np.bool_
+        )
 
     def __call__(self, x: ArrayLike) -> FloatArray:
         """Return the value, nan outside the rows."""

@@ -17,8 +17,8 @@ FLOW_TEST_EXPONENT = 1.0 / 0.54  # of the flow, the inverse of the Hazen-William
 class FlowTestSupply:
     """A street main known by one hydrant flow test.
 
-    The pressure falls from static with (draw / test flow) to the power 1/0.54, where the draw is
-    taken in addition to what the main carried on the day of the test.
+    The pressure falls from static with (draw / test flow) to the power 1/0.54, where the draw
+    is taken in addition to what the main carried on the day of the test.
 
     Attributes
     ----------
@@ -60,8 +60,8 @@ class FlowTestSupply:
         if self.residual_pressure >= self.static_pressure:
             raise SupplyRefused(
                 "residual_not_below_static",
-                f"residual_pressure must be below static_pressure; got {self.residual_pressure:g} Pa"
-                f" against {self.static_pressure:g} Pa",
+                "residual_pressure must be below static_pressure;"
+                f" got {self.residual_pressure:g} Pa against {self.static_pressure:g} Pa",
             )
         if self.exponent < 1:
             raise SupplyRefused(
@@ -70,12 +70,12 @@ class FlowTestSupply:
 
     @property
     def drop(self) -> float:
-        """Pressure drop of the test. [Pa]"""
+        """Pressure drop of the test [Pa]."""
         return self.static_pressure - self.residual_pressure
 
     @property
     def drop_ratio(self) -> float:
-        """Pressure drop of the test over its static pressure; inf when static is not above zero."""
+        """Pressure drop over static pressure of the test; inf when static is not above zero."""
         return self.drop / self.static_pressure if self.static_pressure > 0 else float("inf")
 
     def extrapolation_ratio(self, draw: ArrayLike) -> FloatArray:
@@ -125,11 +125,13 @@ class FlowTestSupply:
         -----
         The velocity head in the main is left out, as the test leaves it out: on the safe side.
         """
-        head = self.pressure(draw, shift_pressure=shift_pressure) / (np.asarray(density) * GRAVITY)
+        head = self.pressure(draw, shift_pressure=shift_pressure) / (
+            np.asarray(density) * GRAVITY
+        )
         return np.asarray(self.gauge_level + head, dtype=np.float64)
 
     def flow_at(self, pressure: ArrayLike, *, shift_pressure: ArrayLike = 0.0) -> FloatArray:
-        """Return the draw at which the gauge pressure falls to a value, the inverse of `pressure`.
+        """Return the draw at which the pressure falls to a value: the inverse of `pressure`.
 
         Parameters
         ----------
@@ -148,7 +150,9 @@ class FlowTestSupply:
         With a pressure of 140 kPa (20 psi) this is the available flow of NFPA 291.
         """
         shift = finite("shift_pressure", shift_pressure, "Pa")
-        relative = (self.static_pressure + shift - finite("pressure", pressure, "Pa")) / self.drop
+        relative = (
+            self.static_pressure + shift - finite("pressure", pressure, "Pa")
+        ) / self.drop
         inverse = np.sign(relative) * np.abs(relative) ** (1.0 / self.exponent)
         return np.asarray(self.test_flow * inverse, dtype=np.float64)
 
@@ -166,7 +170,7 @@ class FixedGradeSupply:
     def grade(
         self, draw: ArrayLike, *, density: ArrayLike, shift_pressure: ArrayLike = 0.0
     ) -> FloatArray:
-        """Return the grade for each draw, shifted by a pressure. [m]"""
+        """Return the grade for each draw, shifted by a pressure [m]."""
         shift = np.asarray(shift_pressure, dtype=np.float64) / (np.asarray(density) * GRAVITY)
         flow = finite("draw", draw, "m3/s")
         return np.asarray(self.grade_level + shift + np.zeros_like(flow), dtype=np.float64)
@@ -192,13 +196,13 @@ class TankSupply:
 
     @property
     def depth_over_outlet(self) -> float:
-        """Water over the outlet. [m]"""
+        """Water over the outlet [m]."""
         return self.water_level - self.outlet_level
 
     def grade(
         self, draw: ArrayLike, *, density: ArrayLike, shift_pressure: ArrayLike = 0.0
     ) -> FloatArray:
-        """Return the water level for each draw; a pressure shift is added as head. [m]"""
+        """Return the water level for each draw; a pressure shift is added as head [m]."""
         fixed = FixedGradeSupply(grade_level=self.water_level)
         return fixed.grade(draw, density=density, shift_pressure=shift_pressure)
 
@@ -223,8 +227,8 @@ def compare_flow_tests(
     basis : FlowTestSupply
         The test that the design rests on.
     others : sequence of FlowTestSupply, length T
-        Other tests of the same hydrants; each is shifted to the static pressure of the basis, so
-        that only the fall with flow is compared.
+        Other tests of the same hydrants; each is shifted to the static pressure of the basis,
+        so that only the fall with flow is compared.
 
     Returns
     -------
@@ -258,8 +262,8 @@ def fit_flow_tests(tests: Sequence[FlowTestSupply]) -> FlowTestFit:
     Parameters
     ----------
     tests : sequence of FlowTestSupply, length T of 1 or more
-        Tests of one main. Gauge level and static pressure of the fit are those of the first: the
-        statics differ by the hour and belong to the supply state, not to the fit.
+        Tests of one main. Gauge level and static pressure of the fit are those of the first:
+        the statics differ by the hour and belong to the supply state, not to the fit.
 
     Returns
     -------

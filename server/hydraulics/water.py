@@ -12,7 +12,8 @@ HIGHEST_TEMPERATURE = 60.0  # [degC]
 LOWEST_ALTITUDE = -400.0  # [m]
 HIGHEST_ALTITUDE = 5000.0  # [m]
 
-# IAPWS SR6-08(2011): reducing temperature [K], gas constant [J/(kg K)], reference pressure [Pa].
+# IAPWS SR6-08(2011): reducing temperature [K], gas constant [J/(kg K)], reference pressure
+# [Pa].
 _REDUCING_TEMPERATURE = 10.0
 _GAS_CONSTANT = 461.51805
 _REFERENCE_PRESSURE = 1.0e5
@@ -26,11 +27,11 @@ _VOLUME_ALPHA = (
 )
 _VOLUME_BETA = (
     (1, 5.78545292e-3),
-    (4, -1.53195665e-2),
-    (5, 3.11337859e-2),
-    (7, -4.23546241e-2),
-    (8, 3.38713507e-2),
-    (9, -1.19946761e-2),
+    (2, -1.53195665e-2),
+    (3, 3.11337859e-2),
+    (4, -4.23546241e-2),
+    (5, 3.38713507e-2),
+    (6, -1.19946761e-2),
 )
 _VISCOSITY = ((280.68, -1.9), (511.45, -7.7), (61.131, -19.6), (0.45903, -40.0))
 
@@ -204,7 +205,9 @@ def vapour_pressure(temperature: ArrayLike) -> FloatArray:
     a = theta**2 + n1 * theta + n2
     b = n3 * theta**2 + n4 * theta + n5
     c = n6 * theta**2 + n7 * theta + n8
-    return np.asarray((2.0 * c / (-b + np.sqrt(b**2 - 4.0 * a * c))) ** 4 * 1e6, dtype=np.float64)
+    return np.asarray(
+        (2.0 * c / (-b + np.sqrt(b**2 - 4.0 * a * c))) ** 4 * 1e6, dtype=np.float64
+    )
 
 
 def atmospheric_pressure(altitude: ArrayLike) -> FloatArray:
