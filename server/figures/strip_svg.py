@@ -1,6 +1,6 @@
 """Draw the grade-line strip as SVG."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from html import escape
 from itertools import pairwise
 
@@ -125,13 +125,14 @@ def _lift_x(stops: tuple[StripStop, ...], columns: list[float]) -> float:
 
 
 def _lift(
-    strip: GradeStrip, columns: list[float], y: "object", view: View, palette: Mapping[str, str]
-) -> str:
-    before = [s for s in strip.stops if not s.after_pumps and s.grade is not None]
-    after = [s for s in strip.stops if s.after_pumps and s.grade is not None]
-    if not before or not after or strip.lift is None or not callable(y):
+    strip: GradeStrip, columns: list[float], y: Callable[[float], float], view: View,
+    palette: Mapping[str, str],
+) -> str:  # fmt: skip
+    before = [s.grade for s in strip.stops if not s.after_pumps and s.grade is not None]
+    after = [s.grade for s in strip.stops if s.after_pumps and s.grade is not None]
+    if not before or not after or strip.lift is None:
         return ""
-    x, low, high = _lift_x(strip.stops, columns), y(before[-1].grade), y(after[0].grade)
+    x, low, high = _lift_x(strip.stops, columns), y(before[-1]), y(after[0])
     middle = (low + high) / 2
     running = f"{len(strip.running)} running" if len(strip.running) > 1 else " ".join(strip.running)
     speed = shown_with_unit(strip.speed, Dimension.RATIO, view)
