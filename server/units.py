@@ -7,6 +7,7 @@ the physics uses, `from_si` brings a result to the unit a person reads.
 from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
+from math import isfinite
 from typing import Literal
 
 View = Literal["si", "us"]
@@ -48,12 +49,17 @@ class Unit:
 
     def to_si(self, value: float) -> float:
         """Return `value` of this unit in SI."""
-        # float arithmetic of one product and one sum: the rounding stays under one part in 1e15
-        return value * float(self.factor) + float(self.offset)
+        if self.offset and isfinite(value):
+            # exact: 140 degF is 60 degC, the end of a range, and not a rounding error above it
+            return float(Fraction(value) * self.factor + self.offset)
+        # one product of floats: the rounding stays under one part in 1e15
+        return value * float(self.factor)
 
     def from_si(self, value: float) -> float:
         """Return the SI `value` in this unit."""
-        return (value - float(self.offset)) / float(self.factor)
+        if self.offset and isfinite(value):
+            return float((Fraction(value) - self.offset) / self.factor)
+        return value / float(self.factor)
 
 
 FOOT = Fraction(3048, 10000)
