@@ -43,8 +43,12 @@ class CriteriaRow(Record):
     """A criterion whose limit differs from its profile; its id is the rule's key."""
 
     id: str
-    limit: Quantity | None = None
-    source: Source | None = None
+    limit: Annotated[
+        Quantity | None, Entry("Limit", "criteria", "The profile's if left empty.")
+    ] = None
+    source: Annotated[
+        Source | None, Entry("Source of the limit", "criteria", "Code, standard or office rule.")
+    ] = None
     reason: Annotated[
         str, Entry("Reason for the departure", "criteria", "Printed in the memo.", long=True)
     ] = ""
@@ -65,7 +69,7 @@ class Answer(Record):
     """The engineer's answer to a finding; it never hides the finding."""
 
     id: str
-    finding: str
+    finding: Annotated[str, Entry("Finding answered", "summary")]
     text: Annotated[str, Entry("Answer", "summary", "", long=True)] = ""
 
 
@@ -73,7 +77,7 @@ class MemoNote(Record):
     """A paragraph of the engineer's in a section of the memo."""
 
     id: str
-    section: str
+    section: Annotated[str, Entry("Section of the memo", "memo")]
     text: Annotated[str, Entry("Note", "memo", "", long=True)] = ""
 
 

@@ -20,6 +20,21 @@ class LossAtFlow(Record):
     ] = None  # fmt: skip
 
 
+class BranchLoss(Record):
+    """Head loss of a hydrant's own branch, known at one flow of the hydrant."""
+
+    loss: Annotated[
+        Quantity | None,
+        Entry("Branch loss", "main-and-zone", "From the zone pipe to the hydrant outlet; none if left empty.",
+              D.HEAD, 0, 300),
+    ] = None  # fmt: skip
+    at_flow: Annotated[
+        Quantity | None,
+        Entry("At hydrant flow", "main-and-zone", "The hydrant's flow at which that loss holds.", D.FLOW, 0, 10,
+              above=True),
+    ] = None  # fmt: skip
+
+
 class Point(Record):
     """A named point of the zone with what it requires."""
 
@@ -66,7 +81,7 @@ class Point(Record):
         Entry("Share of the fire flow on this path", "main-and-zone",
               "0 to 1; taken as 1 if left empty, which is on the safe side.", D.NUMBER, 0, 1),
     ] = None  # fmt: skip
-    branch: Annotated[LossAtFlow, Part("Hydrant branch", "main-and-zone")] = LossAtFlow()
+    branch: Annotated[BranchLoss, Part("Hydrant branch", "main-and-zone")] = BranchLoss()
 
 
 class ZoneTank(Record):
