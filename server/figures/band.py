@@ -1,12 +1,11 @@
 """The band mark: where a pump stands on a short axis from 0 to 150 % of best-efficiency flow."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
-from server.studies.duty_result import DutyResult
-from server.studies.findings.judge import region_of
-from server.studies.limits import StudyLimits
+from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Region
 from server.units import Dimension, shown
 
@@ -39,7 +38,7 @@ class BandMark:
 def band_mark(
     share: float | None,
     preferred: tuple[float, float] | None,
-    limits: StudyLimits,
+    region: Region,
     slot: str | None = None,
 ) -> BandMark:
     """Return the mark of a pump.
@@ -50,12 +49,11 @@ def band_mark(
         Flow over best-efficiency flow at the running speed; None or nan when it is not known. [-]
     preferred : (float, float) or None
         Ends of its preferred region. [-]
-    limits : StudyLimits
-        Gives the width of the edge.
+    region : Region
+        Where the share stands, as judged.
     slot : str or None
         Title of the pump's slot.
     """
-    region = region_of(share, preferred, limits)
     word = REGION_WORDS[region]
     if share is None or not np.isfinite(share):
         return BandMark(None, None, None, False, "unknown", word, word, "–", region, None, slot)
@@ -67,32 +65,34 @@ def band_mark(
     )  # fmt: skip
 
 
-def slot_mark(
-    result: DutyResult, case: int, combination: int, slot: int, limits: StudyLimits
-) -> BandMark:
+def slot_mark(judged: JudgedSet, case: int, combination: int, slot: int) -> BandMark:
     """Return the mark of one running slot of a case."""
-    facts = result.slots[slot]
-    share = float(result.best_efficiency_share[case, combination, slot])
-    known = facts.best_efficiency_flow is not None
-    preferred = limits.preferred_region(facts.specific_speed) if known else None
-    return band_mark(share if known else None, preferred, limits, facts.title or facts.id)
-
-
-def worst_mark(
-    result: DutyResult, case: int, combination: int, limits: StudyLimits
-) -> BandMark | None:
-    """Return the mark of the running pump that stands farthest from its region; None if none runs."""
-    marks = [
-        slot_mark(result, case, combination, int(n), limits)
-        for n in np.flatnonzero(result.combinations[combination])
-    ]
-    if not marks:
-        return None
-    order = [Region.OUTSIDE, Region.NOT_CHECKED, Region.EDGE, Region.INSIDE]
-    middle = (limits.preferred_low + limits.preferred_high) / 2
-    return min(
-        marks, key=lambda m: (order.index(m.region), -abs((middle if m.share is None else m.share) - middle))
+    share = float(judged.result.best_efficiency_share[case, combination, slot])
+    known = judged.result.slots[slot].best_efficiency_flow is not None and np.isfinite(share)
+    return band_mark(
+        share if known else None,
+        judged.preferred(slot) if known else None,
+        judged.region(slot, share) if known else Region.NOT_CHECKED,
+        judged.slot_title(slot),
     )
+
+
+def worst_mark(judged: JudgedSet, case: int, combination: int) -> BandMark | None:
+    """Return the mark of the running pump that stands farthest from its region; None if none runs."""
+    marks = [slot_mark(judged, case, combination, n) for n in judged.running(case, combination)]
+    return farthest(marks)
+
+
+def farthest(marks: Sequence[BandMark]) -> BandMark | None:
+    """Return the mark that says most: outside before not checked, edge and inside."""
+    order = (Region.OUTSIDE, Region.NOT_CHECKED, Region.EDGE, Region.INSIDE)
+
+    def key(mark: BandMark) -> tuple[int, float]:
+        if mark.dot is None or mark.low is None or mark.high is None:
+            return order.index(mark.region), 0.0
+        return order.index(mark.region), -abs(mark.dot - (mark.low + mark.high) / 2)
+
+    return min(marks, key=key, default=None)
 
 
 def _percent(share: float, preferred: tuple[float, float] | None) -> str:
