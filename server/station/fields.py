@@ -120,7 +120,7 @@ def _build(model: type[Record], pattern: str, group_title: str) -> dict[str, Nod
             info.get_default(), entry, part, group_title=group_title,
         )  # fmt: skip
         if kind == "list":
-            assert part is not None  # noqa: S101
+            assert part is not None
             of = typing.get_args(inner)[0]
             node.item = Node(
                 "*", f"{here}/*", "group", node.sheet, part.item, of, None, part=part, model=of

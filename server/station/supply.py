@@ -70,7 +70,7 @@ class FlowTest(Record):
     title: Annotated[str, Entry("Place of the test", "supply")] = ""
     made_at: Annotated[
         str | None,
-        Entry("Made on", "supply", "Date and hour, as 2025-05-14 07:30; a test is one moment."),
+        Entry("Date and hour", "supply", "As 2025-05-14 07:30; a test is one moment."),
     ] = None
     gauge_level: Annotated[
         Quantity | None,
