@@ -2,6 +2,7 @@
 
 import numpy as np
 
+from server.hydraulics.states import State
 from server.studies.assess import Assessment
 from server.studies.duty_result import DutyResult
 from server.studies.findings.criteria import criteria_of
@@ -91,6 +92,23 @@ def running_words(judged: JudgedSet, case: int) -> str:
     if len(slots) > SHORT_SET:
         return f"{len(slots)} running"
     return " + ".join(judged.slot_title(n) for n in slots)
+
+
+def no_duty_words(judged: JudgedSet, case: int) -> str:
+    """Return why a case has no duty, as a sentence."""
+    result = judged.result
+    chosen = int(result.chosen[case])
+    usable = [chosen] if chosen >= 0 else [int(k) for k in np.flatnonzero(result.available[case])]
+    states = {State(int(result.state[case, k])) for k in usable}
+    if not usable:
+        return "No pump is available in this state."
+    if State.END_OF_CURVE in states:
+        return "Past the end of a pump's curve: no duty is stated."
+    if State.BELOW_STATIC in states:
+        return "No pump reaches the head that is asked at no flow: nothing flows."
+    if State.HELD_SHUT in states:
+        return "A pump is held shut by the others: no duty is stated."
+    return "No duty could be found in this state."
 
 
 def combination_words(judged: JudgedSet, combination: int) -> str:

@@ -39,9 +39,11 @@ MARK_ROLES = {
 
 def head_panel(curves: DutyCurves) -> Panel:
     """Return the panel of the head."""
-    tops = [float(np.max(s.head)) for s in curves.sets if s.head.size]
+    top = max((float(np.max(s.head)) for s in curves.sets if s.head.size), default=1.0)
     asked = [float(np.nanmax(r)) for r in (curves.required_low, curves.required_high) if np.any(np.isfinite(r))]
-    return Panel("head", Axis("Head, manifold to manifold", D.HEAD, 0.0, 1.06 * max([*tops, *asked[:0], 1.0])))
+    # a head far above every pump is cut off: the pumps must stay readable
+    high = min(max([top, *asked]), 1.3 * top)
+    return Panel("head", Axis("Head, manifold to manifold", D.HEAD, 0.0, 1.06 * high))
 
 
 def flow_axis(curves: DutyCurves, judged: JudgedSet) -> Axis:
