@@ -9,13 +9,14 @@ from typing import Any
 import pytest
 
 DATA = Path(__file__).parent / "data"
-HEADINGS = ("citation", "place", "printed", "provenance", "tolerance")
+HEADINGS = ("checks", "citation", "place", "printed", "provenance", "tolerance")
 
 
 @dataclass(frozen=True)
 class Row:
     """One row of a data file: cells by column name, read as text or as a number."""
 
+    topic: str
     cells: dict[str, str]
 
     @property
@@ -56,7 +57,9 @@ def source(name: str) -> Source:
         key, _, value = line[2:].partition(": ")
         heading[key] = value
     table = csv.DictReader(lines[len(heading) :])
-    return Source(name=name, heading=heading, rows=tuple(Row(cells) for cells in table))
+    return Source(
+        name=name, heading=heading, rows=tuple(Row(heading["checks"], cells) for cells in table)
+    )
 
 
 def checks(name: str, **where: str) -> list[Any]:
