@@ -95,6 +95,7 @@ class DutyResult:
     lowest_speed: float
     highest_speed: float
     density: float
+    lowest_pressure: float | None  # [Pa] gauge, -(p_atm - p_v): below it no water; None without an altitude
     cases: tuple[Case, ...]  # C
     shown: NDArray[np.bool_]  # (C,) the scenario's own supply state
     is_fire: NDArray[np.bool_]  # (C,) judged by the fire requirements
@@ -196,6 +197,7 @@ class FirmCapacity:
     """Largest flow with each unit in turn out, low supply, aged pipes, for one requirement."""
 
     requirement: str  # "peak_hour" or "maximum_day_fire"
+    fire: str | None  # id of the fire that the second is for
     horizon: str
     required_flow: float  # [m3/s]
     by_head: float  # [m3/s] limited by head, curve end

@@ -1,0 +1,171 @@
+"""The duty of one set in all its cases: what runs, at which speed, flow, pressure and power."""
+
+import numpy as np
+
+from server import __version__
+from server.hydraulics.leg_curve import LegCurve
+from server.hydraulics.states import State
+from server.station.station import Station
+from server.studies.cases import Cases, cases_of
+from server.studies.choice import choose
+from server.studies.combinations import Mask, as_flags, combinations_of
+from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.limits import StudyLimits
+from server.studies.lowering import lower
+from server.studies.lowering.lowered import Flags, LoweredSet
+from server.studies.made_cases import made_cases
+from server.studies.set_ends import flow_at_end, zero_flow_speed
+from server.studies.set_states import SetStates, legs_of, solve_states
+from server.studies.shapes import Stamp
+from server.studies.system_heads import SystemHeads, point_pressures, system_heads
+
+NAME, VERSION = "duty", 1
+
+
+def duty(
+    station: Station, pump_set_id: str, limits: StudyLimits, *, document_hash: str = ""
+) -> DutyResult | NotSolved:
+    """Return the duty of a set, or what stands in its way.
+
+    Parameters
+    ----------
+    station : Station
+        The document.
+    pump_set_id : str
+        Id of one of its sets.
+    limits : StudyLimits
+        Limits by the station's criteria.
+    document_hash : str
+        Of the document's canonical bytes, for the stamp.
+
+    Raises
+    ------
+    KeyError
+        If the station has no such set.
+    """
+    lowered = lower(station, pump_set_id, limits)
+    if isinstance(lowered, NotSolved):
+        return lowered
+    stamp = Stamp(study=NAME, study_version=VERSION, program=__version__, document=document_hash,
+                  inputs="")  # fmt: skip
+    return duty_of(lowered, limits, stamp)
+
+
+def duty_of(of: LoweredSet, limits: StudyLimits, stamp: Stamp) -> DutyResult:
+    """Return the duty of a lowered set: every scenario, supply state and combination in one pass."""
+    cases = cases_of(of)
+    heads = system_heads(of, cases.draw)
+    masks, available = combinations_of(of.slots, cases.running, cases.jockeys)
+    combinations = as_flags(masks, len(of.slots))
+    legs = legs_of(of)
+    states = _only_available(
+        solve_states(of, legs, combinations, cases.draw.flow, heads.required_head), available
+    )
+    return _result(of, limits, stamp, cases, heads, masks, available, combinations, legs, states)
+
+
+def _only_available(states: SetStates, available: Flags) -> SetStates:
+    """Blank the combinations that a case does not allow."""
+    allowed = np.where(available, 1.0, np.nan)
+    return SetStates(
+        state=np.where(available, states.state, np.int8(State.NOT_AVAILABLE)),
+        station_head=states.station_head * allowed,
+        head_per_per_cent=states.head_per_per_cent * allowed,
+        energy_residual=states.energy_residual * allowed,
+        mass_residual=states.mass_residual * allowed,
+        slot={name: values * allowed[..., None] for name, values in states.slot.items()},
+    )
+
+
+def _result(
+    of: LoweredSet, limits: StudyLimits, stamp: Stamp, cases: Cases, heads: SystemHeads,
+    masks: tuple[Mask, ...], available: Flags, combinations: Flags, legs: tuple[LegCurve, ...],
+    states: SetStates,
+) -> DutyResult:  # fmt: skip
+    """Put the result together: pressures follow from grades, the choice from all of it."""
+    water, levels = of.water, of.control
+    flow = cases.draw.flow
+    discharge = heads.suction_grade[:, None] + states.station_head
+    entry = discharge - heads.main_loss[:, None]
+    grade, pressure = point_pressures(of, entry, heads.zone_loss[:, None, :])
+    discharge_pressure = water.weight * (discharge - levels.discharge_gauge_level)
+    held = discharge_pressure if levels.point < 0 else pressure[..., levels.point]
+    end = flow_at_end(of, legs, masks)
+    slot = states.slot
+    chosen, choice_class = choose(
+        of.slots, available=available, known=np.isfinite(heads.required_head), state=states.state,
+        share=slot["best_efficiency_share"], combinations=combinations, held_pressure=held,
+        set_point=levels.pressure, flow_at_end=end,
+    )  # fmt: skip
+    shape = states.state.shape
+    vapour = (water.atmosphere - water.vapour_pressure) / water.weight
+    available_head = vapour + heads.suction_grade[:, None, None] - slot["suction_loss"] - of.eye_level
+    running = np.isfinite(slot["npsh_required"]) | np.isfinite(slot["best_efficiency_share"])
+    result = DutyResult(
+        stamp=stamp,
+        pump_set=of.pump_set,
+        slots=tuple(one.facts for one in of.slots),
+        points=of.points.facts,
+        held_point=None if levels.point < 0 else of.points.facts[levels.point].id,
+        set_point=levels.pressure,
+        lowest_speed=levels.lowest_speed,
+        highest_speed=levels.highest_speed,
+        density=water.density,
+        lowest_pressure=None if np.isnan(water.lowest_pressure) else water.lowest_pressure,
+        cases=cases.cases,
+        shown=cases.shown,
+        is_fire=cases.is_fire,
+        demand=flow,
+        fire_flow=cases.draw.fire,
+        fire_point=np.asarray(cases.draw.fire_point, dtype=np.intp),
+        combinations=combinations,
+        available=available,
+        chosen=chosen,
+        choice_class=choice_class,
+        state=states.state,
+        flow=np.where(np.isfinite(states.station_head), flow[:, None], np.nan),
+        station_head=states.station_head,
+        required_head=heads.required_head,
+        set_point_held=states.state == State.SOLVED,
+        held_pressure=held,
+        speed=slot["speed"],
+        leg_flow=slot["leg_flow"],
+        best_efficiency_share=slot["best_efficiency_share"],
+        efficiency=slot["efficiency"],
+        npsh_available=np.where(running, available_head, np.nan),
+        npsh_required=slot["npsh_required"],
+        shaft_power=slot["shaft_power"],
+        wire_power=slot["wire_power"],
+        point_pressure=pressure,
+        point_grade=grade,
+        supply_grade=heads.supply_grade,
+        connection_pressure=water.weight * (heads.supply_grade - of.supply.connection_level),
+        suction_pressure=water.weight * (heads.suction_grade - of.supply.suction_gauge_level),
+        suction_grade=heads.suction_grade,
+        discharge_grade=discharge,
+        discharge_pressure=discharge_pressure,
+        zone_entry_grade=entry,
+        suction_line_velocity=of.suction_line.velocities(flow),
+        main_velocity=of.main.velocities(flow),
+        suction_branch_velocity=slot["suction_velocity"],
+        discharge_branch_velocity=slot["discharge_velocity"],
+        pressure_per_speed=water.weight * states.head_per_per_cent,
+        zero_flow_speed=zero_flow_speed(of, legs, masks, cases.draw),
+        flow_at_end=np.broadcast_to(end, shape),
+        energy_residual=states.energy_residual,
+        mass_residual=states.mass_residual,
+        made=made_cases(of, limits, cases, heads, legs, masks, states, pressure, chosen, end),
+        needs_missing=of.needs_missing,
+    )
+    _lock(result)
+    return result
+
+
+def _lock(result: DutyResult) -> None:
+    """Make the arrays of a result read-only: it is shared by every reader."""
+    for name in DutyResult.__dataclass_fields__:
+        value = getattr(result, name)
+        if isinstance(value, np.ndarray):
+            value.flags.writeable = False
+
+

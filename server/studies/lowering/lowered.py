@@ -1,0 +1,212 @@
+"""The station as the studies see it: SI floats, arrays and hydraulics objects, no document."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from server.hydraulics.conduit import Conduit
+from server.hydraulics.pump_curve import PumpCurve
+from server.hydraulics.supply import FixedGradeSupply, FlowTestSupply
+from server.hydraulics.water import GRAVITY
+from server.studies.duty_result import PointFacts, SlotFacts
+from server.studies.shapes import PipeAge, SupplyState
+
+Floats = NDArray[np.float64]
+Flags = NDArray[np.bool_]
+Indices = NDArray[np.intp]
+ZONE_EXPONENT = 1.852  # of the flow in zone losses [-]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Water:
+    """Density and viscosity for friction, vapour pressure at the highest temperature."""
+
+    density: float  # [kg/m3]
+    kinematic_viscosity: float  # [m2/s]
+    vapour_pressure: float  # absolute [Pa]
+    atmosphere: float  # absolute, weather allowance taken off; nan without an altitude [Pa]
+
+    @property
+    def weight(self) -> float:
+        """Pressure of a metre of water [Pa/m]."""
+        return self.density * GRAVITY
+
+    @property
+    def lowest_pressure(self) -> float:
+        """Gauge pressure below which there is no water, nan without an altitude [Pa]."""
+        return self.vapour_pressure - self.atmosphere
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Supply:
+    """The supply with its three states as shifts of one curve; nan for a state not stated."""
+
+    source: FlowTestSupply | FixedGradeSupply
+    draw_in_test: float  # of the station itself on the test day [m3/s]
+    shift: Floats  # (3,) low, normal, high [Pa]
+    water: Water
+    connection_level: float  # nan when absent [m]
+    suction_gauge_level: float  # nan when absent [m]
+
+    def grade(self, draw: ArrayLike, shift: ArrayLike) -> Floats:
+        """Return the grade at the connection for a draw and a state's shift, nan without one."""
+        moved = np.asarray(shift, dtype=np.float64)
+        known = np.isfinite(moved)
+        grade = self.source.grade(
+            np.asarray(draw) - self.draw_in_test,
+            density=self.water.density,
+            shift_pressure=np.where(known, moved, 0.0),
+        )
+        return np.where(known, grade, np.nan)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Line:
+    """Reaches in series at both ages; neighbours of one friction law lie in one conduit."""
+
+    new: tuple[Conduit, ...]  # empty when that age is not known
+    aged: tuple[Conduit, ...]
+
+    def head_loss(self, flow: ArrayLike, aged: ArrayLike, viscosity: float) -> Floats:
+        """Return the head lost from end to end at the age that each flow asks for."""
+        old = np.asarray(aged, dtype=np.bool_)
+        at = np.asarray(flow, dtype=np.float64)
+        if not self.new or bool(old.all()):
+            return _lost(self.aged, at, viscosity)
+        if not self.aged or not bool(old.any()):
+            return _lost(self.new, at, viscosity)
+        return np.where(old, _lost(self.aged, at, viscosity), _lost(self.new, at, viscosity))
+
+    def velocities(self, flow: ArrayLike) -> Floats:
+        """Return the velocity in each reach, shape (..., R)."""
+        return np.concatenate([c.velocities(flow) for c in self.aged or self.new], axis=-1)
+
+    def knows(self, age: PipeAge) -> bool:
+        """Return whether every reach has a wall at that age."""
+        return bool(self.aged if age == "aged" else self.new)
+
+
+def _lost(conduits: tuple[Conduit, ...], flow: Floats, viscosity: float) -> Floats:
+    total = np.zeros(flow.shape)
+    for conduit in conduits:
+        total = total + conduit.head_loss(flow, kinematic_viscosity=viscosity)
+    return total
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class ZonePoints:
+    """The named points, P of them; nan where a figure is absent."""
+
+    facts: tuple[PointFacts, ...]
+    elevation: Floats  # (P,) [m]
+    coefficient: Floats  # (P,) c in h = c (Q_domestic + a Q_fire)^1.852
+    fire_share: Floats  # (P,) a
+    branch_coefficient: Floats  # (P,) of the hydrant's own branch, 0 where there is none
+
+    def loss(self, domestic: ArrayLike, fire: ArrayLike, fire_point: ArrayLike) -> Floats:
+        """Return the loss from the end of the main to each point, shape (..., P)."""
+        burning = np.asarray(fire, dtype=np.float64)[..., None]
+        carried = np.asarray(domestic, dtype=np.float64)[..., None] + self.fire_share * burning
+        flowing = np.asarray(fire_point)[..., None] == np.arange(len(self.facts))
+        branch = np.where(flowing, self.branch_coefficient * burning**ZONE_EXPONENT, 0.0)
+        return self.coefficient * np.maximum(carried, 0.0) ** ZONE_EXPONENT + branch
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Unit:
+    """A pump in its leg; slots with the same pump, curve and leg share one."""
+
+    curve: PumpCurve
+    suction_coefficient: float  # c in h = c q^2 [m/(m3/s)2]
+    discharge_coefficient: float  # check valve included
+    suction_bore: float  # [m]
+    discharge_bore: float  # [m]
+    cracking_head: float  # of the check valve [m]
+    full_open_velocity: float  # of the check valve [m/s]
+    full_open_assumed: bool
+    npsh_exponent: float
+    motor_efficiency: float  # nan when absent
+    drive_efficiency: float
+
+    @property
+    def leg_coefficient(self) -> float:
+        """Loss of the whole leg over flow squared [m/(m3/s)2]."""
+        return self.suction_coefficient + self.discharge_coefficient
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Slot:
+    """A place in the set."""
+
+    facts: SlotFacts
+    unit: int  # index into units
+    from_year: int  # order of the horizon from which it is installed, 0 the first
+    preferred: tuple[float, float]  # ratios of best-efficiency flow
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Control:
+    """What is held: a pressure at a point of the zone, or at the discharge gauge."""
+
+    point: int  # index into points, -1: the discharge gauge
+    pressure: float  # [Pa]
+    discharge_gauge_level: float  # nan when absent [m]
+    lowest_speed: float
+    highest_speed: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scenario:
+    """A scenario with its flows."""
+
+    id: str
+    horizon: str
+    horizon_order: int
+    domestic: float  # [m3/s]
+    fire: float  # [m3/s]
+    fire_point: int  # -1 none
+    is_fire: bool
+    shown: SupplyState
+    pipes: PipeAge
+    largest_out: bool
+    low_shift: float  # of the supply's low state in that year [Pa]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Growth:
+    """The demand of one horizon, for firm capacity; None where not entered."""
+
+    id: str
+    order: int
+    year: int | None
+    peak_hour: float | None
+    fires: tuple[tuple[str, float, float, int], ...]  # (fire id, domestic beside, fire flow, point)
+    low_shift: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Bypass:
+    """A line round the pumps; its loss over flow squared."""
+
+    coefficient: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class LoweredSet:
+    """Everything the duty of one set needs."""
+
+    pump_set: str
+    water: Water
+    supply: Supply
+    suction_line: Line
+    main: Line
+    points: ZonePoints
+    units: tuple[Unit, ...]
+    slots: tuple[Slot, ...]
+    control: Control
+    eye_level: float  # nan when absent [m]
+    scenarios: tuple[Scenario, ...]
+    growth: tuple[Growth, ...]
+    bypass: Bypass | None
+    needs_missing: tuple[tuple[str, str], ...]

@@ -1,0 +1,244 @@
+"""Slots, their pumps and legs, and the control of a set from the document."""
+
+import math
+
+import numpy as np
+
+from server.hydraulics.errors import CurveRefused
+from server.hydraulics.pump_curve import PumpCurve, pump_curve
+from server.station.conduit import Leg
+from server.station.entry import Quantity
+from server.station.pump import Curve, Pump
+from server.station.pump_set import PumpSet
+from server.station.pump_set import Slot as EnteredSlot
+from server.station.station import Station
+from server.studies.duty_result import PointFacts, SlotFacts
+from server.studies.limits import StudyLimits
+from server.studies.lowering.lowered import Control, Slot, Unit
+from server.studies.lowering.needs import NAN, NOT_IN_THIS_VERSION, Needs, si_or_none
+from server.studies.lowering.pipes import branches
+from server.units import to_si
+
+DRIVE_EFFICIENCY = 0.97  # default where none is entered, criteria.md [-]
+NPSH_EXPONENT = 2.0
+HELD_KINDS = ("zone_point_pressure", "discharge_pressure")
+COLUMNS = ("flow", "head", "efficiency", "shaft_power", "npsh_required")
+POWER_READINGS = 241  # readings of a curve for its largest power
+
+
+def units_and_slots(
+    station: Station, pump_set: PumpSet, limits: StudyLimits, highest_speed: float, density: float,
+    needs: Needs,
+) -> tuple[tuple[Unit, ...], tuple[Slot, ...]]:  # fmt: skip
+    """Return the units that stand in the set and its slots, in slot order."""
+    base = f"/sets/{pump_set.id}/slots"
+    if not pump_set.slots:
+        needs.stop(base)
+    pumps = {pump.id: pump for pump in station.pumps}
+    legs = {leg.id: leg for leg in station.legs}
+    order = {horizon.id: i for i, horizon in enumerate(station.horizons)}
+    units: list[Unit] = []
+    index: dict[tuple[str, str, str], int] = {}
+    slots = []
+    for slot in pump_set.slots:
+        path = f"{base}/{slot.id}"
+        pump, leg = pumps.get(slot.pump or ""), legs.get(slot.leg or "")
+        if pump is None:
+            needs.stop(f"{path}/pump")
+        if leg is None:
+            needs.stop(f"{path}/leg")
+        if slot.drive == "fixed":
+            needs.stop(f"{path}/drive", NOT_IN_THIS_VERSION)
+        if pump is None or leg is None:
+            continue
+        curve = _curve_of(pump, slot, path, needs)
+        if curve is None:
+            continue
+        key = (pump.id, curve.id, leg.id)
+        if key not in index:
+            unit = _unit(pump, curve, leg, needs)
+            if unit is None:
+                continue
+            index[key] = len(units)
+            units.append(unit)
+        unit = units[index[key]]
+        facts = _facts(slot, pump, curve, unit, limits, highest_speed, density)
+        since = order.get(slot.from_horizon or "", 0)
+        region = limits.preferred_region(facts.specific_speed)
+        slots.append(Slot(facts=facts, unit=index[key], from_year=since, preferred=region))
+    return tuple(units), tuple(slots)
+
+
+def _curve_of(pump: Pump, slot: EnteredSlot, path: str, needs: Needs) -> Curve | None:
+    if not pump.curves:
+        needs.stop(f"/pumps/{pump.id}/curves")
+        return None
+    if slot.curve is None:
+        return pump.curves[0]
+    found = next((curve for curve in pump.curves if curve.id == slot.curve), None)
+    if found is None:
+        needs.stop(f"{path}/curve")
+    return found
+
+
+def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
+    """Return a pump in its leg, None when its curve cannot be had."""
+    lowered = _curve(pump, curve, needs)
+    suction, discharge, suction_bore, discharge_bore, cracking, open_at, assumed = branches(leg, needs)
+    path = f"/pumps/{pump.id}"
+    motor = needs.part(f"{path}/motor_efficiency", pump.motor_efficiency)
+    drive = needs.default(f"{path}/drive_efficiency", pump.drive_efficiency, DRIVE_EFFICIENCY)
+    region = pump.allowable_region
+    needs.part(f"{path}/allowable_region/low", region.low)
+    needs.part(f"{path}/allowable_region/high", region.high)
+    if lowered is None or not math.isfinite(suction + discharge):
+        return None
+    return Unit(
+        curve=lowered, suction_coefficient=suction, discharge_coefficient=discharge,
+        suction_bore=suction_bore, discharge_bore=discharge_bore, cracking_head=cracking,
+        full_open_velocity=open_at, full_open_assumed=assumed,
+        npsh_exponent=NPSH_EXPONENT if pump.npsh_exponent is None else pump.npsh_exponent,
+        motor_efficiency=motor, drive_efficiency=drive,
+    )  # fmt: skip
+
+
+def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
+    path = f"/pumps/{pump.id}/curves/{curve.id}"
+    speed = needs.must(f"/pumps/{pump.id}/speed", pump.speed)
+    if curve.fit == "smoothed":
+        needs.stop(f"{path}/fit", NOT_IN_THIS_VERSION)
+    if not curve.table.rows:
+        needs.stop(f"{path}/table")
+        return None
+    if not math.isfinite(speed):
+        return None
+    columns = _columns(curve)
+    try:
+        lowered = pump_curve(
+            columns["flow"] or [],
+            head=columns["head"],
+            # per minute, as specific speed counts it
+            tested_speed=speed * 60.0,
+            efficiency=columns["efficiency"],
+            shaft_power=columns["shaft_power"],
+            npsh_required=columns["npsh_required"],
+            bep_flow=si_or_none(curve.best_efficiency_flow),
+            stages=pump.stages,
+            eyes=2 if pump.kind == "double_suction" else 1,
+        )
+    except CurveRefused as refused:
+        stated = refused.reason == "bep_outside_rows"
+        needs.stop(f"{path}/{'best_efficiency_flow' if stated else 'table'}", refused.reason)
+        return None
+    _say_what_the_rows_lack(f"{path}/table", lowered, needs)
+    return lowered
+
+
+def _say_what_the_rows_lack(path: str, curve: PumpCurve, needs: Needs) -> None:
+    if curve.npsh_curve is None:
+        needs.leave_out(path, "no_npsh_rows")
+    if curve.efficiency_curve is None and curve.power_curve is None:
+        needs.leave_out(path, "no_efficiency_rows")
+    if curve.best is None:
+        needs.leave_out(path, "best_efficiency_unknown")
+    if curve.shutoff_head is None:
+        needs.leave_out(path, "no_shutoff_row")
+
+
+def _columns(curve: Curve) -> dict[str, list[float | None] | None]:
+    """Return the columns of the table in SI; a column without a unit is not in the table."""
+    present = [name for name in COLUMNS if getattr(curve.table.units, name)]
+    columns: dict[str, list[float | None] | None] = dict.fromkeys(COLUMNS)
+    for place, name in enumerate(present):
+        unit = getattr(curve.table.units, name)
+        cells = [row[place] if place < len(row) else None for row in curve.table.rows]
+        columns[name] = [None if cell is None else to_si(cell, unit) for cell in cells]
+    return columns
+
+
+def _facts(
+    slot: EnteredSlot, pump: Pump, curve: Curve, unit: Unit, limits: StudyLimits,
+    highest_speed: float, density: float,
+) -> SlotFacts:  # fmt: skip
+    of = unit.curve
+    region = pump.allowable_region
+    minimum = si_or_none(pump.minimum_flow)
+    return SlotFacts(
+        id=slot.id, title=slot.title, role=slot.role, pump=pump.id, curve=curve.id,
+        best_efficiency_flow=None if of.best is None else of.best.flow,
+        best_efficiency=None if of.best is None else of.best.efficiency,
+        shutoff_head=of.shutoff_head,
+        last_flow=of.last_flow,
+        allowable_low=si_or_none(region.low),
+        allowable_high=si_or_none(region.high),
+        minimum_flow=limits.minimum_flow if minimum is None else minimum,
+        minimum_flow_assumed=minimum is None,
+        motor_power=si_or_none(pump.motor_power),
+        largest_shaft_power=_largest_power(of, highest_speed, density),
+        motor_efficiency=si_or_none(pump.motor_efficiency),
+        drive_efficiency=None if math.isnan(unit.drive_efficiency) else unit.drive_efficiency,
+        specific_speed=of.specific_speed,
+        rise_to_shutoff=of.rise_to_shutoff,
+        suction_bore=unit.suction_bore,
+        discharge_bore=unit.discharge_bore,
+    )  # fmt: skip
+
+
+def _largest_power(curve: PumpCurve, speed: float, density: float) -> float | None:
+    """Return the largest shaft power from the first to the last row at the highest speed."""
+    flows = np.linspace(curve.first_flow, curve.last_flow, POWER_READINGS)
+    power = curve.shaft_power(flows, density=density)
+    if not np.any(np.isfinite(power)):
+        return None
+    return float(np.nanmax(power)) * speed**3
+
+
+def control(
+    station: Station, pump_set: PumpSet, points: tuple[PointFacts, ...], limits: StudyLimits,
+    needs: Needs,
+) -> Control:  # fmt: skip
+    """Return what the set holds and between which speeds."""
+    path, entered = f"/sets/{pump_set.id}/control", pump_set.control
+    at = -1
+    if entered.kind is None:
+        needs.stop(f"{path}/kind")
+    elif entered.kind not in HELD_KINDS:
+        needs.stop(f"{path}/kind", NOT_IN_THIS_VERSION)
+    if entered.running_rule != "fewest_units":
+        needs.stop(f"{path}/running_rule", NOT_IN_THIS_VERSION)
+    level_path, level = "/site/discharge_gauge_level", station.site.discharge_gauge_level
+    if entered.kind == "discharge_pressure":
+        gauge = needs.must(level_path, level)
+    else:
+        gauge = needs.part(level_path, level)
+        at = _held_point(path, entered.kind, entered.point, points, needs)
+    pressure = needs.must(f"{path}/pressure", entered.pressure) if entered.kind in HELD_KINDS else NAN
+    lowest = _speed(entered.lowest_speed, limits.speed_lowest)
+    highest = _speed(entered.highest_speed, limits.speed_highest)
+    if lowest > highest:
+        needs.stop(f"{path}/lowest_speed", "lowest_speed_above_highest")
+    return Control(
+        point=at, pressure=pressure, discharge_gauge_level=gauge,
+        lowest_speed=lowest, highest_speed=highest,
+    )  # fmt: skip
+
+
+def _speed(entered: Quantity | None, criterion: float) -> float:
+    return criterion if entered is None else entered.si
+
+
+def _held_point(
+    path: str, kind: str | None, entered: str | None, points: tuple[PointFacts, ...], needs: Needs
+) -> int:
+    """Return the index of the point that is held; its elevation and loss must be known."""
+    if kind != "zone_point_pressure":
+        return -1
+    at = next((i for i, point in enumerate(points) if point.id == entered), -1)
+    if at < 0:
+        needs.stop(f"{path}/point")
+        return -1
+    held = f"/zone/points/{points[at].id}/"
+    for missing in tuple(needs.leaves_out):
+        if missing.path.startswith(held) and "/branch/" not in missing.path:
+            needs.stop(missing.path, missing.reason)
+    return at
