@@ -1,0 +1,260 @@
+"""The one root behind `control.hold_head`: the share of legs at a common speed."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from server.hydraulics.arrays import BoolArray, FloatArray, StateArray
+from server.hydraulics.leg_curve import LegCurve
+from server.hydraulics.states import State
+
+_STEPS = 100
+_NEWTON_ONLY = 12  # steps after which every other one is a bisection
+_ROUNDING = 1e-14  # share of the head below which a step changes nothing
+_MEND = 1e-12  # share of the flow missing above which the shares are mended
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Sharing:
+    """Kinds of leg G and how many of each run, for M cases and combinations in one row."""
+
+    kinds: tuple[LegCurve, ...]
+    count: FloatArray  # (M, G)
+
+    @property
+    def end_head(self) -> FloatArray:
+        """Head at tested speed where the first leg reaches its last row, shape (M,) [m]."""
+        return self._largest([k.last_head for k in self.kinds])
+
+    @property
+    def peak_head(self) -> FloatArray:
+        """Highest head at tested speed of any leg, shape (M,) [m]."""
+        return self._largest([k.peak_head for k in self.kinds])
+
+    @property
+    def shutoff_head(self) -> FloatArray:
+        """Highest shut-off head; nan if that of a leg is not given, shape (M,) [m]."""
+        given = [np.nan if k.shutoff_head is None else k.shutoff_head for k in self.kinds]
+        unknown = np.any((self.count > 0) & np.isnan(given), axis=1)
+        return np.where(unknown, np.nan, self._largest(np.nan_to_num(given).tolist()))
+
+    @property
+    def single_kind(self) -> BoolArray:
+        """Where legs of one kind run, shape (M,)."""
+        return np.asarray((self.count > 0).sum(axis=1) == 1, dtype=np.bool_)
+
+    @property
+    def shares_uniquely(self) -> BoolArray:
+        """Where every leg has one flow for each head, shape (M,)."""
+        falls = np.array([k.falls_throughout for k in self.kinds])
+        return np.asarray(~np.any((self.count > 0) & ~falls, axis=1), dtype=np.bool_)
+
+    def flows(self, u: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the flow of one leg of each kind and its derivative, shape (M, G)."""
+        pairs = [kind.invert(u) for kind in self.kinds]
+        return np.stack([p[0] for p in pairs], axis=1), np.stack([p[1] for p in pairs], axis=1)
+
+    def open_at(self, u: FloatArray) -> BoolArray:
+        """Return where a leg stands at its shut-off head or below, shape (M, G)."""
+        heads = [k.peak_head if k.shutoff_head is None else k.shutoff_head for k in self.kinds]
+        return np.asarray(u[:, None] <= np.array(heads) * (1.0 + _ROUNDING), dtype=np.bool_)
+
+    def unknown_at(self, u: FloatArray) -> BoolArray:
+        """Return where a leg that runs would stand before its first row, shape (M,)."""
+        before = np.stack([k.before_start(u) for k in self.kinds], axis=1)
+        return np.asarray(np.any((self.count > 0) & before, axis=1), dtype=np.bool_)
+
+    def head_slope(self, x: FloatArray) -> FloatArray:
+        """Return d(head)/d(flow) of the set at tested speed, shape (M,) [m/(m3/s)]."""
+        per_head: FloatArray = np.zeros(x.shape[0])
+        for k, kind in enumerate(self.kinds):
+            at = np.clip(x[:, k], kind.first_flow, kind.last_flow)
+            slope = np.minimum(kind.curve.slope(at), -1e-9)
+            if not kind.falls_throughout:
+                slope = kind.curve.slope(at)
+            runs = (self.count[:, k] > 0) & ((x[:, k] > 0) | self.single_kind)
+            safe = np.where(slope == 0, -1e-9, slope)
+            per_head += np.where(runs, self.count[:, k] / safe, 0.0)
+        some = per_head != 0
+        return np.asarray(np.where(some, 1.0 / np.where(some, per_head, 1.0), 0.0), np.float64)
+
+    def take(self, rows: BoolArray) -> "Sharing":
+        """Return the rows marked."""
+        return Sharing(kinds=self.kinds, count=self.count[rows])
+
+    def _largest(self, heads: list[float]) -> FloatArray:
+        """Return the largest head of the legs that run, -inf where none does."""
+        of_running = np.where(self.count > 0, np.array(heads), -np.inf)
+        return np.asarray(of_running.max(axis=1), dtype=np.float64)
+
+
+@dataclass(slots=True, kw_only=True, eq=False)
+class Root:
+    """Heads and flows at tested speed, and what is odd about them; arrays over M."""
+
+    u: FloatArray  # (M,) head over speed squared [m]
+    x: FloatArray  # (M, G) flow of one leg of each kind over speed [m3/s]
+    past_end: BoolArray
+    unknown: BoolArray
+    rising: BoolArray
+
+
+def held_root(
+    sharing: Sharing, flow: FloatArray, head: FloatArray, low: FloatArray, high: FloatArray
+) -> tuple[StateArray, Root]:
+    """Return which limit the speed stands at, if any, and the root there.
+
+    Parameters
+    ----------
+    sharing : Sharing
+        Legs that run.
+    flow, head : ndarray, shape (M,)
+        Demand [m3/s] and head asked [m].
+    low, high : ndarray, shape (M,)
+        Limits of the speed ratio. [-]
+    """
+    count, end, peak = sharing.count, sharing.end_head, sharing.peak_head
+    runs = count.sum(axis=1) > 0
+    end, peak = np.where(runs, end, 0.0), np.where(runs, peak, 0.0)
+    at_top, at_low = head / high**2, head / low**2
+    total_top = (count * sharing.flows(at_top)[0]).sum(axis=1)
+    total_low = (count * sharing.flows(at_low)[0]).sum(axis=1)
+    still = flow == 0
+    shutoff = np.where(runs, sharing.shutoff_head, np.nan)
+    top = np.where(still, at_top > shutoff, high * total_top < flow)
+    lowest = np.where(still, at_low < shutoff, low * total_low > flow) | (head <= 0)
+    limit = np.where(lowest, State.LOW_SPEED, np.where(top, State.TOP_SPEED, State.SOLVED))
+
+    # The flow asked of the legs at tested speed is `fixed` + `factor` sqrt(u).
+    limited = limit != State.SOLVED
+    fixed = np.where(limited, flow / np.where(limit == State.TOP_SPEED, high, low), 0.0)
+    factor = np.where(limited, 0.0, flow / np.sqrt(np.where(limited, 1.0, head)))
+    floor = np.where(limit == State.TOP_SPEED, end, np.maximum(end, at_low))
+    floor = np.where(limited, floor, np.maximum(end, at_top))
+    ceiling = np.where(limit == State.LOW_SPEED, peak, np.minimum(peak, at_low))
+    ceiling = np.where(limit == State.TOP_SPEED, np.minimum(peak, at_top), ceiling)
+
+    least = (count * sharing.flows(floor)[0]).sum(axis=1)
+    asked = fixed + factor * np.sqrt(np.maximum(floor, 0.0))
+    slack = 1e-12 * np.maximum(asked, least)
+    root = Root(
+        u=np.where(still, shutoff, floor),
+        x=np.zeros(count.shape),
+        past_end=runs & ~still & ((least < asked - slack) | (ceiling < end)),
+        unknown=still & np.isnan(shutoff),
+        rising=np.zeros(flow.shape, dtype=np.bool_),
+    )
+    moving = runs & ~still & ~root.past_end
+    if moving.any():
+        _solve(sharing.take(moving), moving, root, fixed, factor, floor, ceiling)
+    root.unknown |= sharing.unknown_at(root.u) & ~still
+    return limit.astype(np.int8), root
+
+
+def _solve(
+    sharing: Sharing,
+    rows: BoolArray,
+    root: Root,
+    fixed: FloatArray,
+    factor: FloatArray,
+    floor: FloatArray,
+    ceiling: FloatArray,
+) -> None:
+    """Find the roots of the marked rows and put them into `root`."""
+    a, b, low, high = fixed[rows], factor[rows], floor[rows].copy(), ceiling[rows].copy()
+    count = sharing.count
+    u = 0.5 * (low + high)
+    for step in range(_STEPS):
+        x, gain = sharing.flows(u)
+        wave = np.sqrt(np.maximum(u, 0.0))
+        off = (count * x).sum(axis=1) - a - b * wave
+        bend = np.where(wave > 0, 0.5 * b / np.where(wave > 0, wave, 1.0), 0.0)
+        slope = (count * gain).sum(axis=1) - bend
+        low, high = np.where(off > 0, u, low), np.where(off < 0, u, high)
+        newton = u - off / np.where(slope < 0, slope, -1.0)
+        bisect = (slope >= 0) | (newton < low) | (newton > high)
+        if step > _NEWTON_ONLY and step % 2:
+            bisect = np.ones_like(bisect)
+        ahead = np.where(bisect, 0.5 * (low + high), newton)
+        near = (off == 0) | (np.abs(ahead - u) <= _ROUNDING * np.maximum(1.0, np.abs(u)))
+        u = np.where(off == 0, u, ahead)
+        if near.all():
+            break
+    x, _ = sharing.flows(u)
+    u, x, unknown, rising = _left_of_hump(sharing, a, b, u, x)
+    u, x = _mend(sharing, a, b, u, x)
+    root.u[rows], root.x[rows] = u, x
+    root.unknown[rows], root.rising[rows] = unknown, rising
+
+
+def _mend(
+    sharing: Sharing, a: FloatArray, b: FloatArray, u: FloatArray, x: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Settle the flows where a curve is level, near shut-off, by Newton steps in the flows."""
+    for _ in range(3):
+        off = (sharing.count * x).sum(axis=1) - a - b * np.sqrt(np.maximum(u, 0.0))
+        rough = np.abs(off) > _MEND * np.maximum(a + b * np.sqrt(np.maximum(u, 0.0)), 1e-6)
+        if not rough.any():
+            break
+        at, n, y = u[rough], sharing.count[rough], x[rough]
+        miss, inverse = np.zeros_like(y), np.zeros_like(y)
+        for k, kind in enumerate(sharing.kinds):
+            inside = np.clip(y[:, k], kind.first_flow, kind.last_flow)
+            flows = (n[:, k] > 0) & (y[:, k] > 0)
+            slope = np.minimum(kind.curve.slope(inside), -1e-9)
+            miss[:, k] = np.where(flows, at - kind.head(inside), 0.0)
+            inverse[:, k] = np.where(flows, 1.0 / slope, 0.0)
+        wave = np.sqrt(np.maximum(at, np.finfo(np.float64).tiny))
+        steepness = (n * inverse).sum(axis=1) - 0.5 * b[rough] / wave
+        change = -(off[rough] + (n * miss * inverse).sum(axis=1)) / np.where(
+            steepness < 0, steepness, -np.inf
+        )
+        u[rough] = at + change
+        moved = y + (miss + change[:, None]) * inverse
+        x[rough] = np.where(y > 0, np.maximum(moved, 0.0), 0.0)
+    return u, x
+
+
+def _left_of_hump(
+    sharing: Sharing, a: FloatArray, b: FloatArray, u: FloatArray, x: FloatArray
+) -> tuple[FloatArray, FloatArray, BoolArray, BoolArray]:
+    """Solve equal legs by their flow where no largest flow fits the demand.
+
+    That is on the rising side of a hump. Legs of one kind share equally, so the demand fixes
+    the flow of each, and its head is read off the curve itself.
+    """
+    wave = np.sqrt(np.maximum(u, 0.0))
+    off = np.abs((sharing.count * x).sum(axis=1) - a - b * wave)
+    jumped = off > 1e-9 * np.maximum(a + b * wave, 1e-6)
+    jumped &= ~sharing.shares_uniquely
+    unknown = jumped & ~sharing.single_kind
+    rising = np.zeros(u.shape, dtype=np.bool_)
+    for k, kind in enumerate(sharing.kinds):
+        rows = jumped & sharing.single_kind & (sharing.count[:, k] > 0)
+        if not rows.any():
+            continue
+        n, fixed, factor = sharing.count[rows, k], a[rows], b[rows]
+        left, right = np.full(n.shape, kind.first_flow), np.full(n.shape, kind.last_flow)
+
+        def surplus(
+            y: FloatArray,
+            n: FloatArray = n,
+            fixed: FloatArray = fixed,
+            factor: FloatArray = factor,
+            kind: LegCurve = kind,
+        ) -> FloatArray:
+            return np.asarray(
+                n * y - fixed - factor * np.sqrt(np.maximum(kind.head(y), 0.0)),
+                dtype=np.float64,
+            )
+
+        fits = (surplus(left) <= 0) & (surplus(right) >= 0)
+        for _ in range(_STEPS):
+            middle = 0.5 * (left + right)
+            over = surplus(middle) > 0
+            left, right = np.where(over, left, middle), np.where(over, middle, right)
+        x[rows, k] = left
+        u[rows] = kind.head(left)
+        unknown[rows] = ~fits
+        rising[rows] = fits & (left < kind.peak_flow)
+    return u, x, unknown, rising
