@@ -1,7 +1,7 @@
-"""Reads what a person types for a number: a value, a short sum, a unit; refuses what is ambiguous.
+"""Reads what a person types for a number: value, short sum, unit; refuses what is ambiguous.
 
-Nothing here knows a station. The text is parsed, never evaluated, and the sum is exact: "0.1+0.2"
-gives 0.3, not 0.30000000000000004.
+Nothing here knows a station. The text is parsed, never evaluated, and the sum is exact:
+"0.1+0.2" gives 0.3, not 0.30000000000000004.
 """
 
 import re
@@ -35,15 +35,16 @@ MEASURED: dict[Dimension, str] = {
     Dimension.AREA: "an area",
 }
 
-# ways people write a unit, lower case, without spaces and full stops; symbols of files are found first
+# ways people write a unit: lower case, no spaces, no full stops; file symbols are found first
 _WRITTEN: dict[str, str] = {
     "l/s": "L/s", "lps": "L/s", "m³/h": "m3/h", "m³/s": "m3/s", "m³/d": "m3/d", "ml/d": "ML/d",
     "mld": "ML/d", "gpm": "gpm_us", "usgpm": "gpm_us", "gpmus": "gpm_us", "impgpm": "gpm_imp",
     "igpm": "gpm_imp", "mgd": "mgd_us", "usmgd": "mgd_us", "cfs": "ft3/s", "ft³/s": "ft3/s",
-    "metre": "m", "metres": "m", "meter": "m", "meters": "m", "foot": "ft", "feet": "ft", "'": "ft",
-    "inch": "in", "inches": "in", '"': "in", "kpa": "kPa", "mpa": "MPa", "pa": "Pa", "psig": "psi",
-    "bars": "bar", "barg": "bar", "°c": "degC", "c": "degC", "°f": "degF", "f": "degF", "degc": "degC",
-    "degf": "degF", "kw": "kW", "w": "W", "rev/min": "rpm", "r/min": "rpm", "fps": "ft/s",
+    "metre": "m", "metres": "m", "meter": "m", "meters": "m", "foot": "ft", "feet": "ft",
+    "'": "ft", "inch": "in", "inches": "in", '"': "in", "kpa": "kPa", "mpa": "MPa", "pa": "Pa",
+    "psig": "psi", "bars": "bar", "barg": "bar", "°c": "degC", "c": "degC", "°f": "degF",
+    "f": "degF", "degc": "degC", "degf": "degF", "kw": "kW", "w": "W", "rev/min": "rpm",
+    "r/min": "rpm", "fps": "ft/s",
     "sec": "s", "second": "s", "seconds": "s", "minute": "min", "minutes": "min", "hr": "h",
     "hour": "h", "hours": "h", "m³": "m3", "l": "L", "litre": "L", "litres": "L", "liter": "L",
     "liters": "L", "gal": "gal_us", "gallon": "gal_us", "gallons": "gal_us", "percent": "%",

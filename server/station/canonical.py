@@ -1,12 +1,14 @@
 """The only writer of a station file: the same document always gives the same bytes.
 
-UTF-8 in Unicode form NFC, keys in the order of the models, absent values and empty groups left out,
-the shortest number that reads back the same, one row of a table a line, a newline at the end.
+UTF-8 in Unicode form NFC, keys in the order of the models, absent values and empty groups left
+out, the shortest number that reads back the same, one row of a table a line, a newline at the
+end.
 """
 
 import hashlib
 from functools import cache
 from json.encoder import encode_basestring
+from math import isfinite
 from unicodedata import is_normalized, normalize
 
 from pydantic import JsonValue
@@ -32,7 +34,7 @@ def number(value: float) -> str:
     >>> number(54.0), number(-0.0), number(0.1), number(1e-7)
     ('54', '0', '0.1', '1e-07')
     """
-    if value != value or value in (float("inf"), float("-inf")):
+    if not isfinite(value):
         raise ValueError(f"a number in a station must be finite; got {value}")
     if value == 0:
         return "0"
@@ -56,15 +58,18 @@ def _members(model: type[Record]) -> tuple[tuple[str, str, object], ...]:
 def _present(record: Record) -> list[tuple[str, str, object]]:
     """Return name, written name and value of what is written of `record`, in the model's order.
 
-    Left out is what was never entered: None, the empty text, the empty list, the untouched group.
+    Left out is what was never entered: None, the empty text, the empty list, the untouched
+    group.
     """
     values = vars(record)
     found: list[tuple[str, str, object]] = []
     for name, key, default in _members(type(record)):
         value = values[name]
-        if value is None or value is default and not isinstance(value, str | int):
+        if value is None:
             continue
         if isinstance(value, Record):
+            if value is default:
+                continue
             if isinstance(default, Record) and vars(value) == vars(default):
                 continue
         elif value == "" or value == ():
@@ -101,27 +106,39 @@ def _scalar(value: object) -> str:
 
 
 def _inline(value: object) -> str:
+    kind = type(value)
+    if kind is float or kind is str:
+        return _scalar(value)
     if isinstance(value, Quantity) and value.typed is None and value.source is None:
         # by far the most frequent value of a station
         return f'{{"value": {number(value.value)}, "unit": {encode_basestring(value.unit)}}}'
-    if isinstance(value, Record):
-        return (
-            "{" + ", ".join([key + _inline(member) for _, key, member in _present(value)]) + "}"
-        )
     if isinstance(value, tuple):
         return "[" + ", ".join([_inline(member) for member in value]) + "]"
+    if isinstance(value, Record):
+        members = [key + _inline(member) for _, key, member in _present(value)]
+        return "{" + ", ".join(members) + "}"
     return _scalar(value)
 
 
+def _is_block(value: object) -> bool:
+    """Whether a value is written over several lines."""
+    kind = type(value)
+    if kind is str or kind is Quantity:
+        return False
+    if isinstance(value, tuple):
+        return bool(value) and isinstance(value[0], Record | tuple)
+    return isinstance(value, Record) and not isinstance(value, _ONE_LINE)
+
+
 def _write(value: object, indent: str, out: list[str]) -> None:
-    if isinstance(value, Record) and not isinstance(value, _ONE_LINE):
+    if not _is_block(value):
+        out.append(_inline(value))
+    elif isinstance(value, Record):
         members = [(key, member) for _, key, member in _present(value)]
         _block("{", "}", members, indent, out)
-    elif isinstance(value, tuple) and value and isinstance(value[0], Record | tuple):
+    elif isinstance(value, tuple):
         # items of a list, or the rows of a table
         _block("[", "]", [("", member) for member in value], indent, out)
-    else:
-        out.append(_inline(value))
 
 
 def _block(
@@ -130,8 +147,11 @@ def _block(
     inner = indent + "  "
     comma = start + "\n" + inner
     for key, member in members:
-        out.append(comma + key)
-        _write(member, inner, out)
+        if _is_block(member):
+            out.append(comma + key)
+            _write(member, inner, out)
+        else:
+            out.append(f"{comma}{key}{_inline(member)}")
         comma = ",\n" + inner
     out.append(f"\n{indent}{end}" if members else start + end)
 

@@ -19,8 +19,8 @@ Op = Literal["set", "insert", "remove", "move"]
 class Change:
     """One change: a field set, or an item of a list inserted, removed or moved.
 
-    `path` is the field or the item; `before` is the id of the item that an inserted or moved item
-    stands in front of, None at the end of its list.
+    `path` is the field or the item; `before` is the id of the item that an inserted or moved
+    item stands in front of, None at the end of its list.
     """
 
     op: Op
@@ -87,7 +87,7 @@ def _list(
     stay = longest_rise([order.index(key) for key in now if key in was])
     kept = {order[place] for place in stay}
     following = None
-    # from the end, so that the item in front of which another is put already stands in its place
+    # from the end, so that the item in front of which another is put already stands there
     for key in reversed(list(now)):
         if key not in was:
             found.append(Change("insert", f"{path}/{key}", None, plain(now[key]), following))
@@ -111,7 +111,7 @@ def with_all_criteria(
 
 
 def with_criterion(rows: tuple[Record, ...], row: Record) -> tuple[Record, ...]:
-    """Put a row in front of the first of a later key, so that the order of edits is no matter."""
+    """Put a row before the first of a later key, so that the order of edits is no matter."""
     key = item_id(row)
     place = next((i for i, other in enumerate(rows) if item_id(other) > key), len(rows))
     return (*rows[:place], row, *rows[place:])

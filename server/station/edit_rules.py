@@ -1,4 +1,4 @@
-"""What one edit means for other fields: a pump changed in a slot, an item removed that is in use."""
+"""What an edit means for other fields: a slot's pump changed, an item in use removed."""
 
 from collections.abc import Sequence
 
@@ -26,7 +26,7 @@ def following_edits(station: Station, op: Op, path: str) -> tuple[str, ...]:
 def refusals_of_removed(
     old: Station, new: Station, found: Sequence[Fault]
 ) -> tuple[Fault, ...]:
-    """Return the faults, those of a removed item worded as "cannot be removed while ... uses it"."""
+    """Return the faults, those of a removed item worded as "cannot be removed while ..."."""
     gone = all_ids(old) - all_ids(new)
     return tuple(_worded(old, new, fault) if fault.given in gone else fault for fault in found)
 

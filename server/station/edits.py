@@ -32,9 +32,9 @@ _OPS: tuple[str, ...] = get_args(Op)
 class Edit:
     """One edit: a field set, or an item inserted, removed or moved.
 
-    `path` is the field for set, the list for insert, and the item for remove and move. `value` is the
-    new value or item as JSON data; `was` the value that the person saw, if known; `before` the id of
-    the item in front of which an item is put, None for the end.
+    `path` is the field for set, the list for insert, and the item for remove and move. `value`
+    is the new value or item as JSON data; `was` the value that the person saw, if known;
+    `before` the id of the item in front of which an item is put, None for the end.
     """
 
     op: Op
@@ -108,7 +108,8 @@ def apply_edits(station: Station, edits: Sequence[Edit]) -> Station:
     Raises
     ------
     BadStation
-        If an edit cannot be applied, or the document would not be well-formed after the last one.
+        If an edit cannot be applied, or the document would not be well-formed after the last
+        one.
     """
     new = _applied(station, edits)
     found = faults(new)
@@ -120,14 +121,15 @@ def apply_edits(station: Station, edits: Sequence[Edit]) -> Station:
 def merge(base: Station, edits: Sequence[Edit], newest: Station) -> Station:
     """Return `newest` with the edits that were made on `base`.
 
-    Fields that only one side changed take that side's value. An edit's `was`, where it is given, is
-    taken for what stood in the base: the person saw that value, whatever the base says.
+    Fields that only one side changed take that side's value. An edit's `was`, where it is
+    given, is taken for what stood in the base: the person saw that value, whatever the base
+    says.
 
     Raises
     ------
     Conflict
-        If a field was changed to different values, an item was edited that the other side removed, or
-        the two together would not be well-formed.
+        If a field was changed to different values, an item was edited that the other side
+        removed, or the two together would not be well-formed.
     BadStation
         If the edits are not good on their own base.
     """
@@ -155,7 +157,7 @@ def merge(base: Station, edits: Sequence[Edit], newest: Station) -> Station:
 
 
 def _is_what(was: JsonValue, stored: JsonValue) -> bool:
-    """Whether a person who saw `was` saw `stored`; a page need not know the source of a value."""
+    """Whether a person who saw `was` saw `stored`; a page need not know the source."""
     if isinstance(was, dict) and isinstance(stored, dict):
         return all(stored.get(name) == value for name, value in was.items())
     return was == stored or (was in (None, "") and stored in (None, ""))
@@ -166,7 +168,7 @@ def _value(station: Station, path: str) -> JsonValue:
 
 
 def inverse(before: Station, after: Station) -> tuple[Edit, ...]:
-    """Return the edits that lead from `after` back to `before`, to be merged into a newer document."""
+    """Return the edits that lead from `after` back to `before`, to be merged into newer."""
     return tuple(_edit_of(change) for change in diff(after, before))
 
 

@@ -6,10 +6,10 @@ from dataclasses import dataclass
 
 @dataclass(frozen=True, slots=True)
 class Fault:
-    """One refusal: where it stands, what was given, what is allowed, and the sentence for a person.
+    """One refusal: where it stands, what was given, what is allowed, the sentence for a person.
 
-    `cell` is the row and column (from 0) inside a table, for marking a pasted cell; it is not part of
-    the JSON shape. A fault of the whole file has an empty path and sheet.
+    `cell` is the row and column (from 0) inside a table, for marking a pasted cell; it is not
+    part of the JSON shape. A fault of the whole file has an empty path and sheet.
     """
 
     path: str

@@ -9,7 +9,7 @@ import typing
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 from functools import cache, lru_cache
-from typing import Literal
+from typing import Literal, cast
 
 from pydantic import TypeAdapter
 
@@ -41,7 +41,7 @@ _SHEET_BY_POSITION: tuple[tuple[str, Sheet], ...] = (("/suction_line", "supply")
 
 @dataclass(slots=True, eq=False)
 class Node:
-    """One position of the document: a field, a group, a list, or (`name` "*") an item of a list."""
+    """One position of the document: a field, a group, a list, or (named "*") an item of one."""
 
     name: str
     pattern: str
@@ -68,7 +68,7 @@ class Node:
     def check(self) -> TypeAdapter[object]:
         """Return the strict reader of this position's JSON, made at its first use."""
         if self.adapter is None:
-            self.adapter = TypeAdapter(self.annotation)
+            self.adapter = TypeAdapter(cast("type[object]", self.annotation))
         return self.adapter
 
 
@@ -82,8 +82,8 @@ def _inner(annotation: object) -> object:
 
 def _kind(inner: object, entry: Entry | None) -> Kind:
     simple: dict[object, Kind] = {
-        Quantity: "quantity", Source: "source", CurveTable: "table", bool: "flag", int: "integer",
-        float: "number",
+        Quantity: "quantity", Source: "source", CurveTable: "table", bool: "flag",
+        int: "integer", float: "number",
     }  # fmt: skip
     if inner in simple:
         return simple[inner]

@@ -20,8 +20,8 @@ Item = dict[str, JsonValue]
 def new_item(station: Station, list_path: str) -> Item:
     """Return an empty item for the list at `list_path`, as JSON data, with a fresh id.
 
-    Where the list tells it, a choice is made that the person then sees: the role of a point that is
-    still missing, the pump of the slot before. No engineering number is ever filled in.
+    Where the list tells it, a choice is made that the person then sees: the role of a point
+    that is still missing, the pump of the slot before. No engineering number is ever filled in.
 
     Raises
     ------

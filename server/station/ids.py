@@ -30,7 +30,7 @@ _INNER_KINDS = {"fittings": "fi", "curves": "cu", "slots": "sl", "stages": "lv"}
 
 
 def kind_letters(list_path: str) -> str:
-    """Return the two letters of the items of the list at `list_path`; KeyError if it is no list."""
+    """Return the two letters of the items of the list at `list_path`; KeyError if none."""
     return _KINDS.get(list_path) or _INNER_KINDS[list_path.rpartition("/")[2]]
 
 

@@ -1,4 +1,4 @@
-"""Three-way merge of documents: what one side changed goes together with what the other changed."""
+"""Three-way merge of documents: what one side changed goes with what the other changed."""
 
 from collections.abc import Iterable, Sequence
 
@@ -40,8 +40,8 @@ class Conflict(Exception):
 def merged(base: Station, mine: Station, theirs: Station) -> Station:
     """Return the merge of two documents that both came from `base`; Conflict if there is none.
 
-    The result is the same with the sides exchanged, but for an order of items that both changed: there
-    `mine` decides.
+    The result is the same with the sides exchanged, but for an order of items that both
+    changed: there `mine` decides.
     """
     result = _Merge(base, mine, theirs).value(root(), "", base, mine, theirs)
     if not isinstance(result, Station):
@@ -83,8 +83,8 @@ class _Merge:
     def sentence(self, node: Node, path: str, mine: object, theirs: object) -> str:
         name = subject(self.theirs if theirs is not None else self.mine, path)
         return (
-            f"{name} was changed to {in_words(theirs, node)} by another edit, while you changed it to "
-            f"{in_words(mine, node)}."
+            f"{name} was changed to {in_words(theirs, node)} by another edit, while you "
+            f"changed it to {in_words(mine, node)}."
         )
 
     def items(
@@ -156,7 +156,7 @@ def _first_difference(node: Node, path: str, was: object, now: object) -> str:
 
 
 def _order(was: list[str], left: list[str], right: list[str], kept: Iterable[str]) -> list[str]:
-    """Return the order of the merged items: the old ones first, then each new one in its gap."""
+    """Return the order of the merged items: old ones first, then each new one in its gap."""
     keep = set(kept)
     old = [key for key in was if key in keep]
     mine, theirs = (
@@ -169,7 +169,7 @@ def _order(was: list[str], left: list[str], right: list[str], kept: Iterable[str
             gaps.setdefault(following, []).append(run)
     result: list[str] = []
     for key in (*order, None):
-        # which side is merged into which must not show, so runs of both sides go by their first id
+        # which side is merged into which must not show: runs of both go by their first id
         for run in sorted(gaps.get(key, [])):
             result += [new for new in run if new not in result]
         if key is not None:

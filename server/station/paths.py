@@ -1,4 +1,4 @@
-"""Addresses inside a document: the only place that reads, sets, inserts, moves and removes by path.
+"""Addresses in a document: the only place that reads, sets, inserts, moves, removes by path.
 
 A path is `/zone/points/pt-c6n2vh/elevation`; the segments behind a list are ids. Every function
 returns a new document that shares what did not change with the old one.
@@ -19,8 +19,8 @@ from server.station.station import CriteriaRow, Station
 from server.station.titles import item_title, place_of, subject, words
 
 __all__ = [
-    "Change", "all_ids", "diff", "get", "get_json", "has", "html_id", "insert", "item_title", "move",
-    "path_of", "put", "remove", "subject", "words",
+    "Change", "all_ids", "diff", "get", "get_json", "has", "html_id", "insert", "item_title",
+    "move", "path_of", "put", "remove", "subject", "words",
 ]  # fmt: skip
 
 _CRITERIA = "/criteria/rows"
@@ -64,7 +64,7 @@ def _is_new_criterion(list_path: str, segment: str) -> bool:
 
 
 def _descend(station: Station, path: str) -> list[tuple[object, str]]:
-    """Return each holder on the way with the segment that leads on; BadStation if one is gone."""
+    """Return each holder on the way with the segment that leads on; BadStation if gone."""
     _node(path)
     way: list[tuple[object, str]] = []
     holder: object = station
@@ -150,7 +150,7 @@ def _read(station: Station, path: str, node: Node, value: JsonValue) -> object:
 
 
 def _rebuild(way: list[tuple[object, str]], value: object) -> Station:
-    """Return the document with `value` at the end of `way`, the holders made new on the way up."""
+    """Return the document with `value` at the end of `way`, its holders made new."""
     for holder, segment in reversed(way[:-1]):
         if isinstance(holder, tuple):
             place = _place(holder, segment)
@@ -179,7 +179,8 @@ def _without_empty_criteria(station: Station, path: str) -> Station:
 def put(station: Station, path: str, value: JsonValue) -> Station:
     """Return the document with the field at `path` set to `value`, given as JSON data.
 
-    Only the shape of the value is checked; `wellformed.faults` judges units, ranges and references.
+    Only the shape of the value is checked; `wellformed.faults` judges units, ranges and
+    references.
 
     Raises
     ------
@@ -242,7 +243,7 @@ def _spot(
 def insert(
     station: Station, list_path: str, item: JsonValue, before: str | None = None
 ) -> Station:
-    """Return the document with a new item in a list, in front of the item `before` or at the end.
+    """Return the document with a new item in a list, in front of `before` or at the end.
 
     Raises
     ------
@@ -289,7 +290,7 @@ def remove(station: Station, item_path: str) -> Station:
 
 
 def move(station: Station, item_path: str, before: str | None) -> Station:
-    """Return the document with an item in front of the item `before`, or last; BadStation if gone."""
+    """Return the document with an item in front of `before`, or last; BadStation if gone."""
     way, list_path, key = _item_at(station, item_path)
     items = items_of(way[-1][0])
     place = _place(items, key)

@@ -1,6 +1,7 @@
 """Reads a station file: strict JSON, all refusals at once, older versions brought up.
 
-Used for everything that comes from outside; `read_stored` is for bytes this program wrote itself.
+Used for everything that comes from outside; `read_stored` is for bytes this program wrote
+itself.
 """
 
 import json
@@ -51,7 +52,7 @@ def read_station(data: bytes) -> Station:
 
 
 def read_stored(data: bytes) -> Station:
-    """Return the station of bytes that were written by `canonical_bytes`, an older version's too."""
+    """Return the station of bytes that `canonical_bytes` wrote, an older version's too."""
     try:
         return Station.model_validate_json(data)
     except ValidationError:
@@ -98,12 +99,13 @@ def _tree(data: bytes) -> Tree:
         ) from None  # fmt: skip
     pairs = _Pairs()
     try:
-        # NaN and Infinity are let in here and refused by the models, which know where they stand
+        # NaN and Infinity are let in here; the models refuse them, knowing where they stand
         value: JsonValue = json.loads(text, object_pairs_hook=pairs, parse_constant=float)
     except json.JSONDecodeError as error:
         raise _whole(
             f"line {error.lineno}, column {error.colno}", "JSON",
-            f"The file is not JSON: {_lower(error.msg)} at line {error.lineno}, column {error.colno}.",
+            f"The file is not JSON: {_lower(error.msg)} at line {error.lineno}, "
+            f"column {error.colno}.",
         ) from None  # fmt: skip
     except RecursionError:
         raise _too_deep() from None
@@ -153,7 +155,7 @@ def _cleaned(value: JsonValue, depth: int) -> JsonValue:
         except UnicodeEncodeError:
             raise _whole(
                 "half a character", "whole characters",
-                "The file has half of a character (a lone surrogate) in a text; write it whole.",
+                "A text of the file has half a character (a lone surrogate); write it whole.",
             ) from None  # fmt: skip
         return nfc(value)
     return value
@@ -193,7 +195,8 @@ def _version(tree: Tree) -> int:
         raise BadStation([
             Fault(
                 "/format", "", given, FORMAT,
-                f'The file is not a station file: its "format" must be "{FORMAT}"; {given} was given.',
+                f'The file is not a station file: its "format" must be "{FORMAT}"; '
+                f"{given} was given.",
             )
         ])  # fmt: skip
     version = tree.get("version")
@@ -215,8 +218,8 @@ def _version(tree: Tree) -> int:
 def _faults_of_the_rest(tree: Tree, error: ValidationError) -> tuple[Fault, ...]:
     """Return the faults of what has the right shape, so that a person corrects the file once.
 
-    What has the wrong shape is left out; references are not judged then, as what they name may be
-    what was left out.
+    What has the wrong shape is left out; references are not judged then, as what they name may
+    be what was left out.
     """
     items: dict[int, tuple[list[JsonValue], set[int]]] = {}
     for detail in error.errors(include_url=False, include_input=False, include_context=False):

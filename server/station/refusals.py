@@ -1,4 +1,4 @@
-"""Turns what the models refuse into our own sentences: path, what was given, what is allowed."""
+"""Turns what the models refuse into our own sentences: path, given, allowed."""
 
 import json
 import re

@@ -57,7 +57,7 @@ def table_faults(table: CurveTable, name: str, path: str, sheet: str) -> Iterato
         if len(row) != len(columns):
             yield Fault(
                 path, sheet, f"{len(row)} cells", f"{len(columns)} cells",
-                f"{where} must have {len(columns)} cells, one for each unit; {len(row)} were given.",
+                f"{where} must have {len(columns)} cells, one a unit; it has {len(row)}.",
                 (place, 0),
             )  # fmt: skip
             continue
@@ -71,8 +71,8 @@ def table_faults(table: CurveTable, name: str, path: str, sheet: str) -> Iterato
             same = "is the same as" if flow == last else "is below"
             yield Fault(
                 path, sheet, number(flow), f"more than {number(last)}",
-                f"{where} has a flow of {number(flow)}, which {same} the one before; sort the rows "
-                "so that every flow is greater than the one before.",
+                f"{where} has a flow of {number(flow)}, which {same} the one before; sort the "
+                "rows so that every flow is greater than the one before.",
                 (place, 0),
             )  # fmt: skip
         last = flow if flow is not None else last

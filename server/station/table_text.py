@@ -18,12 +18,13 @@ _EMPTY = ("", "-", "–")
 def rows_from_text(
     text: str, units: CurveUnits, name: str, path: str, sheet: str
 ) -> list[JsonValue]:
-    """Return the rows that a pasted text holds: one a line, cells apart by tabs (else by spaces or ;).
+    """Return the rows of a pasted text: one a line, cells apart by tabs (else by spaces or ;).
 
     Raises
     ------
     BadStation
-        With one fault for each cell that is not a number of its column; `Fault.cell` says which.
+        With one fault for each cell that is not a number of its column; `Fault.cell` says
+        which.
     """
     columns = [column for column in COLUMNS if getattr(units, column[0]) is not None]
     rows: list[JsonValue] = []
@@ -69,7 +70,10 @@ def rows_from_text(
                 found.append(Fault(path, sheet, quoted(cell), allowed, sentence, (place, at)))
                 continue
             if typed.unit != unit:
-                sentence = f"{name}, row {place + 1}, {words}: the column is in {_printed(unit)}, not in {_printed(typed.unit)}."
+                sentence = (
+                    f"{name}, row {place + 1}, {words}: the column is in {_printed(unit)}, "
+                    f"not in {_printed(typed.unit)}."
+                )
                 found.append(
                     Fault(
                         path, sheet, quoted(cell), f"a number in {unit}", sentence, (place, at)

@@ -1,7 +1,7 @@
 """Words for a place in the document: the title of an item, the subject of a sentence, a path.
 
-Works on a `Station` and on the raw JSON of a file that could not become one, so that a refusal of a
-bad file names "Top Row 31" as every other sentence does.
+Works on a `Station` and on the raw JSON of a file that could not become one, so that a refusal
+of a bad file names "Top Row 31" as every other sentence does.
 """
 
 from collections.abc import Mapping, Sequence
@@ -70,7 +70,7 @@ def _shown_place(place: int | None, count: int) -> int:
 
 
 def _walk(station: object, path: str) -> tuple[Node, list[tuple[Node, str]]] | None:
-    """Return the node at `path` and, outermost first, the items on the way with their titles."""
+    """Return the node at `path` and, outermost first, the items on the way with titles."""
     node: Node | None = root()
     holder: object = station
     items: list[tuple[Node, str]] = []
@@ -94,8 +94,8 @@ def _walk(station: object, path: str) -> tuple[Node, list[tuple[Node, str]]] | N
 def item_title(station: object, path: str) -> str:
     """Return the name of the item at `path`, or of the item that `path` lies in.
 
-    An item without a name is told by its place: "point 2". Outside of any item, the title of the
-    field, group or list.
+    An item without a name is told by its place: "point 2". Outside of any item, the title of
+    the field, group or list.
     """
     found = _walk(station, path)
     if found is None:

@@ -37,8 +37,8 @@ def value_from_text(
     Parameters
     ----------
     view : "si" or "us", optional
-        Unit view that the field was shown in; decides the unit of an empty field. The station's own
-        view if not given.
+        Unit view that the field was shown in; decides the unit of an empty field. The station's
+        own view if not given.
     unit : str, optional
         Symbol taken when the text names no unit, instead of the field's own.
     dimension : Dimension, optional
@@ -83,8 +83,8 @@ def value_from_text(
 def text_of(station: Station, path: str, view: View | None = None) -> tuple[str, str | None]:
     """Return what the field at `path` shows: its text as entered, and the symbol of its unit.
 
-    An empty quantity has the unit in which it would be read: that of `view`, or of the station's own
-    view. A value without a unit has None.
+    An empty quantity has the unit in which it would be read: that of `view`, or of the
+    station's own view. A value without a unit has None.
     """
     node = find(path)
     value = get(station, path)

@@ -7,6 +7,7 @@ import math
 import re
 from collections.abc import Callable, Iterator
 from datetime import datetime
+from functools import lru_cache
 
 from server.entry_text import allowed_units, wrong_unit
 from server.station.canonical import number
@@ -37,7 +38,7 @@ def faults(station: Station) -> tuple[Fault, ...]:
 
 
 class _Check:
-    """One pass over the document; ids are gathered on the way and references judged at the end."""
+    """One pass over the document; ids are gathered on the way, references judged at the end."""
 
     def __init__(self, station: Station) -> None:
         self.station = station
@@ -91,7 +92,8 @@ class _Check:
             return
         if len(items) > MOST_ITEMS:
             self.add(node, path, len(items), f"at most {MOST_ITEMS} items",
-                     f"may have at most {MOST_ITEMS} items; {len(items)} were given.")  # fmt: skip
+                     f"may have at most {MOST_ITEMS} items; {len(items)} were given.",
+            )  # fmt: skip
             return
         criteria = path == "/criteria/rows"
         # rules are keyed by names of their own, apart from the ids of items
@@ -102,10 +104,12 @@ class _Check:
             here = f"{path}/{key}"
             if not is_id(key, LONGEST_RULE_KEY if criteria else LONGEST_ID):
                 self.add(inner, here, key, ID_IN_WORDS,
-                         f"has the id {quoted(key)}; an id is {ID_IN_WORDS}.")  # fmt: skip
+                         f"has the id {quoted(key)}; an id is {ID_IN_WORDS}.",
+                )  # fmt: skip
             elif key in taken:
                 self.add(inner, here, key, "an id of its own",
-                         f"has the id {key}, which is in use already; every id is used once.")  # fmt: skip
+                         f"has the id {key}, which is in use already; every id is used once.",
+                )  # fmt: skip
             taken[key] = here
             known.add(key)
             self.group(inner, here, item)
@@ -115,22 +119,32 @@ class _Check:
             return
         unit = UNITS.get(value.unit)
         dimension = node.entry.dimension
-        allowed = allowed_units(dimension) if dimension else "a unit that is known here"
-        if unit is None:
-            shown = ", ".join(symbols(dimension)) if dimension else "a known symbol"
-            self.add(node, path, value.unit, allowed,
-                     f"has the unit {quoted(value.unit)}, which is not known; write {shown}.")  # fmt: skip
-            return
-        if dimension is not None and value.unit not in symbols(dimension):
-            self.add(node, path, f"{number(value.value)} {value.unit}", allowed,
-                     f"cannot be in {unit.printed or '1'}: {wrong_unit(value.unit, dimension)}.")  # fmt: skip
+        if unit is None or (dimension is not None and value.unit not in symbols(dimension)):
+            self.wrong_unit(node, path, value, dimension)
             return
         self.range(node, path, value.value, unit)
         if value.typed is not None and (len(value.typed) > 120 or _CONTROL.search(value.typed)):
             self.add(node, path, value.typed, "a sum of at most 120 signs",
-                     "keeps the sum it was typed as, of at most 120 signs.")  # fmt: skip
+                     "keeps the sum it was typed as, of at most 120 signs.",
+            )  # fmt: skip
         if value.source is not None:
             self.source(node, path, value.source)
+
+    def wrong_unit(
+        self, node: Node, path: str, value: Quantity, dimension: Dimension | None
+    ) -> None:
+        unit = UNITS.get(value.unit)
+        allowed = allowed_units(dimension) if dimension else "a unit that is known here"
+        if unit is None:
+            shown = ", ".join(symbols(dimension)) if dimension else "a known symbol"
+            self.add(node, path, value.unit, allowed,
+                     f"has the unit {quoted(value.unit)}, which is not known; write {shown}.",
+            )  # fmt: skip
+        elif dimension is not None:
+            self.add(
+                node, path, f"{number(value.value)} {value.unit}", allowed,
+                f"cannot be in {unit.printed or '1'}: {wrong_unit(value.unit, dimension)}.",
+            )  # fmt: skip
 
     def plain_number(self, node: Node, path: str, value: object) -> None:
         if isinstance(value, int | float):
@@ -155,11 +169,13 @@ class _Check:
         longest = LONGEST_TEXT if entry is not None and entry.long else LONGEST_SHORT_TEXT
         if len(value) > longest:
             self.add(node, path, f"{len(value)} signs", f"at most {longest} signs",
-                     f"may have at most {longest} signs; {len(value)} were given.")  # fmt: skip
+                     f"may have at most {longest} signs; {len(value)} were given.",
+            )  # fmt: skip
         elif _CONTROL.search(value) or (longest == LONGEST_SHORT_TEXT and "\n" in value):
             lines = "" if longest == LONGEST_TEXT else " on one line"
             self.add(node, path, value, f"text{lines}",
-                     f"must be text{lines}, without control signs.")  # fmt: skip
+                     f"must be text{lines}, without control signs.",
+            )  # fmt: skip
         if node.pattern == "/supply/flow_tests/*/made_at":
             self.date(
                 node, path, value, _MOMENT, "a date, or date and hour, as 2025-05-14 07:30"
@@ -181,7 +197,9 @@ class _Check:
             _DATE.fullmatch(value.date) and _is_date(value.date)
         ):
             self.add(node, path, value.date, "a date, as 2026-05-14",
-                     f"must have the date of its source as 2026-05-14; {quoted(value.date)} was given.")  # fmt: skip
+                     "must have the date of its source as 2026-05-14; "
+                     f"{quoted(value.date)} was given.",
+            )  # fmt: skip
 
     def table(self, node: Node, path: str, value: object) -> None:
         if isinstance(value, CurveTable):
@@ -193,12 +211,14 @@ class _Check:
             return
         if len(value) not in (0, _HOURS):
             self.add(node, path, f"{len(value)} numbers", "24 numbers, or none",
-                     f"must be 24 numbers from midnight, or none; it has {len(value)}.")  # fmt: skip
+                     f"must be 24 numbers from midnight, or none; it has {len(value)}.",
+            )  # fmt: skip
             return
         for hour, factor in enumerate(value):
             if not 0 <= factor <= _LARGEST_FACTOR:
                 self.add(node, path, number(factor), "0 to 20",
-                         f"must be between 0 and 20; {number(factor)} was given for hour {hour}.")  # fmt: skip
+                         f"must be between 0 and 20; {number(factor)} was given for hour {hour}.",
+                )  # fmt: skip
 
     def reference(self, node: Node, path: str, value: object) -> None:
         if isinstance(value, str):
@@ -209,7 +229,8 @@ class _Check:
         if to is not None and given not in self.lists.get(to, ()):
             name = to.rpartition("/")[2]
             self.add(node, path, given, f"the id of one of the {name}",
-                     f"names {quoted(given)}, which is not among the {name} of this station.")  # fmt: skip
+                     f"names {quoted(given)}, which is not among the {name} here.",
+            )  # fmt: skip
 
     def flow_test(self, node: Node, path: str, test: FlowTest) -> None:
         static, residual = test.static_pressure, test.residual_pressure
@@ -223,7 +244,8 @@ class _Check:
             limit = with_unit(static.value, before)
             self.add(node.children["residual_pressure"], f"{path}/residual_pressure", given,
                      f"less than {limit}",
-                     f"must be below the static pressure of {limit}; {given} was given.")  # fmt: skip
+                     f"must be below the static pressure of {limit}; {given} was given.",
+            )  # fmt: skip
 
     def curves_of_slots(self) -> None:
         curves = {pump.id: {curve.id for curve in pump.curves} for pump in self.station.pumps}
@@ -236,8 +258,8 @@ class _Check:
                     self.found.append(
                         Fault(
                             path, "sets", slot.curve or "", "a curve of the slot's own pump",
-                            f"{subject(self.station, path)} is of another pump; choose a curve of the "
-                            "slot's own pump, or leave it empty.",
+                            f"{subject(self.station, path)} is of another pump; choose a curve "
+                            "of the slot's own pump, or leave it empty.",
                         )
                     )  # fmt: skip
 
@@ -261,7 +283,7 @@ def with_unit(value: float, unit: Unit) -> str:
 
 
 def range_words(entry: Entry, unit: Unit) -> tuple[str, str]:
-    """Return the range of an entry in `unit`: short, and as a sentence goes on after "must be"."""
+    """Return the range of an entry in `unit`: short, and as it goes on after "must be"."""
     low = None if entry.low is None else with_unit(_rounded(unit.from_si(entry.low)), unit)
     high = None if entry.high is None else with_unit(_rounded(unit.from_si(entry.high)), unit)
     if low is None and high is None:
@@ -282,10 +304,11 @@ def usual_range(entry: Entry, dimension: Dimension) -> str:
 
 
 def _rounded(value: float) -> float:
-    """Return a limit as a person would say it; five figures are finer than any of them needs."""
+    """Return a limit as a person would say it; no limit needs more than five figures."""
     return float(f"{value:.5g}")
 
 
+@lru_cache(maxsize=1024)
 def _is_date(text: str) -> bool:
     text = text.replace("T", " ")
     forms = {4: "%Y", 7: "%Y-%m", 10: "%Y-%m-%d", 16: "%Y-%m-%d %H:%M"}

@@ -1,8 +1,8 @@
 """Older station files brought to the newest version, one pure step a version.
 
-A step `v1_to_v2` takes the raw JSON of a version-1 file and returns that of version 2. Version 1 is
-the first, so there is no step yet. Steps run when a file is opened; what they give is written only
-at the next save.
+A step `v1_to_v2` takes the raw JSON of a version-1 file and returns that of version 2. Version
+1 is the first, so there is no step yet. Steps run when a file is opened; what they give is
+written only at the next save.
 """
 
 from collections.abc import Callable, Mapping
