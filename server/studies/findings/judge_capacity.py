@@ -1,0 +1,144 @@
+"""Firm capacity, the number of units, and the zone with the station off."""
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from server.studies.duty_result import FirmCapacity, StationOff
+from server.studies.findings.judge_suction import SUCTION_LIMITS
+from server.studies.findings.judged_set import JudgedSet, amount
+from server.studies.findings.reading import Reading, broken
+from server.studies.shapes import Case, Finding, Path, Severity
+from server.units import Dimension as D
+
+FIRM_CODES = {"peak_hour": "firm_peak_hour_short", "maximum_day_fire": "firm_fire_short"}
+
+
+def judge_capacity(
+    judged: JudgedSet, suction: list[Reading]
+) -> tuple[list[Reading], list[Finding]]:
+    """Return the readings of firm capacity, and what happens when the station is off.
+
+    Parameters
+    ----------
+    judged : JudgedSet
+        The set.
+    suction : list of Reading
+        Readings of the suction side: a capacity that falls short for the same reason is told there.
+    """
+    told = any(broken(reading) and reading.code.startswith("suction_") for reading in suction)
+    readings = [firm_reading(judged, firm, told) for firm in judged.result.made.firm_capacity]
+    readings.append(_units(judged))
+    off = judged.result.made.station_off
+    return readings, [] if off is None else list(_station_off(judged, off))
+
+
+def firm_case(judged: JudgedSet, firm: FirmCapacity) -> Case:
+    """Return the case in which a firm capacity is found."""
+    return Case(f"made:firm-{firm.requirement}", judged.id, firm.horizon, "low", "aged", firm.unit_out)
+
+
+def firm_reading(judged: JudgedSet, firm: FirmCapacity, told: bool) -> Reading:
+    """Return the reading of one firm capacity."""
+    by_suction = firm.by_all_limit in SUCTION_LIMITS and firm.by_head >= firm.required_flow
+    slots = {slot.id: slot.title for slot in judged.slots}
+    return Reading(
+        code="told_elsewhere" if by_suction and told else FIRM_CODES[firm.requirement],
+        severity=Severity.FAIL, subject=judged.path, pump_set=judged.id,
+        criterion=judged.criterion("firm-units-out"), case=firm_case(judged, firm),
+        provided=amount("firm", firm.by_all, D.FLOW),
+        required=amount("required", firm.required_flow, D.FLOW), sense="at_least",
+        others=(amount("by_head", firm.by_head, D.FLOW),
+                amount("short", firm.required_flow - firm.by_all, D.FLOW)),
+        names=(("set", judged.title), ("out", slots.get(firm.unit_out, "a unit")),
+               ("limit", limit_words(judged, firm.by_all_limit))),
+        mend=_mend_firm(judged, firm),
+    )  # fmt: skip
+
+
+def limit_words(judged: JudgedSet, limit: str) -> str:
+    """Return in words what limits a firm capacity."""
+    if limit.startswith("point:"):
+        titles = {point.id: point.title for point in judged.points}
+        return f"the pressure at {titles.get(limit.removeprefix('point:'), 'a point')}"
+    return {
+        "curve_end": "the end of the pump curve",
+        "connection": judged.station.supply.title or "the supplying main",
+        "suction_gauge": "the suction gauge",
+        "npsh": "the NPSH margin",
+        "no_unit": "no unit left",
+    }.get(limit, limit.replace("_", " "))
+
+
+def _mend_firm(judged: JudgedSet, firm: FirmCapacity) -> tuple[Path, ...]:
+    if firm.by_all_limit in SUCTION_LIMITS:
+        return ("/supply/states/low", f"{judged.path}/slots")
+    order = sorted(range(len(judged.slots)), key=lambda n: judged.slots[n].role == "jockey")
+    tables = tuple(dict.fromkeys(f"{judged.curve_path(n)}/table" for n in order))
+    # with one unit left none, a larger pump mends nothing: another slot does
+    if firm.by_all <= 0:
+        return (f"{judged.path}/slots", *tables)
+    return (*tables, f"{judged.path}/slots")
+
+
+def _units(judged: JudgedSet) -> Reading:
+    number = sum(1 for slot in judged.slots if slot.pump is not None)
+    return Reading(
+        code="units_few", severity=Severity.FAIL, subject=f"{judged.path}/slots",
+        pump_set=judged.id, criterion=judged.criterion("units-least"), case=None,
+        provided=amount("units", float(number), D.NUMBER, 0),
+        required=amount("required", judged.limit("units-least"), D.NUMBER, 0), sense="at_least",
+        mend=(f"{judged.path}/slots",), names=(("set", judged.title),), at_limit_share=0.0,
+    )  # fmt: skip
+
+
+def _station_off(judged: JudgedSet, off: StationOff) -> Iterator[Finding]:
+    """Yield what the zone has without the pumps: a stop unless standby power is named."""
+    limit = judged.limit("station-off-pressure-min")
+    served = [p for p, point in enumerate(judged.points) if point.role != "hydrant"]
+    if not served:
+        return
+    pressures = off.arithmetic_pressure[:, served]
+    low = [i for i in range(len(off.cases)) if bool((pressures[i] < limit).any())]
+    if not low:
+        return
+    low.sort(key=lambda i: float(np.nanmin(pressures[i])))
+    worst = low[0]
+    p = served[int(np.nanargmin(pressures[worst]))]
+    standby = judged.entered.standby_power
+    path = f"{judged.path}/standby_power"
+    drains = bool(off.drains[worst, p])
+    severity, mend, because = _standby(judged, path)
+    dry = sum(1 for i in low if bool(off.drains[i, served].any()))
+    yield Finding(
+        code={Severity.STOP: "station_off", Severity.NOT_CHECKED: "station_off_not_checked"}.get(
+            severity, "station_off_relies_on_standby"
+        ),
+        severity=severity, subject="/zone", pump_set=judged.id,
+        criterion=judged.criterion("station-off-pressure-min"), governing=off.cases[worst],
+        cases=tuple(off.cases[i] for i in low),
+        # a figure below a vacuum is no pressure: it is not carried further
+        provided=amount("pressure", None if drains else float(off.arithmetic_pressure[worst, p]),
+                        D.PRESSURE, 0),
+        required=amount("required", limit, D.PRESSURE),
+        others=(amount("transfer", None if standby.transfer_time is None else standby.transfer_time.si,
+                       D.TIME),),
+        names=(("point", judged.points[p].title), ("set", judged.title),
+               ("carries", standby.carries), ("kind", standby.kind or ""),
+               ("water", "none" if drains else "below" if pressures[worst].min() < 0 else "low"),
+               ("dry", str(dry)), ("number", str(len(low))), ("path", off.path)),
+        basis="station-off-pressure-min", mend=mend, because=because,
+    )  # fmt: skip
+
+
+def _standby(judged: JudgedSet, path: Path) -> tuple[Severity, tuple[Path, ...], str | None]:
+    """Return how the station off weighs by the standby power that is named."""
+    standby = judged.entered.standby_power
+    if standby.kind is None:
+        return Severity.NOT_CHECKED, (f"{path}/kind",), "absent"
+    if standby.kind == "none":
+        return Severity.STOP, (f"{path}/kind", "/supply/bypass/fitted"), None
+    if standby.transfer_time is None:
+        return Severity.NOT_CHECKED, (f"{path}/transfer_time",), "absent"
+    # a higher supply, or a lower zone, would do without
+    return Severity.CAUTION, ("/supply/states/low", "/supply/bypass/fitted"), None

@@ -1,0 +1,276 @@
+"""What the document itself shows: absent inputs, defaults, departures, demands out of order."""
+
+from collections.abc import Iterable, Iterator
+
+from server.station.entry import Quantity, Record
+from server.station.pump_set import PumpSet
+from server.station.station import Station
+from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.findings.criteria import Criterion
+from server.studies.findings.judged_set import amount
+from server.studies.findings.reading import Reading
+from server.studies.shapes import Finding, Path, Severity
+from server.units import Dimension as D
+
+DEFAULT_USED = "default_used"
+NOT_IN_THIS_VERSION = "not_in_this_version"
+DEMANDS = (
+    ("minimum_night", "minimum night"), ("average_day", "average day"),
+    ("maximum_day", "maximum day"), ("peak_hour", "peak hour"),
+)  # fmt: skip
+
+
+def judge_missing(results: dict[str, DutyResult | NotSolved]) -> Iterator[Finding]:
+    """Yield each absent field once, and each default that a study used."""
+    seen: set[tuple[Path, str]] = set()
+    for set_id, result in results.items():
+        pairs: Iterable[tuple[str, str]] = (
+            result.needs_missing
+            if isinstance(result, DutyResult)
+            else ((missing.path, missing.reason) for missing in result.missing)
+        )
+        stops = isinstance(result, NotSolved)
+        for path, reason in pairs:
+            if (path, reason) in seen:
+                continue
+            seen.add((path, reason))
+            yield _missing(path, reason, stops, set_id if path.startswith(f"/sets/{set_id}") else None)
+
+
+def _missing(path: Path, reason: str, stops: bool, set_id: str | None) -> Finding:
+    if reason == DEFAULT_USED:
+        return default_used(path)
+    code = "kind_not_computed" if reason == NOT_IN_THIS_VERSION else "input_missing"
+    if reason not in ("absent", NOT_IN_THIS_VERSION):
+        code = "input_refused" if stops else "input_lacks"
+    return Finding(
+        code=code, severity=Severity.NOT_CHECKED, subject=path, pump_set=set_id,
+        names=(("state", "stops" if stops else "part"), ("reason", reason)), basis="physics",
+        mend=(path,), because=reason,
+    )  # fmt: skip
+
+
+def default_used(path: Path, said: str = "") -> Finding:
+    """Return the note that a default stands in at `path`."""
+    return Finding(
+        code="default_used", severity=Severity.NOTE, subject=path, pump_set=None,
+        names=(("said", said),), basis="common_practice", mend=(path,), because=DEFAULT_USED,
+    )  # fmt: skip
+
+
+def judge_inputs(station: Station, criteria: dict[str, Criterion]) -> tuple[list[Reading], list[Finding]]:
+    """Return what the document shows without a study."""
+    findings = [
+        *_defaults(station), *_departures(criteria), *_empty(station), *_scenarios(station),
+        *_demands(station), *_points(station), *_under_criteria(station, criteria),
+    ]  # fmt: skip
+    for fire in station.fires:
+        if fire.duration is None:
+            findings.append(_missing(f"/fires/{fire.id}/duration", "absent", False, None))
+    for each in station.sets:
+        findings.extend(_protections(each))
+        findings.extend(_ratings(station, each))
+    return list(_fires(station, criteria)), findings
+
+
+def _not_checked(code: str, path: Path, names: tuple[tuple[str, str], ...] = (), set_id: str | None = None,
+                 subject: Path | None = None) -> Finding:  # fmt: skip
+    return Finding(
+        code=code, severity=Severity.NOT_CHECKED, subject=subject or path, pump_set=set_id,
+        names=names, basis="physics", mend=(path,), because="absent",
+    )  # fmt: skip
+
+
+def _empty(station: Station) -> Iterator[Finding]:
+    """Yield the parts of an unfinished station that no study can name, for want of a set."""
+    if not station.sets:
+        for path, present in (
+            ("/supply/kind", station.supply.kind), ("/suction_line/reaches", station.suction_line.reaches),
+            ("/discharge_main/reaches", station.discharge_main.reaches), ("/zone/kind", station.zone.kind),
+            ("/zone/points", station.zone.points), ("/horizons", station.horizons),
+            ("/scenarios", station.scenarios), ("/pumps", station.pumps), ("/legs", station.legs),
+            ("/sets", station.sets),
+        ):  # fmt: skip
+            if not present:
+                yield _missing(path, "absent", True, None)
+    elif station.proposed_set is None:
+        yield _not_checked("proposed_set_missing", "/proposed_set")
+
+
+def _walk(record: Record, path: Path) -> Iterator[tuple[Path, Quantity]]:
+    """Yield every quantity of a record with its path."""
+    for name in type(record).model_fields:
+        value = getattr(record, name)
+        if isinstance(value, Quantity):
+            yield f"{path}/{name}", value
+        elif isinstance(value, Record):
+            yield from _walk(value, f"{path}/{name}")
+        elif isinstance(value, tuple):
+            for item in value:
+                if isinstance(item, Record) and hasattr(item, "id"):
+                    yield from _walk(item, f"{path}/{name}/{item.id}")
+
+
+def _defaults(station: Station) -> Iterator[Finding]:
+    """Yield the defaults that stand in: typed by the user's action, or used for an empty field."""
+    for path, quantity in _walk(station, ""):
+        if quantity.source is not None and quantity.source.kind == "default":
+            yield default_used(path, quantity.source.text)
+    for pump in station.pumps:
+        if pump.npsh_exponent is None:
+            yield default_used(f"/pumps/{pump.id}/npsh_exponent", "2")
+        if pump.minimum_flow is None:
+            yield default_used(f"/pumps/{pump.id}/minimum_flow", "the criteria row")
+    for leg in station.legs:
+        if leg.discharge_branch.full_open_velocity is None:
+            yield default_used(f"/legs/{leg.id}/discharge_branch/full_open_velocity", "1.5 m/s")
+    if station.fires:
+        for point in station.zone.points:
+            if point.fire_share is None:
+                yield default_used(f"/zone/points/{point.id}/fire_share", "1, on the safe side")
+
+
+def _departures(criteria: dict[str, Criterion]) -> Iterator[Finding]:
+    """Yield every criterion that departs from its profile, with or without a reason."""
+    for criterion in criteria.values():
+        if not criterion.departs:
+            continue
+        reasoned = bool(criterion.reason)
+        profile = criterion.profile
+        yield Finding(
+            code="criterion_departs" if reasoned else "departure_without_reason",
+            severity=Severity.NOTE if reasoned else Severity.CAUTION,
+            subject=criterion.path, pump_set=None, criterion=criterion.path,
+            provided=amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals),
+            required=amount("profile", None if profile is None else profile.si, criterion.dimension,
+                            criterion.rule.decimals),
+            names=(("rule", criterion.title), ("reason", criterion.reason)), basis=criterion.key,
+            mend=(f"{criterion.path}/{'limit' if reasoned else 'reason'}",
+                  f"{criterion.path}/{'reason' if reasoned else 'limit'}"),
+        )  # fmt: skip
+
+
+def _scenarios(station: Station) -> Iterator[Finding]:
+    """Yield the demands and years that no scenario in use judges."""
+    used = {(scenario.horizon, scenario.demand, bool(scenario.fire)) for scenario in station.scenarios
+            if scenario.on}  # fmt: skip
+    for horizon in station.horizons:
+        names = (("horizon", horizon.title or str(horizon.year or "")),)
+        if horizon.year is None:
+            yield _not_checked("horizon_without_year", f"/horizons/{horizon.id}/year", names)
+        for demand, words in DEMANDS:
+            if not any(at == horizon.id and kind == demand for at, kind, _ in used):
+                yield _not_checked("scenario_missing", "/scenarios", (*names, ("demand", words)),
+                                   subject=f"/horizons/{horizon.id}/demand/{demand}")  # fmt: skip
+        if station.fires and not any(at == horizon.id and fire for at, _, fire in used):
+            yield _not_checked("fire_scenario_missing", "/scenarios", names,
+                               subject=f"/horizons/{horizon.id}")  # fmt: skip
+
+
+def _demands(station: Station) -> Iterator[Finding]:
+    """Yield demands that cannot be: night at zero, a smaller demand above a larger one."""
+    for horizon in station.horizons:
+        base = f"/horizons/{horizon.id}/demand"
+        names = (("horizon", horizon.title),)
+        night = horizon.demand.minimum_night
+        if night is not None and night.si == 0:
+            yield Finding(
+                code="minimum_night_zero", severity=Severity.CAUTION, subject=f"{base}/minimum_night",
+                pump_set=None, names=names, basis="physics", mend=(f"{base}/minimum_night",),
+            )  # fmt: skip
+        entered = [(name, words, q.si) for name, words in DEMANDS
+                   if (q := getattr(horizon.demand, name)) is not None]  # fmt: skip
+        for (lower, lower_words, below), (_, upper_words, above) in zip(entered, entered[1:], strict=False):
+            if below > above:
+                yield Finding(
+                    code="demands_out_of_order", severity=Severity.CAUTION, subject=f"{base}/{lower}",
+                    pump_set=None, provided=amount("below", below, D.FLOW),
+                    required=amount("above", above, D.FLOW),
+                    names=(*names, ("lower", lower_words), ("upper", upper_words)), basis="physics",
+                    mend=(f"{base}/{lower}",),
+                )  # fmt: skip
+
+
+def _points(station: Station) -> Iterator[Finding]:
+    """Yield the kinds of point without which a requirement is judged nowhere."""
+    if not station.zone.points:
+        return
+    roles = {point.role for point in station.zone.points}
+    for role, code in (("critical", "no_critical_point"), ("lowest", "no_lowest_point")):
+        if role not in roles:
+            yield _not_checked(code, f"/zone/points/{station.zone.points[0].id}/role", subject="/zone/points")
+
+
+def _under_criteria(station: Station, criteria: dict[str, Criterion]) -> Iterator[Finding]:
+    """Yield the limits typed at a point that ask less than the criteria do."""
+    for point in station.zone.points:
+        for field, key, least in (
+            ("required_pressure", "service-pressure-min", True),
+            ("fire_pressure", "fire-pressure-min", True),
+            ("residual_pressure", "hydrant-residual-min", True),
+            ("highest_pressure", "service-pressure-max", False),
+            ("highest_pressure_abnormal", "service-pressure-max-abnormal", False),
+        ):
+            typed, limit = getattr(point, field), criteria[key].si
+            if typed is None or limit is None:
+                continue
+            weaker = typed.si < limit - 1e-6 * limit if least else typed.si > limit + 1e-6 * limit
+            if weaker:
+                path = f"/zone/points/{point.id}/{field}"
+                yield Finding(
+                    code="point_asks_less", severity=Severity.CAUTION, subject=path, pump_set=None,
+                    criterion=criteria[key].path, provided=amount("typed", typed.si, D.PRESSURE),
+                    required=amount("required", limit, D.PRESSURE),
+                    names=(("point", point.title), ("rule", criteria[key].title)), basis=key,
+                    mend=(path, f"{criteria[key].path}/limit"),
+                )  # fmt: skip
+
+
+def _protections(each: PumpSet) -> Iterator[Finding]:
+    """Yield the protections that are not entered: what they protect is not checked."""
+    base, trips = f"/sets/{each.id}/trips", each.trips
+    for field, value, needed in (
+        ("low_suction_trip", trips.low_suction_trip, True),
+        ("low_suction_delay", trips.low_suction_delay, trips.low_suction_trip is not None),
+        ("high_discharge_trip", trips.high_discharge_trip, True),
+        ("high_discharge_delay", trips.high_discharge_delay, trips.high_discharge_trip is not None),
+    ):
+        if value is None and needed:
+            yield _not_checked("protection_missing", f"{base}/{field}", (("set", each.title),), each.id)
+
+
+def _ratings(station: Station, each: PumpSet) -> Iterator[Finding]:
+    """Yield the parts under shut-off pressure without a rating."""
+    used = {slot.pump for slot in each.slots}
+    for pump in station.pumps:
+        if pump.id in used and pump.rating is None:
+            yield _not_checked("rating_missing", f"/pumps/{pump.id}/rating", (("part", pump.title),), each.id)
+    if each.slots and each.flange_rating is None:
+        yield _not_checked("rating_missing", f"/sets/{each.id}/flange_rating",
+                           (("part", "the manifold"),), each.id)  # fmt: skip
+    for reach in station.discharge_main.reaches:
+        if reach.rating is None:
+            yield _not_checked("rating_missing", f"/discharge_main/reaches/{reach.id}/rating",
+                               (("part", reach.title or "the discharge main"),), each.id)  # fmt: skip
+
+
+def _fires(station: Station, criteria: dict[str, Criterion]) -> Iterator[Reading]:
+    """Yield the duration of each fire against the criteria, which grow with the flow in the US."""
+    for fire in station.fires:
+        if fire.duration is None:
+            continue
+        key = "fire-duration-min"
+        for other, above in (
+            ("fire-duration-above-2500-gpm-min", 2500.0), ("fire-duration-above-3500-gpm-min", 3500.0),
+        ):  # fmt: skip
+            flow = Quantity(value=above, unit="gpm_us").si
+            if criteria[other].si is not None and fire.flow is not None and fire.flow.si > flow * (1 + 1e-9):
+                key = other
+        yield Reading(
+            code="fire_duration_short", severity=Severity.FAIL, subject=f"/fires/{fire.id}/duration",
+            pump_set=None, criterion=criteria[key].path, case=None,
+            provided=amount("duration", fire.duration.si, D.TIME, 0),
+            required=amount("required", criteria[key].si, D.TIME, 0), sense="at_least",
+            mend=(f"/fires/{fire.id}/duration",), names=(("fire", fire.title or "the fire"),),
+            at_limit_share=0.0,
+        )  # fmt: skip

@@ -1,0 +1,210 @@
+"""What every judge of one set needs at hand: the result, the criteria, the running units."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from server.hydraulics.states import State
+from server.station.pump_set import PumpSet
+from server.station.station import Station
+from server.studies.duty_result import DutyResult, PointFacts, SlotFacts
+from server.studies.findings.criteria import Criterion
+from server.studies.shapes import Amount, Case, Path, Region
+from server.units import Dimension
+
+MADE = "made:"  # scenario ids of cases that are always made
+STATED = (State.SOLVED, State.TOP_SPEED, State.LOW_SPEED)  # states in which numbers have meaning
+
+
+@dataclass(frozen=True, eq=False)
+class JudgedSet:
+    """One solved set of a station with its criteria."""
+
+    station: Station
+    criteria: dict[str, Criterion]
+    entered: PumpSet
+    result: DutyResult
+
+    @property
+    def id(self) -> str:
+        """The set's id."""
+        return self.entered.id
+
+    @property
+    def path(self) -> Path:
+        """The set's path."""
+        return f"/sets/{self.entered.id}"
+
+    @property
+    def title(self) -> str:
+        """The set's name."""
+        return self.entered.title or "the set"
+
+    def limit(self, key: str) -> float:
+        """Return the limit of a rule in SI; nan where the profile has none."""
+        value = self.criteria[key].si
+        return float("nan") if value is None else value
+
+    def criterion(self, key: str) -> Path:
+        """Return the path of a rule's row."""
+        return self.criteria[key].path
+
+    def limit_field(self, key: str) -> Path:
+        """Return the path of a rule's limit."""
+        return f"{self.criteria[key].path}/limit"
+
+    def slot_path(self, n: int) -> Path:
+        """Return the path of slot `n`."""
+        return f"{self.path}/slots/{self.result.slots[n].id}"
+
+    def pump_path(self, n: int) -> Path:
+        """Return the path of the pump in slot `n`."""
+        return f"/pumps/{self.result.slots[n].pump}"
+
+    def curve_path(self, n: int) -> Path:
+        """Return the path of the curve in slot `n`."""
+        return f"{self.pump_path(n)}/curves/{self.result.slots[n].curve}"
+
+    def slot_title(self, n: int) -> str:
+        """Return the short name of slot `n`."""
+        return self.result.slots[n].title or f"slot {n + 1}"
+
+    def pump_title(self, n: int) -> str:
+        """Return the name of the pump in slot `n`."""
+        for pump in self.station.pumps:
+            if pump.id == self.result.slots[n].pump and pump.title:
+                return pump.title
+        return self.slot_title(n)
+
+    def point_path(self, p: int) -> Path:
+        """Return the path of point `p`."""
+        return f"/zone/points/{self.result.points[p].id}"
+
+    @cached_property
+    def held_index(self) -> int:
+        """Index of the point whose pressure is held, -1 when it is the discharge gauge."""
+        ids = [point.id for point in self.result.points]
+        return ids.index(self.result.held_point) if self.result.held_point in ids else -1
+
+    @property
+    def lowest_pressure(self) -> float:
+        """Gauge pressure below which there is no water [Pa]; -inf while the altitude is absent."""
+        lowest = self.result.lowest_pressure
+        return -float("inf") if lowest is None else lowest
+
+    def preferred(self, n: int) -> tuple[float, float]:
+        """Return the preferred region of slot `n`, ratios of best-efficiency flow."""
+        speed = self.result.slots[n].specific_speed
+        if speed is not None and speed > self.limit("high-specific-speed"):
+            return (
+                self.limit("preferred-region-low-high-specific-speed"),
+                self.limit("preferred-region-high-high-specific-speed"),
+            )
+        return self.limit("preferred-region-low"), self.limit("preferred-region-high")
+
+    def preferred_key(self, n: int, high: bool) -> str:
+        """Return the rule of the lower or upper end of the preferred region of slot `n`."""
+        speed = self.result.slots[n].specific_speed
+        narrow = speed is not None and speed > self.limit("high-specific-speed")
+        return f"preferred-region-{'high' if high else 'low'}" + (
+            "-high-specific-speed" if narrow else ""
+        )
+
+    def region(self, n: int, share: float) -> Region:
+        """Return where a share of best-efficiency flow stands against the preferred region."""
+        if share != share:
+            return Region.NOT_CHECKED
+        low, high = self.preferred(n)
+        edge = self.limit("region-edge")
+        # the ends themselves are inside; the tolerance is the last digits of a unit's factor
+        if share < low - 1e-9 or share > high + 1e-9:
+            return Region.OUTSIDE
+        return Region.EDGE if share < low + edge or share > high - edge else Region.INSIDE
+
+    def inside(self, n: int, share: float) -> bool:
+        """Return whether a share is inside the preferred region, its edge included."""
+        return self.region(n, share) in (Region.INSIDE, Region.EDGE)
+
+    @cached_property
+    def leg_of_slot(self) -> tuple[str | None, ...]:
+        """Leg id per slot of the result."""
+        legs = {slot.id: slot.leg for slot in self.entered.slots}
+        return tuple(legs.get(slot.id) for slot in self.result.slots)
+
+    @cached_property
+    def stated(self) -> tuple[tuple[int, int], ...]:
+        """Pairs of case and chosen combination in which the numbers have meaning."""
+        result = self.result
+        return tuple(
+            (c, int(k))
+            for c, k in enumerate(result.chosen)
+            if k >= 0 and State(int(result.state[c, k])) in STATED
+        )
+
+    @cached_property
+    def unstated(self) -> tuple[int, ...]:
+        """Cases with no duty: no combination, or one past its curve or under the static head."""
+        with_duty = {c for c, _ in self.stated}
+        # a case whose supply or demand is not entered is no failure: the absent field is named instead
+        return tuple(
+            c
+            for c in range(len(self.result.cases))
+            if c not in with_duty and np.isfinite(self.result.required_head[c])
+        )
+
+    def running(self, c: int, k: int) -> Iterator[int]:
+        """Yield the slots that pass water in case `c` with combination `k`."""
+        flows = self.result.leg_flow[c, k]
+        for n in np.flatnonzero(self.result.combinations[k]):
+            if flows[n] > 0:
+                yield int(n)
+
+    def held_shut(self, c: int, k: int) -> Iterator[int]:
+        """Yield the slots that run in case `c` with combination `k` and pass nothing."""
+        flows = self.result.leg_flow[c, k]
+        asked = self.result.demand[c]
+        for n in np.flatnonzero(self.result.combinations[k]):
+            if flows[n] <= 0 and asked > 0:
+                yield int(n)
+
+    def case(self, c: int) -> Case:
+        """Return case `c`."""
+        return self.result.cases[c]
+
+    def is_kind(self, c: int, demand: str) -> bool:
+        """Return whether case `c` is a scenario of that demand, without a fire."""
+        return not self.result.is_fire[c] and self.demand_of(c) == demand
+
+    def demand_of(self, c: int) -> str | None:
+        """Return the kind of demand of case `c`."""
+        return self.demand_of_scenario.get(self.result.cases[c].scenario)
+
+    @cached_property
+    def demand_of_scenario(self) -> dict[str, str | None]:
+        """Kind of demand by scenario id."""
+        return {scenario.id: scenario.demand for scenario in self.station.scenarios}
+
+    def made_case(self, name: str, supply: int) -> Case:
+        """Return the case of an always-made state at a supply state (0 low, 1 normal, 2 high)."""
+        states = ("low", "normal", "high")
+        return Case(f"{MADE}{name}", self.id, "", states[supply], "aged", None)  # type: ignore[arg-type]
+
+    @property
+    def slots(self) -> tuple[SlotFacts, ...]:
+        """Facts of the slots."""
+        return self.result.slots
+
+    @property
+    def points(self) -> tuple[PointFacts, ...]:
+        """Facts of the points."""
+        return self.result.points
+
+
+def amount(
+    name: str, value: float | None, dimension: Dimension, decimals: int | None = None
+) -> Amount:
+    """Return an amount; nan becomes "could not be had"."""
+    known = None if value is None or value != value else float(value)
+    return Amount(name, known, dimension, decimals)
