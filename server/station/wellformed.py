@@ -228,9 +228,8 @@ class _Check:
         to = node.entry.refers_to if node.entry is not None else None
         if to is not None and given not in self.lists.get(to, ()):
             name = to.rpartition("/")[2]
-            self.add(node, path, given, f"the id of one of the {name}",
-                     f"names {quoted(given)}, which is not among the {name} here.",
-            )  # fmt: skip
+            tail = f"names {quoted(given)}, which is not among the {name} of this station."
+            self.add(node, path, given, f"the id of one of the {name}", tail)
 
     def flow_test(self, node: Node, path: str, test: FlowTest) -> None:
         static, residual = test.static_pressure, test.residual_pressure
