@@ -1,4 +1,4 @@
-"""The root of a falling function, for whole arrays at once."""
+"""The root of a falling function known by its values only, for whole arrays at once."""
 
 from collections.abc import Callable
 
@@ -7,53 +7,67 @@ import numpy as np
 from server.hydraulics.arrays import FloatArray
 from server.hydraulics.errors import SolutionNotFound
 
-MOST_PASSES = 80
-STEP = (
-    4.0 * np.finfo(np.float64).eps
-)  # share of the bracket's end at which a step counts as none
-
-ValueAndSlope = Callable[[FloatArray], tuple[FloatArray, FloatArray]]
+MOST_PASSES = 100
+SECANT_ONLY = 24  # passes after which every other one is a bisection
+ENOUGH = 1e-13  # share of the bracket's larger end below which a step changes nothing
 
 
-def falling_root(function: ValueAndSlope, low: FloatArray, high: FloatArray) -> FloatArray:
-    """Return where a falling function passes zero: Newton, kept inside a shrinking bracket.
+def falling_root(
+    function: Callable[[FloatArray], FloatArray], low: FloatArray, high: FloatArray
+) -> FloatArray:
+    """Return where a falling function passes zero: secants, kept inside a shrinking bracket.
 
     Parameters
     ----------
     function : callable
-        Gives value and slope for an array; falls from `low` to `high`.
+        Gives the value for an array of the shape of the brackets; called only inside them.
     low, high : ndarray, shape (...)
-        Brackets, finite; the function is only called inside them.
+        Brackets, finite.
 
     Returns
     -------
     ndarray, shape (...)
-        Roots, to rounding error of the bracket; nan where the value is below zero at `low`,
+        Roots, to 1e-13 of the bracket's larger end; nan where the value is below zero at `low`,
         above zero at `high`, or not a number.
 
     Raises
     ------
     SolutionNotFound
-        If a root is not reached in 80 passes.
+        If a root is not reached in 100 passes.
+
+    References
+    ----------
+    .. [1] N. Anderson, A. Bjorck, "A new high order method of regula falsi type," BIT, vol. 13,
+       1973, pp. 253-264.
     """
     below, above = np.array(low, dtype=np.float64), np.array(high, dtype=np.float64)
-    at_low, at_high = function(below)[0], function(above)[0]
-    bracketed = (at_low >= 0) & (at_high <= 0)
-    smallest = STEP * np.maximum(np.abs(below), np.abs(above))
-    fall = np.where(at_low > at_high, at_low - at_high, 1.0)
-    x = np.where(bracketed, below + (above - below) * np.clip(at_low / fall, 0.0, 1.0), below)
-    moving = np.array(bracketed)
-    for _ in range(MOST_PASSES):
+    value_below, value_above = function(below), function(above)
+    bracketed = (value_below >= 0) & (value_above <= 0)
+    enough = ENOUGH * np.maximum(np.abs(below), np.abs(above))
+    x, moving = np.where(value_above == 0, above, below), bracketed & (value_below != 0)
+    moving &= value_above != 0
+    for pass_number in range(MOST_PASSES):
         if not moving.any():
             return np.where(bracketed, x, np.nan)
-        value, slope = function(x)
-        positive = value > 0
-        below, above = np.where(positive, x, below), np.where(positive, above, x)
-        newton = x - value / np.where(slope < 0, slope, -np.inf)
-        # strict, so that a root found exactly on a bound of the bracket is kept
-        outside = (newton < below) | (newton > above) | ~(slope < 0)
-        following = np.where(outside, 0.5 * (below + above), newton)
-        moving &= (np.abs(following - x) > smallest) & (value != 0)
-        x = np.where(value == 0, x, following)
+        fall = value_below - value_above
+        share = np.where(moving, value_below, 0.0) / np.where(moving & (fall > 0), fall, 1.0)
+        if pass_number > SECANT_ONLY and pass_number % 2:
+            share = np.full(share.shape, 0.5)
+        ahead = np.where(moving, below + (above - below) * share, x)
+        value = np.where(moving, function(ahead), 0.0)
+        rises, falls = moving & (value > 0), moving & (value < 0)
+        # the end that stays is weighed down, so that the next secant passes over the root
+        value_above = np.where(rises, value_above * _weight(value, value_below, rises), value_above)
+        value_below = np.where(falls, value_below * _weight(value, value_above, falls), value_below)
+        below, value_below = np.where(rises, ahead, below), np.where(rises, value, value_below)
+        above, value_above = np.where(falls, ahead, above), np.where(falls, value, value_above)
+        near = (np.abs(ahead - x) <= enough) | (above - below <= enough) | (value == 0)
+        x, moving = ahead, moving & ~near
     worst = float(np.abs(value[moving]).max())
     raise SolutionNotFound("root of a falling function", int(moving.sum()), worst)
+
+
+def _weight(value: FloatArray, replaced: FloatArray, where: np.ndarray) -> FloatArray:  # type: ignore[type-arg]
+    """Return the factor of Anderson and Bjorck for the end that stays."""
+    ratio = 1.0 - value / np.where(where & (replaced != 0), replaced, np.inf)
+    return np.where(ratio > 0, ratio, 0.5)

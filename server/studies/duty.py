@@ -14,7 +14,7 @@ from server.studies.limits import StudyLimits
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Flags, LoweredSet
 from server.studies.made_cases import made_cases
-from server.studies.set_ends import flow_at_end, zero_flow_speed
+from server.studies.set_ends import at_common_speed, flow_at_end, zero_flow_speed
 from server.studies.set_states import SetStates, legs_of, solve_states
 from server.studies.shapes import Stamp
 from server.studies.system_heads import SystemHeads, point_pressures, system_heads
@@ -90,7 +90,8 @@ def _result(
     grade, pressure = point_pressures(of, entry, heads.zone_loss[:, None, :])
     discharge_pressure = water.weight * (discharge - levels.discharge_gauge_level)
     held = discharge_pressure if levels.point < 0 else pressure[..., levels.point]
-    end = flow_at_end(of, legs, masks)
+    units = at_common_speed(of, legs, combinations)
+    end = flow_at_end(of, units)
     slot = states.slot
     chosen, choice_class = choose(
         of.slots, available=available, known=np.isfinite(heads.required_head), state=states.state,
@@ -150,11 +151,13 @@ def _result(
         suction_branch_velocity=slot["suction_velocity"],
         discharge_branch_velocity=slot["discharge_velocity"],
         pressure_per_speed=water.weight * states.head_per_per_cent,
-        zero_flow_speed=zero_flow_speed(of, legs, masks, cases.draw),
+        zero_flow_speed=zero_flow_speed(of, units, cases.draw),
         flow_at_end=np.broadcast_to(end, shape),
         energy_residual=states.energy_residual,
         mass_residual=states.mass_residual,
-        made=made_cases(of, limits, cases, heads, legs, masks, states, pressure, chosen, end),
+        made=made_cases(
+            of, limits, cases, heads, legs, units, masks, states, pressure, chosen, end
+        ),
         needs_missing=of.needs_missing,
     )
     _lock(result)

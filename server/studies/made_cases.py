@@ -12,7 +12,7 @@ from server.studies.duty_result import AfterTrip, Handover, MadeCases, StationOf
 from server.studies.firm_capacity import firm_capacity
 from server.studies.limits import StudyLimits
 from server.studies.lowering.lowered import Floats, Indices, LoweredSet
-from server.studies.set_ends import preferred_flows
+from server.studies.set_ends import CommonSpeed, preferred_flows
 from server.studies.set_states import SetStates
 from server.studies.system_heads import SystemHeads, point_pressures, required_head
 
@@ -21,7 +21,7 @@ LAST = 10**6  # order of a horizon after all: every slot is installed
 
 def made_cases(
     of: LoweredSet, limits: StudyLimits, cases: Cases, heads: SystemHeads,
-    legs: Sequence[LegCurve], masks: Sequence[Mask], states: SetStates, pressure: Floats,
+    legs: Sequence[LegCurve], units: CommonSpeed, masks: Sequence[Mask], states: SetStates, pressure: Floats,
     chosen: Indices, flow_at_end: Floats,
 ) -> MadeCases:  # fmt: skip
     """Return the made cases of a set whose scenario cases are solved."""
@@ -29,7 +29,7 @@ def made_cases(
         zero_flow=zero_flow(of, masks),
         station_off=station_off(of, cases, heads),
         after_trip=after_trip(of, cases, masks, states, pressure, chosen, flow_at_end),
-        handover=handover(of, legs, masks),
+        handover=handover(of, units, masks),
         firm_capacity=firm_capacity(of, limits, legs),
     )
 
@@ -126,10 +126,10 @@ def after_trip(
     )  # fmt: skip
 
 
-def handover(of: LoweredSet, legs: Sequence[LegCurve], masks: Sequence[Mask]) -> Handover:
+def handover(of: LoweredSet, units: CommonSpeed, masks: Sequence[Mask]) -> Handover:
     """Return the flows between one number of units and the next, on aged pipes where known."""
     aged = of.main.knows("aged") and of.suction_line.knows("aged")
-    flows = preferred_flows(of, legs, masks, aged, of.supply.shift)
+    flows = preferred_flows(of, units, aged, of.supply.shift)
     chain = steps(of, masks)
     fewer, more = chain[:-1], chain[1:]
     return Handover(
