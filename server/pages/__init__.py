@@ -1,0 +1,20 @@
+"""Routes, forms and view models; one file a page, the file named as the page."""
+
+from importlib import import_module
+
+from fastapi import APIRouter
+
+# Every module that serves an address, in the order of matching. Each has `router`.
+PAGES: tuple[str, ...] = (
+    "server.vendor",
+    "server.pages.health",
+    "server.pages.api",
+)
+
+
+def routers() -> tuple[APIRouter, ...]:
+    """Return the router of each page module, in the order of `PAGES`.
+
+    The modules are imported here and not above, because each of them imports this package.
+    """
+    return tuple(import_module(name).router for name in PAGES)

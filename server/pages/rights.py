@@ -1,0 +1,45 @@
+"""The right that each address needs, and who asks for it.
+
+Until there are people, whoever reaches the program is the local actor, who has every right;
+only loopback addresses are served.
+"""
+
+from dataclasses import dataclass
+from typing import Any, Literal
+
+from fastapi import Depends, HTTPException, Request
+
+Right = Literal["read", "edit", "check", "own", "public"]
+RIGHTS: tuple[Right, ...] = ("read", "edit", "check", "own", "public")
+LOCAL = "local"
+
+
+def actor_of(request: Request) -> str:
+    """Return the name under which what this request changes is stored."""
+    return LOCAL
+
+
+def rights_of(actor: str) -> frozenset[Right]:
+    """Return what an actor may do."""
+    return frozenset(RIGHTS) if actor == LOCAL else frozenset(("public",))
+
+
+@dataclass(frozen=True, slots=True)
+class Needs:
+    """The check of one right, run before the route."""
+
+    right: Right
+
+    def __call__(self, request: Request) -> str:
+        """Return the actor; 403 if the right is missing."""
+        actor = actor_of(request)
+        if self.right not in rights_of(actor):
+            raise HTTPException(
+                403, f"This needs the right to {self.right}, which {actor} has not."
+            )
+        return actor
+
+
+def needs(right: Right) -> Any:  # FastAPI gives its dependencies no type of their own
+    """Return the declaration, for a route's `dependencies`, that the route needs `right`."""
+    return Depends(Needs(right))

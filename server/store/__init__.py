@@ -1,0 +1,1 @@
+"""What is kept: stations, their revisions and documents, in one SQLite file."""
