@@ -62,7 +62,7 @@ class Panel:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Series:
-    """A line; `name` stands at it where `named_at` (index of a point) is given."""
+    """A line; its name stands at it where `named` is set, and shows on hover everywhere."""
 
     key: str
     name: str
@@ -71,7 +71,7 @@ class Series:
     y: Floats
     panel: int = 0
     dash: int = 0  # how many pumps run, or any other small number that the dash tells apart
-    named_at: int | None = None
+    named: bool = False
 
 
 @dataclass(frozen=True, slots=True, eq=False)

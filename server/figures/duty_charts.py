@@ -129,7 +129,7 @@ def _named(lines: list[Series], key: str) -> list[Series]:
         named.append(
             Series(
                 line.key, name if is_longest else line.name, line.role, line.x, line.y, line.panel,
-                line.dash, int(line.x.size * 0.6) if is_longest else None,
+                line.dash, is_longest,
             )
         )  # fmt: skip
     return named

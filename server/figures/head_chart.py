@@ -65,8 +65,8 @@ def head_series(curves: DutyCurves, judged: JudgedSet, chosen: str | None) -> tu
         name = combination_words(judged, running.combination)
         series.append(
             Series(
-                f"top-{running.combination}", f"{name}, top speed", role, running.flow, running.head,
-                dash=numbers.get(running.combination, 0), named_at=int(running.flow.size * 0.72),
+                f"top-{running.combination}", name, role, running.flow, running.head,
+                dash=numbers.get(running.combination, 0), named=True,
             )
         )  # fmt: skip
     for held in curves.held:
@@ -82,7 +82,7 @@ def head_series(curves: DutyCurves, judged: JudgedSet, chosen: str | None) -> tu
     ):
         if np.any(np.isfinite(required)):
             series.append(
-                Series(key, name, role, curves.flow, required, named_at=int(curves.flow.size * 0.86))
+                Series(key, name, role, curves.flow, required, named=True)
             )
     return tuple(series)
 

@@ -7,6 +7,9 @@ or the one that lies on the fewest line points when it cannot be free of lines.
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+import numpy as np
+from numpy.typing import NDArray
+
 # mean advance of the page's sans-serif, of its size; bold is a little wider
 LETTER = 0.56
 
@@ -29,17 +32,24 @@ class Box:
             and other.top < self.bottom + gap
         )
 
-    def holds(self, x: float, y: float) -> bool:
-        """Return whether a point lies inside."""
-        return self.left <= x <= self.right and self.top <= y <= self.bottom
+
+@dataclass(frozen=True, slots=True)
+class Wanted:
+    """A name that wants a place: at its point, or at any of several points of its line."""
+
+    text: str
+    points: tuple[tuple[float, float], ...]  # [px]
+    farthest: int = 15  # steps away from the point at most
+    line: int = -1  # number of the line that it names: no other line may be nearer
 
 
 @dataclass(frozen=True, slots=True)
 class Placed:
-    """A name at its place: middle of its box against its point, in pixels."""
+    """A name at its place: middle of its box, and which of its points it stands at."""
 
     x: float
     y: float
+    which: int
     box: Box
 
 
@@ -49,12 +59,11 @@ def text_width(text: str, size: float, bold: bool = False) -> float:
 
 
 def place_names(
-    points: Sequence[tuple[float, float]],
-    names: Sequence[str],
+    names: Sequence[Wanted],
     *,
     size: float,
     bounds: Box,
-    lines: Sequence[tuple[float, float]] = (),
+    lines: NDArray[np.float64],
     taken: Sequence[Box] = (),
     marker: float = 6.0,
 ) -> tuple[Placed, ...]:
@@ -62,18 +71,18 @@ def place_names(
 
     Parameters
     ----------
-    points : sequence of (x, y)
-        Points that are named. [px]
-    names : sequence of str
-        Their names, one line each.
+    names : sequence of Wanted
+        Names with their points, one line of text each; points before lines, so that the names that
+        cannot move come first.
     size : float
         Size of the letters. [px]
     bounds : Box
         No name reaches out of it. [px]
-    lines : sequence of (x, y)
-        Points of the lines of the chart: a place on fewer of them is better. [px]
+    lines : ndarray, shape (n, 3)
+        Points of the lines of the chart, x and y [px], and the number of the line: a place on fewer
+        points is better, and a line's name is not nearer to another line.
     taken : sequence of Box
-        Boxes of texts that already stand. [px]
+        Boxes of texts and points that already stand. [px]
     marker : float
         Half of a marker's width, kept free round every point. [px]
 
@@ -82,32 +91,58 @@ def place_names(
     tuple of Placed
         In the order of the names.
     """
-    markers = [Box(x - marker, y - marker, x + marker, y + marker) for x, y in points]
-    standing = list(taken)
-    placed: list[Placed | None] = [None] * len(names)
-    order = sorted(range(len(names)), key=lambda i: points[i][0])
+    single = [name.points[0] for name in names if len(name.points) == 1]
+    markers = [Box(x - marker, y - marker, x + marker, y + marker) for x, y in single]
+    standing = [*taken, *markers]
+    placed: dict[int, Placed] = {}
+    order = sorted(range(len(names)), key=lambda i: (len(names[i].points) > 1, names[i].points[0][0]))
     for index in order:
-        x, y = points[index]
-        wide, high = text_width(names[index], size, bold=True) + 4, size * 1.25
-        best: tuple[float, Placed] | None = None
-        for step in range(1, 16):
-            for side in (1, -1):
-                for shift in (0.0, 0.5, -0.5, 0.9, -0.9):
-                    middle_x = min(max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2)
-                    middle_y = y + side * (marker + high * (0.2 + 0.75 * step))
-                    box = Box(middle_x - wide / 2, middle_y - high / 2, middle_x + wide / 2, middle_y + high / 2)
-                    if box.top < bounds.top or box.bottom > bounds.bottom:
-                        continue
-                    if any(box.meets(other, 1.0) for other in standing):
-                        continue
-                    if any(box.meets(other) for other in markers):
-                        continue
-                    crossed = sum(box.holds(px, py) for px, py in lines)
-                    cost = crossed * 1.5 + step + (0.3 if side < 0 else 0.0) + abs(shift)
-                    if best is None or cost < best[0]:
-                        best = cost, Placed(middle_x, middle_y, box)
-        if best is None:  # no room at all: under the point, so that no name is lost
-            best = 0.0, Placed(x, y + marker + high, Box(x - wide / 2, y, x + wide / 2, y + high))
-        standing.append(best[1].box)
-        placed[index] = best[1]
-    return tuple(place for place in placed if place is not None)
+        place = _place(names[index], size, bounds, lines, standing, marker)
+        standing.append(place.box)
+        placed[index] = place
+    return tuple(placed[index] for index in range(len(names)))
+
+
+def _place(
+    name: Wanted, size: float, bounds: Box, lines: NDArray[np.float64], standing: Sequence[Box],
+    marker: float,
+) -> Placed:  # fmt: skip
+    wide, high = text_width(name.text, size, bold=True) + 4, size * 1.25
+    best: tuple[float, Placed] | None = None
+    for which, (x, y) in enumerate(name.points):
+        for step in range(1, name.farthest + 1):
+            for side, shift in _TRIES:
+                middle_x = min(max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2)
+                middle_y = y + side * (high * (0.4 + 0.22 * step) if name.line >= 0 else marker + high * (0.2 + 0.75 * step))
+                box = Box(middle_x - wide / 2, middle_y - high / 2, middle_x + wide / 2, middle_y + high / 2)
+                if box.top < bounds.top or box.bottom > bounds.bottom:
+                    continue
+                if any(box.meets(other, 1.0) for other in standing):
+                    continue
+                cost = step + (0.3 if side < 0 else 0.0) + abs(shift) + 0.15 * which
+                if best is not None and cost >= best[0]:
+                    continue
+                cost += _crowding(box, lines, name.line)
+                if best is None or cost < best[0]:
+                    best = cost, Placed(middle_x, middle_y, which, box)
+    if best is None:  # no room at all: under the point, so that no name is lost
+        x, y = name.points[0]
+        return Placed(x, y + marker + high, 0, Box(x - wide / 2, y, x + wide / 2, y + high))
+    return best[1]
+
+
+def _crowding(box: Box, lines: NDArray[np.float64], own: int) -> float:
+    """Return how much a box lies on lines, and whether a line's name would seem another's."""
+    if not lines.size:
+        return 0.0
+    x, y, line = lines.T
+    aside = np.maximum(np.maximum(box.left - x, x - box.right), 0.0)
+    above = np.maximum(np.maximum(box.top - y, y - box.bottom), 0.0)
+    away = np.hypot(aside, above)
+    cost = 1.5 * float(np.count_nonzero(away == 0))
+    if own >= 0 and int(line[np.argmin(away)]) != own:
+        cost += 12.0
+    return cost
+
+
+_TRIES = tuple((side, shift) for side in (1, -1) for shift in (0.0, 0.5, -0.5, 0.9, -0.9))

@@ -75,7 +75,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
     pressure = None
     if entry is not None and level is not None:
         pressure = (entry - level) * result.density * 9.80665
-    stops.append(StripStop("End of the main", level, entry, pressure, True))
+    stops.append(StripStop("End of the main" if level is not None else "", level, entry, pressure, True))
     stops.extend(_points(result, case, combination, solved))
     lift = _number(result.station_head[case, combination]) if solved else None
     running = np.flatnonzero(result.combinations[combination]) if solved else np.array([], dtype=np.intp)

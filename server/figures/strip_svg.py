@@ -11,7 +11,7 @@ from server.units import Dimension, View, shown_with_unit
 WIDTH, TOP, BASE, GROUND = 880.0, 16.0, 128.0, 134.0
 LEFT, RIGHT = 46.0, 46.0
 LETTERS = 12.0
-LINE = 18  # letters of a name on one line
+LINE = 15  # letters of a name on one line
 PUMPS_TAKE = 1.75  # columns between the two manifolds: the lift and its words stand there
 
 
@@ -40,6 +40,8 @@ def strip_svg(strip: GradeStrip, view: View, title: str, *, palette: Mapping[str
     if scale is not None:
         parts.append(_drawing(strip, columns, scale, view, palette))
     for index, (stop, x, lines) in enumerate(zip(strip.stops, columns, names, strict=True)):
+        if not stop.name:  # a bend of the grade line at a level that nobody gave
+            continue
         anchor = "start" if index == 0 else "end" if index == len(columns) - 1 else "middle"
         at = x - 6 if index == 0 else x + 6 if anchor == "end" else x
         weight = ' font-weight="650"'

@@ -28,13 +28,13 @@ def supply_chart(curve: SupplyCurve, station: Station, view: View) -> Chart:
     names = {scenario.id: scenario.title or "Scenario" for scenario in station.scenarios}
     series = [
         Series(f"supply-{state}", f"{state} supply", ROLES[state], curve.flow, curve.pressure[i],
-               named_at=int(curve.flow.size * 0.30))
+               named=True)
         for i, state in enumerate(SUPPLY_STATES)
         if np.any(np.isfinite(curve.pressure[i]))
     ]  # fmt: skip
     series.append(
         Series("limit", "least pressure of the main", Role.LIMIT, curve.flow[[0, -1]],
-               np.array([curve.limit, curve.limit]), named_at=0)
+               np.array([curve.limit, curve.limit]), named=True)
     )  # fmt: skip
     markers: list[Marker] = []
     for test in curve.tests:

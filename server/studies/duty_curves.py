@@ -8,15 +8,15 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from server.hydraulics.affinity import npsh_required, shaft_power
-from server.hydraulics.common_speed import CommonSpeedSet, common_speed_set
-from server.hydraulics.leg_curve import LegCurve, leg_curve
-from server.hydraulics.water import GRAVITY
+from server.hydraulics.leg_curve import LegCurve
+from server.hydraulics.parallel import leg_flows
+from server.hydraulics.states import State
 from server.station.station import Station
 from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.limits import limits_of
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
+from server.studies.set_states import legs_of, solve_states
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
 
 READINGS = 121  # points of a curve
@@ -72,15 +72,6 @@ class DutyCurves:
     along_state: SupplyState
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Kinds:
-    """A combination by kinds: legs, how many of each, index of a slot of each."""
-
-    legs: tuple[LegCurve, ...]
-    count: tuple[int, ...]
-    slots: tuple[int, ...]
-
-
 def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low") -> DutyCurves:
     """Return the curves of a solved set.
 
@@ -101,9 +92,9 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     lowered = lower(station, result.pump_set, limits_of(station))
     if isinstance(lowered, NotSolved):
         raise ValueError(f"set {result.pump_set} of the result is not solved in this document")
+    legs = legs_of(lowered)
     drawn = _drawn(lowered, result)
-    top = lowered.control.highest_speed
-    sets = tuple(_running_set(lowered, k, kinds, top) for k, kinds in drawn)
+    sets = tuple(_running_set(lowered, legs, result, k) for k in drawn)
     furthest = max((float(s.flow[-1]) for s in sets), default=0.0)
     asked = float(np.nanmax(result.demand)) if result.demand.size else 0.0
     grid = np.linspace(0.0, max(furthest, 1.1 * asked, 1e-3), READINGS)
@@ -112,12 +103,12 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     along_state = state if state in known else known[0]
     return DutyCurves(
         sets=sets,
-        held=_held(lowered, result),
+        held=_held(lowered, legs, result),
         flow=grid,
         required_low=_required(lowered, grid, "low", pipes),
         required_high=_required(lowered, grid, "high", pipes),
         pipes=pipes,
-        along=tuple(_along(lowered, k, kinds, along_state, pipes) for k, kinds in drawn),
+        along=_along(lowered, legs, result, drawn, sets, along_state, pipes),
         along_state=along_state,
     )
 
@@ -128,85 +119,81 @@ def _pipes(lowered: LoweredSet, result: DutyResult) -> PipeAge:
     return "aged" if lowered.main.knows("aged") and 2 * aged >= len(result.cases) else "new"
 
 
-def _kinds(lowered: LoweredSet, result: DutyResult, combination: int) -> _Kinds:
-    slots: dict[int, list[int]] = {}
-    for n in np.flatnonzero(result.combinations[combination]):
-        slots.setdefault(lowered.slots[int(n)].unit, []).append(int(n))
-    legs = tuple(leg_curve(lowered.units[u].curve, loss=lowered.units[u].leg_coefficient) for u in slots)
-    return _Kinds(legs, tuple(len(s) for s in slots.values()), tuple(s[0] for s in slots.values()))
+def _units(lowered: LoweredSet, result: DutyResult, combination: int) -> list[int]:
+    """Return the unit of each slot that runs."""
+    return [lowered.slots[int(n)].unit for n in np.flatnonzero(result.combinations[combination])]
 
 
-def _drawn(lowered: LoweredSet, result: DutyResult) -> tuple[tuple[int, _Kinds], ...]:
+def _drawn(lowered: LoweredSet, result: DutyResult) -> tuple[int, ...]:
     """Return the combinations that are drawn, one of each make-up: those chosen, and fewer of them."""
     chosen = {int(k) for k in result.chosen if k >= 0}
     usable = {int(k) for k in np.flatnonzero(result.available.any(axis=0))} | chosen
     most = max((int(result.combinations[k].sum()) for k in chosen), default=2)
-    found: dict[tuple[tuple[int, int], ...], tuple[int, _Kinds]] = {}
+    found: dict[tuple[int, ...], int] = {}
     for k in sorted(usable, key=lambda k: (k not in chosen, k)):
-        units = [lowered.slots[int(n)].unit for n in np.flatnonzero(result.combinations[k])]
-        make_up = tuple(sorted((u, units.count(u)) for u in set(units)))
-        if units and len(units) <= most and make_up not in found:
-            found[make_up] = k, _kinds(lowered, result, k)
-    ordered = sorted(found.values(), key=lambda item: _end_flow(item[1]))
-    return tuple(ordered[-MOST_CURVES:])
+        units = _units(lowered, result, k)
+        if units and len(units) <= most:
+            found.setdefault(tuple(sorted(units)), k)
+
+    def end(k: int) -> float:
+        return sum(lowered.units[u].curve.last_flow for u in _units(lowered, result, k))
+
+    return tuple(sorted(found.values(), key=end)[-MOST_CURVES:])
 
 
-def _end_flow(kinds: _Kinds) -> float:
-    return sum(n * leg.last_flow for n, leg in zip(kinds.count, kinds.legs, strict=True))
+def _at_speed(legs: list[LegCurve], speed: float) -> tuple[Floats, Floats]:
+    """Return flow and head of legs together, from no flow to the first leg's last row."""
+    square = speed * speed
+    high, low = max(leg.peak_head for leg in legs) * square, max(leg.last_head for leg in legs) * square
+    # flow grows with the root of the head given up: equal steps in flow need squared steps in head
+    head = high - (high - low) * np.linspace(0.0, 1.0, READINGS) ** 2
+    flows = leg_flows(head, legs=legs, speeds=speed)
+    usable = ~np.any(flows.state == State.END_OF_CURVE, axis=-1)
+    return flows.flow.sum(axis=-1)[usable], head[usable]
 
 
-def _common(kinds: _Kinds) -> CommonSpeedSet:
-    return common_speed_set(kinds.legs, kinds.count)
+def _running_set(
+    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult, combination: int
+) -> RunningSet:
+    units = _units(lowered, result, combination)
+    flow, head = _at_speed([legs[u] for u in units], lowered.control.highest_speed)
+    slots = [int(n) for n in np.flatnonzero(result.combinations[combination])]
+    small = all(lowered.slots[n].facts.role == "jockey" for n in slots)
+    outline = _preferred(lowered, legs, slots) if len(set(units)) == 1 else (np.empty(0), np.empty(0))
+    return RunningSet(combination, len(units), small, flow, head, *outline)
 
 
-def _running_set(lowered: LoweredSet, combination: int, kinds: _Kinds, top: float) -> RunningSet:
-    together = _common(kinds)
-    flow = np.linspace(0.0, float(np.max(together.last_flow)) * top, READINGS)
-    head = together.head(flow, speed=top)
-    outline = _preferred(lowered, kinds, top)
-    small = all(lowered.slots[n].facts.role == "jockey" for n in kinds.slots)
-    known = np.isfinite(head)
-    return RunningSet(
-        combination, sum(kinds.count), small, flow[known], head[known], outline[0], outline[1]
-    )
-
-
-def _preferred(lowered: LoweredSet, kinds: _Kinds, top: float) -> tuple[Floats, Floats]:
-    """Return the outline of the preferred region between its two loci, equal units only."""
-    empty = np.empty(0)
-    facts = lowered.slots[kinds.slots[0]].facts
-    if len(kinds.legs) != 1 or facts.best_efficiency_flow is None:
-        return empty, empty
-    leg, count = kinds.legs[0], kinds.count[0]
-    low, high = (facts.best_efficiency_flow * end for end in lowered.slots[kinds.slots[0]].preferred)
-    high = min(high, leg.last_flow)
-    bottom = lowered.control.lowest_speed
+def _preferred(
+    lowered: LoweredSet, legs: tuple[LegCurve, ...], slots: list[int]
+) -> tuple[Floats, Floats]:
+    """Return the outline of the preferred region of equal units, between its two loci."""
+    slot, count = lowered.slots[slots[0]], len(slots)
+    leg, best = legs[slot.unit], slot.facts.best_efficiency_flow
+    if best is None:
+        return np.empty(0), np.empty(0)
+    low, high = best * slot.preferred[0], min(best * slot.preferred[1], leg.last_flow)
     if not leg.first_flow <= low < high:
-        return empty, empty
-    speeds = np.linspace(bottom, top, 25)
-    across = np.linspace(low, high, 25)
+        return np.empty(0), np.empty(0)
+    top, bottom = lowered.control.highest_speed, lowered.control.lowest_speed
+    speeds, across = np.linspace(bottom, top, 25), np.linspace(low, high, 25)
     # up the left locus, along the top speed, down the right locus, back along the lowest speed
     x = np.concatenate([np.full(25, low), across, np.full(25, high), across[::-1]])
     s = np.concatenate([speeds, np.full(25, top), speeds[::-1], np.full(25, bottom)])
-    return count * x * s, s**2 * leg.head(x)
+    return np.asarray(count * x * s), np.asarray(s**2 * leg.head(x))
 
 
-def _held(lowered: LoweredSet, result: DutyResult) -> tuple[HeldCurve, ...]:
-    """Return the curve at the speed of each shown case, where units share one speed."""
+def _held(
+    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult
+) -> tuple[HeldCurve, ...]:
+    """Return the curve at the speed of each shown case."""
     curves = []
     for case in np.flatnonzero(result.shown):
         k = int(result.chosen[case])
-        if k < 0:
-            continue
-        kinds = _kinds(lowered, result, k)
-        speed = float(result.speed[case, k, kinds.slots[0]])
-        if not np.isfinite(speed):
-            continue
-        together = _common(kinds)
-        flow = np.linspace(0.0, float(np.max(together.last_flow)) * speed, READINGS // 2)
-        head = together.head(flow, speed=speed)
-        known = np.isfinite(head)
-        curves.append(HeldCurve(int(case), flow[known], head[known]))
+        running = np.flatnonzero(result.combinations[max(k, 0)])
+        speed = float(result.speed[case, max(k, 0), running[0]]) if running.size else np.nan
+        if k >= 0 and np.isfinite(speed):
+            together = [legs[u] for u in _units(lowered, result, k)]
+            curves.append(HeldCurve(int(case), *_at_speed(together, speed)))
     return tuple(curves)
 
 
@@ -235,38 +222,36 @@ def _required(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: Pipe
 
 
 def _along(
-    lowered: LoweredSet, combination: int, kinds: _Kinds, state: SupplyState, pipes: PipeAge
-) -> AlongControl:
-    together = _common(kinds)
-    top, bottom = lowered.control.highest_speed, lowered.control.lowest_speed
-    flow = np.linspace(0.0, float(np.max(together.last_flow)) * top, READINGS)
-    head = _required(lowered, flow, state, pipes)
-    speed = together.speed(flow, head=head)
-    can = np.isfinite(speed) & (speed <= top) & (speed >= bottom) & (flow > 0)
-    s = np.where(can, speed, np.nan)
-    each = together.leg_flows(flow, head=head, speed=s)
-    suction = _suction_grade(lowered, flow, state, pipes)
-    useful, power = np.zeros(flow.shape), np.zeros(flow.shape)
-    required = np.full(flow.shape, np.nan)
-    available = np.full(flow.shape, np.nan)
-    for n, leg_flow in enumerate(each):
-        unit = lowered.units[lowered.slots[kinds.slots[n]].unit]
-        q = np.where(can & (leg_flow > 0), leg_flow, np.nan)
-        pump_head = head + unit.leg_coefficient * q**2
-        useful += kinds.count[n] * lowered.water.weight * np.nan_to_num(q * pump_head)
-        power += kinds.count[n] * shaft_power(unit.curve, q, speed=s, density=lowered.water.density)
-        needs = npsh_required(unit.curve, q, speed=s, exponent=unit.npsh_exponent)
-        has = _npsh_available(lowered, suction, unit.suction_coefficient * q**2)
-        required, available = np.fmax(required, needs), np.fmin(available, has)
-    with np.errstate(invalid="ignore", divide="ignore"):
-        efficiency = np.where(power > 0, useful / power, np.nan)
-    return AlongControl(
-        combination, flow, s, efficiency, np.where(can, power, np.nan), available, required
-    )
+    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult, drawn: tuple[int, ...],
+    sets: tuple[RunningSet, ...], state: SupplyState, pipes: PipeAge,
+) -> tuple[AlongControl, ...]:  # fmt: skip
+    """Return each drawn combination where it holds the set point, solved as the duty is."""
+    curves = []
+    for k, running in zip(drawn, sets, strict=True):
+        flow = np.linspace(0.0, float(running.flow[-1]), READINGS)
+        solved = solve_states(
+            lowered, legs, result.combinations[k][None, :], flow,
+            _required(lowered, flow, state, pipes),
+        )  # fmt: skip
+        held = (solved.state[:, 0] == State.SOLVED) & (flow > 0)
+        on = result.combinations[k]
+        slot = {name: np.where(held[:, None], values[:, 0, on], np.nan) for name, values in solved.slot.items()}
+        power = slot["shaft_power"].sum(axis=1)
+        useful = (slot["shaft_power"] * slot["efficiency"]).sum(axis=1)
+        suction = _suction_grade(lowered, flow, state, pipes)
+        available = _npsh_available(lowered, suction[:, None] - slot["suction_loss"])
+        curves.append(
+            AlongControl(
+                combination=k, flow=flow, speed=slot["speed"][:, 0],
+                efficiency=np.divide(useful, power, out=np.full(flow.shape, np.nan), where=power > 0),
+                shaft_power=power, npsh_available=available.min(axis=1),
+                npsh_required=slot["npsh_required"].max(axis=1),
+            )
+        )  # fmt: skip
+    return tuple(curves)
 
 
-def _npsh_available(lowered: LoweredSet, suction_grade: Floats, branch_loss: Floats) -> Floats:
+def _npsh_available(lowered: LoweredSet, eye_grade: Floats) -> Floats:
     water = lowered.water
-    absolute = (water.atmosphere - water.vapour_pressure) / (water.density * GRAVITY)
-    return np.asarray(absolute + suction_grade - branch_loss - lowered.eye_level)
-
+    absolute = (water.atmosphere - water.vapour_pressure) / water.weight
+    return np.asarray(absolute + eye_grade - lowered.eye_level)

@@ -1,0 +1,144 @@
+"use strict";
+// Fields that save themselves: one edit at a time in order, nothing typed is ever lost.
+// The server answers with fragments that name their places; this file decides which may be put there.
+(function () {
+  const station = () => document.querySelector("[data-station]")?.dataset.station || "";
+  const key = (path) => `firmhead:${station()}:${path}`;
+  const controlOf = (form) => form.querySelector("[data-control]");
+  const pathOf = (form) => form.querySelector("[name=path]").value;
+  const formOf = (el) => el && el.closest ? el.closest("form.edit") : null;
+
+  // what a control showed when it was drawn: a select has no defaultValue of its own
+  function drawn(control) {
+    if (control.tagName !== "SELECT") return control.defaultValue;
+    const chosen = [...control.options].find((option) => option.defaultSelected) || control.options[0];
+    return chosen ? chosen.value : "";
+  }
+  const isDirty = (control) => control.value !== drawn(control);
+
+  // ---- keeping what was refused, over a reload and over a lost connection
+  function keep(form, text, sentence) {
+    try { sessionStorage.setItem(key(pathOf(form)), JSON.stringify({ text, sentence })); } catch { /* full or barred: the page still holds it */ }
+  }
+  function forget(path) {
+    try { sessionStorage.removeItem(key(path)); } catch { /* nothing was kept */ }
+  }
+  function kept(path) {
+    try { return JSON.parse(sessionStorage.getItem(key(path)) || "null"); } catch { return null; }
+  }
+  function showRefusal(form, sentence) {
+    const field = form.closest(".field"), control = controlOf(form);
+    if (!field || !control) return;
+    field.classList.add("refused");
+    control.setAttribute("aria-invalid", "true");
+    let line = form.querySelector(".refusal");
+    if (!line) {
+      line = document.createElement("p");
+      line.className = "refusal";
+      line.id = `${control.id}--error`;
+      (form.querySelector(".entry") || control).after(line);
+      control.setAttribute("aria-describedby", [line.id, control.getAttribute("aria-describedby")].filter(Boolean).join(" "));
+    }
+    line.textContent = sentence;
+  }
+  function putBack(root) {
+    for (const form of root.querySelectorAll("form.edit")) {
+      const control = controlOf(form), was = control && kept(pathOf(form));
+      if (!was || control.disabled) continue;
+      if (form.closest(".field").classList.contains("refused")) continue;
+      control.value = was.text;
+      showRefusal(form, was.sentence);
+    }
+  }
+
+  // ---- sending
+  document.addEventListener("htmx:configRequest", (event) => {
+    const form = event.target.closest("form.edit, form.act");
+    if (!form) return;
+    const revision = document.getElementById("revision");
+    if (revision) event.detail.parameters.set("base", revision.dataset.number);
+    const control = controlOf(form);
+    if (control) form.dataset.sent = control.value;
+  });
+  document.addEventListener("htmx:beforeRequest", (event) => {
+    const form = formOf(event.target), control = form && controlOf(form);
+    if (!control) return;
+    const button = event.detail.requestConfig.triggeringEvent?.submitter;
+    const another = button && (button.name !== "op" || button.value !== "set");
+    // Enter fires change and submit; the second has nothing new to say
+    if (!another && !isDirty(control)) event.preventDefault();
+  });
+
+  // ---- receiving
+  let typed = new Map();
+  document.addEventListener("htmx:oobBeforeSwap", (event) => {
+    const target = event.detail.target;
+    if (!target) return;
+    if (target.matches(".field")) {
+      const form = target.querySelector("form.edit"), control = form && controlOf(form);
+      // typed in it since it was sent: the newer text stays, and saves itself when it is left
+      if (control && isDirty(control) && form.dataset.sent !== control.value) event.detail.shouldSwap = false;
+      return;
+    }
+    for (const form of target.querySelectorAll("form.edit")) {
+      const control = controlOf(form);
+      if (control && isDirty(control) && form.dataset.sent !== control.value) typed.set(control.id, control.value);
+    }
+  });
+  document.addEventListener("htmx:oobAfterSwap", (event) => {
+    for (const [id, text] of typed) {
+      const control = document.getElementById(id);
+      if (control) control.value = text;
+    }
+    typed = new Map();
+    const root = event.detail.target && event.detail.target.isConnected ? event.detail.target : document;
+    for (const field of [...root.querySelectorAll(".field"), ...(root.matches && root.matches(".field") ? [root] : [])]) remember(field);
+    putBack(document);
+    document.dispatchEvent(new CustomEvent("firmhead:drawn"));
+  });
+  // a field that the server refused is kept over a reload until it is mended
+  function remember(field) {
+    const form = field.querySelector("form.edit"), control = form && controlOf(form);
+    const line = control && form.querySelector(".refusal .hidden");
+    if (line) keep(form, control.value, line.parentElement.textContent.replace(/^Error:\s*/, "").trim());
+  }
+  document.addEventListener("firmhead:saved", (event) => forget(event.detail.path));
+  function unsent(event, sentence) {
+    const form = formOf(event.target), control = form && controlOf(form);
+    if (!control) return;
+    keep(form, control.value, sentence);
+    showRefusal(form, sentence);
+  }
+  document.addEventListener("htmx:sendError", (event) => unsent(event, "Not saved: Firmhead does not answer. What you typed stays here; change it or press Enter to send it again."));
+  document.addEventListener("htmx:responseError", (event) => unsent(event, "Not saved: the server could not take it. What you typed stays here; press Enter to send it again."));
+
+  window.addEventListener("beforeunload", (event) => {
+    const open = [...document.querySelectorAll("form.edit")].some((form) => {
+      const control = controlOf(form);
+      return control && !control.disabled && isDirty(control) && !kept(pathOf(form)) && form.dataset.sent !== control.value && document.activeElement !== control;
+    });
+    if (open) event.preventDefault();
+  });
+
+  // a new item: its first field takes the focus
+  document.addEventListener("firmhead:focus", (event) => {
+    const item = document.getElementById(event.detail.id);
+    const control = item && item.querySelector("input:not([type=hidden]), select, textarea");
+    if (control) { control.focus(); item.scrollIntoView({ block: "nearest" }); }
+  });
+
+  // a lost document is a station file dropped anywhere on the import box
+  for (const box of document.querySelectorAll(".drop")) {
+    const input = box.querySelector("input[type=file]");
+    for (const name of ["dragenter", "dragover"]) box.addEventListener(name, (event) => { event.preventDefault(); box.classList.add("over"); });
+    for (const name of ["dragleave", "drop"]) box.addEventListener(name, () => box.classList.remove("over"));
+    box.addEventListener("drop", (event) => {
+      event.preventDefault();
+      if (!event.dataTransfer.files.length) return;
+      input.files = event.dataTransfer.files;
+      input.form.requestSubmit();
+    });
+  }
+
+  putBack(document);
+})();
