@@ -1,0 +1,224 @@
+"""Fields as a page shows them: label, text as entered, unit, what was understood, what is missing."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
+from typing import Literal
+
+from server.pages.defaults import default_of, default_words
+from server.pages.sheet import Refusal, SheetView
+from server.station import fields, paths
+from server.station.entry import Entry, Quantity, Source
+from server.station.typed_text import text_of
+from server.studies.findings.profiles import RULES
+from server.units import UNITS, Dimension, View, display_decimals, display_unit, shown, to_si
+
+Look = Literal["line", "cell", "choice"]
+# what decides which other fields are asked for, or how other fields of the same sheet read
+GOVERNING = frozenset({
+    "/supply/kind", "/supply/bypass/fitted", "/zone/kind", "/zone/points/*/role",
+    "/sets/*/control/kind", "/sets/*/slots/*/pump", "/sets/*/title", "/legs/*/title",
+    "/horizons/*/title", "/fires/*/title", "/display/units",
+    "/suction_line/reaches/*/roughness/law", "/discharge_main/reaches/*/roughness/law",
+    "/suction_line/reaches/*/fittings/*/loss/by", "/discharge_main/reaches/*/fittings/*/loss/by",
+    "/criteria/profile", "/criteria/rows/*/limit",
+})  # fmt: skip
+SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
+SOURCE_WORDS = {
+    "survey": "survey", "test": "test", "code": "code", "standard": "standard", "maker": "maker",
+    "office": "office", "default": "a default, listed in the memo",
+}  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class FieldView:
+    """One field, ready to be drawn."""
+
+    path: str
+    html_id: str
+    label: str
+    words: str
+    unit_words: str
+    kind: str
+    text: str
+    stored: str
+    unit: str
+    unit_symbol: str
+    hint: str
+    said: str
+    state: str
+    refusal: Refusal | None
+    choices: tuple[tuple[str, str], ...]
+    action: str
+    base: int
+    locked: bool
+    default: str
+    long: bool
+    signed: bool
+    governs: bool
+    look: Look
+
+    @property
+    def cell(self) -> bool:
+        """Whether the field stands in a table, where its column says label and unit."""
+        return self.look == "cell"
+
+    @property
+    def described(self) -> str:
+        """Ids of the lines that describe the field, for `aria-describedby`."""
+        told = (
+            ("--error", self.refusal is not None),
+            ("--said", bool(self.said or self.default)),
+            ("--hint", bool(self.hint) and not self.cell),
+        )
+        return " ".join(self.html_id + ending for ending, there in told if there)
+
+    @property
+    def rows(self) -> int:
+        """Lines of a long text's box."""
+        return max(2, min(12, self.text.count("\n") + len(self.text) // 80 + 1))
+
+
+def entry_at(path: str) -> Entry:
+    """Return what a field says about itself; a criterion's limit is measured as its rule says."""
+    entry = fields.entry_for(path)
+    if fields.node_at(path).pattern != "/criteria/rows/*/limit":
+        return entry
+    rule = RULES.get(path.split("/")[3])
+    return entry if rule is None else replace(entry, dimension=rule.dimension, decimals=rule.decimals)
+
+
+def pattern_of(path: str) -> str:
+    """Return the pattern of a path: ids become `*`."""
+    return fields.node_at(path).pattern
+
+
+def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
+    """Return the field at `path` of an opened sheet, as a line, a table's cell or a row of choices."""
+    node = fields.node_at(path)
+    entry = entry_at(path)
+    stored, symbol = text_of(sheet.station, path, sheet.view)
+    value = paths.get(sheet.station, path)
+    if node.kind == "quantity" and symbol is None and entry.dimension is not None:
+        symbol = display_unit(_dimension(entry), sheet.view).symbol
+    refusal = sheet.refused.get(path)
+    cell = look == "cell"
+    words = paths.words(sheet.station, path) if cell else node.title
+    missing = path in sheet.missing and not stored
+    default = default_of(path) if not stored and not sheet.read_only else None
+    return FieldView(
+        path=path,
+        html_id=paths.html_id(path),
+        label=node.title,
+        words=words + unit_words(entry, symbol),
+        unit_words=unit_words(entry, symbol),
+        kind=node.kind,
+        text=refusal.text if refusal is not None else stored,
+        stored=stored,
+        unit=_printed(sheet, entry, symbol, cell=cell),
+        unit_symbol=symbol or "",
+        hint=entry.guidance,
+        said=_said(sheet, entry, value, missing=missing, cell=cell),
+        state="refused" if refusal else "missing" if missing else "",
+        refusal=refusal,
+        choices=choices_of(sheet, path),
+        action=sheet.action("edits"),
+        base=sheet.loaded.number,
+        locked=sheet.read_only,
+        default=default_words(default, sheet.view) if default else "",
+        long=entry.long,
+        signed=_may_be_negative(entry),
+        governs=node.pattern in GOVERNING,
+        look=look,
+    )
+
+
+def field_views(sheet: SheetView, base: str, names: Iterable[str]) -> tuple[FieldView, ...]:
+    """Return the fields `names` (relative paths) below `base`."""
+    return tuple(field_view(sheet, f"{base}/{name}") for name in names)
+
+
+def unit_words(entry: Entry, symbol: str | None) -> str:
+    """Return ", in kilopascals" for a label that a screen reader speaks."""
+    return f", in {UNITS[symbol].words}" if symbol and UNITS[symbol].printed else ""
+
+
+def choices_of(sheet: SheetView, path: str) -> tuple[tuple[str, str], ...]:
+    """Return value and words of each choice of a field; empty for a field that is typed."""
+    node = fields.node_at(path)
+    entry = fields.entry_for(path)
+    if node.kind == "reference":
+        return (("", "none chosen"), *_items_referred(sheet, path, entry))
+    if not entry.choices:
+        return ()
+    return (("", "not chosen"), *entry.choices) if node.default is None else entry.choices
+
+
+def _items_referred(
+    sheet: SheetView, path: str, entry: Entry
+) -> tuple[tuple[str, str], ...]:
+    station = sheet.station
+    lists = [entry.refers_to or ""]
+    if lists == ["/pumps/*/curves"]:
+        pump = paths.get(station, path.rsplit("/", 1)[0] + "/pump")
+        lists = [f"/pumps/{p.id}/curves" for p in station.pumps if p.id == pump]
+    found: list[tuple[str, str]] = []
+    for list_path in lists:
+        items = paths.get(station, list_path)
+        if not isinstance(items, tuple):
+            continue
+        for item in items:
+            id_ = str(getattr(item, "id", ""))
+            found.append((id_, paths.item_title(station, f"{list_path}/{id_}")))
+    return tuple(found)
+
+
+def _dimension(entry: Entry) -> Dimension:
+    return entry.dimension or Dimension.NUMBER
+
+
+def _may_be_negative(entry: Entry) -> bool:
+    return entry.dimension in SIGNED or (entry.low is not None and entry.low < 0)
+
+
+def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) -> str:
+    """Return the unit beside the entry; in a table only where it is not the column's."""
+    if not symbol or (cell and symbol == display_unit(_dimension(entry), sheet.view).symbol):
+        return ""
+    return UNITS[symbol].printed
+
+
+def _said(sheet: SheetView, entry: Entry, value: object, *, missing: bool, cell: bool) -> str:
+    """Return what was understood: the reading in the other unit, and where the value is from."""
+    if missing:
+        return "missing" if cell else "Missing: what needs it is not checked."
+    if not isinstance(value, Quantity):
+        return ""
+    if cell:
+        own = value.unit == display_unit(_dimension(entry), sheet.view).symbol
+        return "" if own and not value.typed else reading(entry, value, sheet.view)
+    told = [reading(entry, value, sheet.view), source_words(value.source)]
+    return "; ".join(part for part in told if part)
+
+
+def reading(entry: Entry, value: Quantity, view: View) -> str:
+    """Return "= 20.3 psi" for a value entered in kPa; the reader's own unit first, if it differs."""
+    dimension = _dimension(entry)
+    other: View = "si" if view == "us" else "us"
+    for reader in (view, other):
+        unit = display_unit(dimension, reader)
+        if unit.symbol != value.unit:
+            decimals = entry.decimals
+            if decimals is None:
+                decimals = display_decimals(dimension, reader)
+            number = shown(to_si(value.value, value.unit), dimension, reader, decimals)
+            return f"= {number}\u00a0{unit.printed}"
+    if value.typed:
+        return f"= {value.value:g}\u00a0{UNITS[value.unit].printed}"
+    return ""
+
+
+def source_words(source: Source | None) -> str:
+    """Return where a value comes from, as it stands under its field."""
+    if source is None:
+        return ""
+    return ", ".join(part for part in (SOURCE_WORDS[source.kind], source.text, source.date) if part)

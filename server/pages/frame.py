@@ -1,0 +1,216 @@
+"""What stands round a sheet: spine, strip, scenario row, findings margin, the way on; and its answers."""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from datetime import datetime
+from functools import cache
+
+from fastapi.responses import HTMLResponse
+
+from server.pages.rendering import render
+from server.pages.sheet import OPEN, SHEET_NUMBERS, SHEETS, SheetView
+from server.pages.strip_view import FindingLine, ScenarioTab, StripView
+from server.pages.strip_view import findings_list as lines_of
+from server.pages.strip_view import scenario_row, strip_view
+from server.station import fields, paths
+from server.station.entry import Sheet
+from server.studies.shapes import Severity
+
+WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "criteria", "memo")
+MISSING_SHOWN = 8
+
+
+@dataclass(frozen=True, slots=True)
+class SpineEntry:
+    """One sheet in the spine with its state."""
+
+    number: int
+    title: str
+    href: str
+    current: bool
+    state: str
+    css: str
+
+
+@dataclass(frozen=True, slots=True)
+class Choice:
+    """One set that can be looked at."""
+
+    title: str
+    href: str
+    current: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Next:
+    """What is still missing here, or where the work goes on."""
+
+    title: str
+    links: tuple[tuple[str, str], ...]
+    more: str
+
+
+@dataclass(frozen=True, slots=True)
+class Frame:
+    """Everything round the content of a sheet."""
+
+    spine: tuple[SpineEntry, ...]
+    strip: StripView | None
+    has_strip: bool
+    tabs: tuple[ScenarioTab, ...]
+    margin: tuple[FindingLine, ...]
+    margin_empty: str
+    sets: tuple[Choice, ...]
+    next: Next | None
+    edited: str
+    merged: str
+    under_title: str
+    sources_sheet: Sheet
+    refusals: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class SheetPage:
+    """What a sheet shows inside its frame; `results` names a template of fragments that follow an edit."""
+
+    sheet: Sheet
+    build: Callable[[SheetView], object]
+    results: str | None = None
+
+    @property
+    def folder(self) -> str:
+        """The folder of the sheet's templates."""
+        return self.sheet.replace("-", "_")
+
+
+_PAGES: dict[Sheet, SheetPage] = {}
+
+
+def register(page: SheetPage) -> SheetPage:
+    """Make a sheet known to the edits, which answer with its fragments."""
+    _PAGES[page.sheet] = page
+    return page
+
+
+def page_of(sheet: Sheet) -> SheetPage | None:
+    """Return the registered page of a sheet."""
+    return _PAGES.get(sheet)
+
+
+def frame_of(sheet: SheetView, merged: str = "") -> Frame:
+    """Return what stands round an opened sheet."""
+    has_strip = sheet.sheet not in WITHOUT_STRIP
+    return Frame(
+        spine=spine(sheet),
+        strip=strip_view(sheet) if has_strip else None,
+        has_strip=has_strip,
+        tabs=scenario_row(sheet) if has_strip else (),
+        margin=tuple(lines_of(sheet, sheet.findings)),
+        margin_empty="Nothing found that this sheet could mend.",
+        sets=tuple(
+            Choice(item.title or "Set", sheet.set_href(item.id), item.id == sheet.set_id)
+            for item in sheet.station.sets
+        ),
+        next=next_of(sheet),
+        edited=when(sheet.loaded.edited_at),
+        merged=merged,
+        under_title=", ".join(
+            part for part in (sheet.station.identity.client, sheet.station.identity.place) if part
+        ),
+        sources_sheet=sheet.sheet,
+        refusals=tuple(
+            (f"#{paths.html_id(path)}", refusal.sentence) for path, refusal in sheet.refused.items()
+        ),
+    )
+
+
+def show(sheet: SheetView, status: int = 200, *, context: dict[str, object] | None = None) -> HTMLResponse:
+    """Return the whole page of a registered sheet."""
+    page = _PAGES[sheet.sheet]
+    return render(
+        sheet.request,
+        f"{page.folder}/page.html",
+        {"sheet": sheet, "frame": frame_of(sheet), "page": page.build(sheet), **(context or {})},
+        status=status,
+    )
+
+
+def spine(sheet: SheetView) -> tuple[SpineEntry, ...]:
+    """Return the sheets with what is missing or found on each."""
+    entries = []
+    for name, title in SHEETS:
+        state, css = state_of(sheet, name)
+        entries.append(
+            SpineEntry(SHEET_NUMBERS[name], title, sheet.href(name), name == sheet.sheet, state, css)
+        )
+    return tuple(entries)
+
+
+def state_of(sheet: SheetView, name: Sheet) -> tuple[str, str]:
+    """Return what the spine says of a sheet, and its class."""
+    if name in ("summary", "memo", "history"):
+        return "", ""
+    missing = len(missing_on(sheet, name))
+    if missing:
+        return f"{missing} missing", "missing"
+    findings = sheet.findings_of(name)
+    open_ = sum(finding.severity in OPEN for finding in findings)
+    if open_:
+        return f"{open_} finding{'s' if open_ > 1 else ''}", "open"
+    if any(finding.severity is Severity.NOT_CHECKED for finding in findings):
+        return "not checked", ""
+    return "complete", ""
+
+
+def missing_on(sheet: SheetView, name: Sheet) -> tuple[str, ...]:
+    """Return the empty fields and lists of a sheet that a study waits for, in the sheet's order."""
+    found = []
+    for path in sheet.missing:
+        node = fields.find(path)
+        if node is not None and node.sheet == name and _is_empty(sheet, path):
+            found.append(path)
+    return tuple(sorted(found, key=lambda path: (_order()[fields.node_at(path).pattern], path)))
+
+
+@cache
+def _order() -> dict[str, int]:
+    return {node.pattern: place for place, node in enumerate(fields.walk(fields.root()))}
+
+
+def _is_empty(sheet: SheetView, path: str) -> bool:
+    """Whether nothing stands at a path; a field that is filled in but wrong is no missing field."""
+    return paths.has(sheet.station, path) and paths.get(sheet.station, path) in (None, "", ())
+
+
+def next_of(sheet: SheetView) -> Next | None:
+    """Return what this sheet still waits for, or the next sheet that waits."""
+    if sheet.read_only:
+        return None
+    here = missing_on(sheet, sheet.sheet)
+    if here:
+        links = tuple((words_of(sheet, p), sheet.field_href(p)) for p in here[:MISSING_SHOWN])
+        left = len(here) - len(links)
+        return Next("Still missing on this sheet", links, f"and {left} more" if left else "")
+    for name, title in SHEETS:
+        there = missing_on(sheet, name)
+        if there:
+            first = words_of(sheet, there[0])
+            link = (f"{SHEET_NUMBERS[name]} {title}: {first}", sheet.field_href(there[0]))
+            return Next("Nothing is missing here; the work goes on at", (link,), "")
+    return None
+
+
+def words_of(sheet: SheetView, path: str) -> str:
+    """Return a field in words, without the name of the sheet it stands on."""
+    told = paths.words(sheet.station, path)
+    title = fields.SHEET_TITLES[fields.sheet_of(path)]
+    short = told.removeprefix(f"{title}, ")
+    return short[:1].upper() + short[1:]
+
+
+def when(moment: datetime) -> str:
+    """Return a moment as a person reads it, to the minute: "14 May 2026, 07:30"."""
+    local = moment.astimezone()
+    return f"{local.day} {local:%b %Y, %H:%M}"
+
+
