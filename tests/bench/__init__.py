@@ -1,0 +1,1 @@
+"""Benches: what must be quick, measured against a stated budget by `python -m tests.bench`."""
