@@ -9,7 +9,7 @@ INPUT_CODES: tuple[FindingCode, ...] = (
          "The slow-down limiter at {required} acts in {case}, where the suction falls to {provided}: what "
          "flow is then left is not computed in this version{also}."),
     code("station_off_not_checked", "station off not checked", "sets",
-         "With the station off {water_words} at {point} ({case}). Not checked further, because {standby_words}."),
+         "With the station off, at {point} {water_words} ({case}). Not checked further, because {standby_words}."),
     code("input_missing", "input missing", "summary", "{field} is not given; without it {part_words}."),
     code("input_refused", "input refused", "summary", "{field} cannot be used: {reason_words}."),
     code("input_lacks", "input incomplete", "summary", "{field}: {reason_words}; what hangs on it is not checked."),
@@ -54,5 +54,5 @@ INPUT_CODES: tuple[FindingCode, ...] = (
          "“{rule}” is {provided} instead of {required}: {reason}"),
     code("low_state_estimated", "low state is an estimate", "supply",
          "The low state of {supply}, {provided} against the test, is the office's estimate ({said}), not a record."),
-    code("default_used", "default used", "summary", "{field} is empty; its default stands in{said_words}."),
+    code("default_used", "default used", "summary", "{field}: a default stands in{said_words}."),
 )  # fmt: skip

@@ -1,6 +1,7 @@
 """Firm capacity, the number of units, and the zone with the station off."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
 
@@ -115,8 +116,8 @@ def _station_off(judged: JudgedSet, off: StationOff) -> Iterator[Finding]:
             severity, "station_off_relies_on_standby"
         ),
         severity=severity, subject="/zone", pump_set=judged.id,
-        criterion=judged.criterion("station-off-pressure-min"), governing=off.cases[worst],
-        cases=tuple(off.cases[i] for i in low),
+        criterion=judged.criterion("station-off-pressure-min"), governing=_off_case(off, worst),
+        cases=tuple(dict.fromkeys(_off_case(off, i) for i in low)),
         # a figure below a vacuum is no pressure: it is not carried further
         provided=amount("pressure", None if drains else float(off.arithmetic_pressure[worst, p]),
                         D.PRESSURE, 0),
@@ -129,6 +130,11 @@ def _station_off(judged: JudgedSet, off: StationOff) -> Iterator[Finding]:
                ("dry", str(dry)), ("number", str(len(low))), ("path", off.path)),
         basis="station-off-pressure-min", mend=mend, because=because,
     )  # fmt: skip
+
+
+def _off_case(off: StationOff, i: int) -> Case:
+    """Return a case with the station off: which unit is out no longer matters."""
+    return replace(off.cases[i], out=None)
 
 
 def _standby(judged: JudgedSet, path: Path) -> tuple[Severity, tuple[Path, ...], str | None]:

@@ -6,7 +6,7 @@ import numpy as np
 
 from server.hydraulics.states import State
 from server.studies.findings.judged_set import JudgedSet, amount
-from server.studies.findings.reading import Reading
+from server.studies.findings.reading import Reading, broken
 from server.studies.shapes import Case, Finding, Path, Severity
 from server.units import Dimension as D
 
@@ -150,22 +150,24 @@ def _demand_field(judged: JudgedSet, c: int) -> Path:
 def _steepness(judged: JudgedSet) -> Iterator[Reading]:
     """Yield the pressure change for 1 % of speed: over the limit, or over half of it."""
     result, limit = judged.result, judged.limit("pressure-per-speed-max")
+    mend = (f"{judged.path}/control/pressure", *_tables(judged))
     for c, k in judged.stated:
         change = float(result.pressure_per_speed[c, k])
-        if change != change:
+        if change != change or not bool(result.set_point_held[c, k]):
             continue
-        over = change > limit
-        yield Reading(
-            code="pressure_steep_in_speed" if over else "pressure_by_speed",
-            severity=Severity.CAUTION if over else Severity.NOTE,
+        over = Reading(
+            code="pressure_steep_in_speed", severity=Severity.CAUTION,
             subject=f"{judged.path}/control", pump_set=judged.id,
             criterion=judged.criterion("pressure-per-speed-max"), case=judged.case(c),
             provided=amount("change", change, D.PRESSURE, 1),
-            required=amount("required", limit if over else limit / 2, D.PRESSURE, 0), sense="at_most",
-            others=(amount("limit", limit, D.PRESSURE, 0),),
-            mend=(f"{judged.path}/control/pressure", *_tables(judged)),
+            required=amount("required", limit, D.PRESSURE, 0), sense="at_most",
+            others=(amount("limit", limit, D.PRESSURE, 0),), mend=mend,
             names=(("set", judged.title), ("held", _held_words(judged))),
         )  # fmt: skip
+        yield over
+        if not broken(over) and not result.is_fire[c]:
+            yield over.varied(code="pressure_by_speed", severity=Severity.NOTE,
+                          required=amount("required", limit / 2, D.PRESSURE, 0))  # fmt: skip
 
 
 def _tables(judged: JudgedSet) -> tuple[Path, ...]:

@@ -56,14 +56,14 @@ def _lines(judged: JudgedSet) -> Iterator[Reading]:
 def _branches(judged: JudgedSet) -> Iterator[Reading]:
     result = judged.result
     for c, k in judged.stated:
-        for n in judged.running(c, k):
+        for n, title in judged.running_kinds(c, k):
             leg = f"/legs/{judged.leg_of_slot[n]}"
             for side, velocity in (
                 ("suction", result.suction_branch_velocity),
                 ("discharge", result.discharge_branch_velocity),
             ):
                 yield _velocity(judged, f"{side}_branch_fast", f"{side}-branch-velocity-max", leg,
-                                judged.slot_title(n), judged.case(c), float(velocity[c, k, n]),
+                                title, judged.case(c), float(velocity[c, k, n]),
                                 f"{leg}/{side}_branch/bore")  # fmt: skip
 
 

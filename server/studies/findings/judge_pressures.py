@@ -143,14 +143,12 @@ def _shut_off(judged: JudgedSet, s: int, p: int, pressure: float, gauge: float) 
 def _with_protection(
     judged: JudgedSet, reading: Reading, gauge: float, protection: tuple[str, float, Path] | None
 ) -> Reading:
-    from dataclasses import replace
-
     delay = judged.entered.trips.high_discharge_delay
     others = [amount("gauge", gauge, D.PRESSURE, 0)]
     if protection is not None:
         others.append(amount("protection", protection[1], D.PRESSURE))
         others.append(amount("delay", None if delay is None else delay.si, D.TIME))
-    return replace(reading, others=tuple(others))
+    return reading.varied(others=tuple(others))
 
 
 def _ratings(judged: JudgedSet, s: int, gauge: float) -> Iterator[Reading]:

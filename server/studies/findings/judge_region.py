@@ -1,7 +1,6 @@
 """Where each running pump stands on its curve: preferred and allowable region, least flow, its end."""
 
 from collections.abc import Iterator
-from dataclasses import replace
 
 from server.hydraulics.states import State
 from server.studies.findings.judged_set import JudgedSet, amount
@@ -15,8 +14,8 @@ def judge_region(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
     readings: list[Reading] = []
     shut: dict[int, list[Case]] = {}
     for c, k in judged.stated:
-        for n in judged.running(c, k):
-            readings.extend(_of_pump(judged, c, k, n))
+        for n, title in judged.running_kinds(c, k):
+            readings.extend(_of_pump(judged, c, k, n, title))
         for n in judged.held_shut(c, k):
             shut.setdefault(n, []).append(judged.case(c))
     findings = [
@@ -31,9 +30,8 @@ def judge_region(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
     return readings, [*findings, *_without_duty(judged)]
 
 
-def _of_pump(judged: JudgedSet, c: int, k: int, n: int) -> Iterator[Reading]:
-    """Yield the readings of one running pump in one case."""
-    slot = judged.slots[n]
+def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[Reading]:
+    """Yield the readings of one kind of running pump in one case."""
     share = float(judged.result.best_efficiency_share[c, k, n])
     if share != share:
         return
@@ -49,17 +47,14 @@ def _of_pump(judged: JudgedSet, c: int, k: int, n: int) -> Iterator[Reading]:
         mend=_mend(judged, n, left=True), at_limit_share=0.0,
         others=(amount("flow", float(judged.result.leg_flow[c, k, n]), D.FLOW),
                 amount("low", low, D.RATIO, 0), amount("high", high, D.RATIO, 0)),
-        names=(("slot", judged.slot_title(n)), ("set", judged.title),
+        names=(("slot", title), ("set", judged.title), ("run", _run(title)),
                ("side", "left" if share < low else "right")),
     )  # fmt: skip
-    if share > high:
-        yield replace(
-            common, criterion=judged.criterion(judged.preferred_key(n, high=True)), sense="at_most",
-            provided=amount("share", share, D.RATIO, _decimals(share, high)),
-            required=amount("required", high, D.RATIO, 0), mend=_mend(judged, n, left=False),
-        )  # fmt: skip
-    else:
-        yield common
+    yield common
+    yield common.varied(criterion=judged.criterion(judged.preferred_key(n, high=True)), sense="at_most",
+        provided=amount("share", share, D.RATIO, _decimals(share, high)),
+        required=amount("required", high, D.RATIO, 0), mend=_mend(judged, n, left=False),
+    )  # fmt: skip
     if not fire and judged.region(n, share) is Region.EDGE:
         yield _edge(judged, common, share, low, high)
     yield from _further_ends(judged, common, n, share)
@@ -68,6 +63,10 @@ def _of_pump(judged: JudgedSet, c: int, k: int, n: int) -> Iterator[Reading]:
 def _decimals(share: float, end: float) -> int:
     """Return the decimals of a share: one more digit where rounding would contradict the verdict."""
     return 0 if abs(share - end) > 0.01 else 1
+
+
+def _run(title: str) -> str:
+    return "run" if " and " in title else "runs"
 
 
 def _mend(judged: JudgedSet, n: int, left: bool) -> tuple[Path, ...]:
@@ -79,8 +78,7 @@ def _edge(judged: JudgedSet, common: Reading, share: float, low: float, high: fl
     """Return the reading that tells of an edge: the required value is the edge's inner side."""
     edge = judged.limit("region-edge")
     left = share - low < high - share
-    return replace(
-        common, code="region_edge", severity=Severity.CAUTION,
+    return common.varied(code="region_edge", severity=Severity.CAUTION,
         criterion=judged.criterion("region-edge"),
         required=amount("required", low + edge if left else high - edge, D.RATIO, 0),
         sense="at_least" if left else "at_most",
@@ -91,21 +89,19 @@ def _edge(judged: JudgedSet, common: Reading, share: float, low: float, high: fl
 def _further_ends(judged: JudgedSet, common: Reading, n: int, share: float) -> Iterator[Reading]:
     """Yield the maker's allowable region and the minimum continuous flow."""
     slot = judged.slots[n]
-    base = replace(common, severity=Severity.FAIL, provided=amount("share", share, D.RATIO, 0))
+    base = common.varied(severity=Severity.FAIL, provided=amount("share", share, D.RATIO, 0))
     ends: tuple[tuple[float | None, Sense, str], ...] = (
         (slot.allowable_low, "at_least", "low"),
         (slot.allowable_high, "at_most", "high"),
     )
     for end, sense, field in ends:
         if end is not None:
-            yield replace(
-                base, code="allowable_region_outside", sense=sense,
+            yield base.varied(code="allowable_region_outside", sense=sense,
                 criterion=judged.criterion("allowable-region"),
                 required=amount("required", end, D.RATIO, 0),
                 mend=(f"{judged.pump_path(n)}/allowable_region/{field}", f"{judged.curve_path(n)}/table"),
             )  # fmt: skip
-    yield replace(
-        base, code="minimum_flow_broken", criterion=judged.criterion("minimum-flow"),
+    yield base.varied(code="minimum_flow_broken", criterion=judged.criterion("minimum-flow"),
         required=amount("required", slot.minimum_flow, D.RATIO, 0), sense="at_least",
         mend=(f"{judged.pump_path(n)}/minimum_flow", f"{judged.curve_path(n)}/table"),
         names=(*common.names, ("state", "assumed" if slot.minimum_flow_assumed else "")),

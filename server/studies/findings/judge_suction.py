@@ -1,7 +1,6 @@
 """The suction side: supplying main, suction gauge, supplying zone, NPSH, suction lift."""
 
 from collections.abc import Iterator
-from dataclasses import replace
 
 from server.studies.duty_result import FirmCapacity
 from server.studies.findings.judged_set import JudgedSet, amount
@@ -43,13 +42,13 @@ def _main_and_gauge(judged: JudgedSet) -> Iterator[Reading]:
                          (_low_state(judged), *_suction_bores(judged), "/site/suction_gauge_level"))  # fmt: skip
         beside = _consequences(firm)
         if broken(main):
-            yield replace(main, others=(*_gauge_beside(gauge), *beside),
+            yield main.varied(others=(*_gauge_beside(gauge), *beside),
                           names=(*main.names, ("state", _which(gauge, firm))))  # fmt: skip
             # the gauge is told in the same finding: its reading stays, but as one that is told
-            yield replace(gauge, code=TOLD_ELSEWHERE)
+            yield gauge.varied(code=TOLD_ELSEWHERE)
         else:
             yield main
-            yield replace(gauge, code="suction_gauge_low", others=beside,
+            yield gauge.varied(code="suction_gauge_low", others=beside,
                           names=(*gauge.names, ("state", "firm" if firm else "")))  # fmt: skip
 
 
@@ -58,7 +57,10 @@ def _which(gauge: Reading, firm: FirmCapacity | None) -> str:
 
 
 def _gauge_beside(gauge: Reading) -> tuple[Amount, ...]:
-    return (replace(gauge.provided, name="gauge"), replace(gauge.required, name="gauge_required"))
+    return (
+        amount("gauge", gauge.provided.value, D.PRESSURE, 1),
+        amount("gauge_required", gauge.required.value, D.PRESSURE),
+    )
 
 
 def _consequences(firm: FirmCapacity | None) -> tuple[Amount, ...]:
@@ -91,14 +93,14 @@ def _low_state(judged: JudgedSet) -> Path:
 
 
 def _suction_bores(judged: JudgedSet) -> tuple[Path, ...]:
-    return tuple(f"/suction_line/reaches/{reach.id}/bore" for reach in judged.station.suction_line.reaches)
+    return judged.suction_bores
 
 
 def _net_head(judged: JudgedSet) -> Iterator[Reading]:
     """Yield NPSH of every running unit: broken, by ratio, by margin."""
     result, limits = judged.result, judged
     for c, k in judged.stated:
-        for n in judged.running(c, k):
+        for n, title in judged.running_kinds(c, k):
             available = float(result.npsh_available[c, k, n])
             required = float(result.npsh_required[c, k, n])
             if available != available or required != required:
@@ -115,13 +117,14 @@ def _net_head(judged: JudgedSet) -> Iterator[Reading]:
                 required=amount("required", required, D.HEAD), sense="at_least",
                 mend=(_low_state(judged), "/site/eye_level", *_suction_bores(judged),
                       f"{judged.curve_path(n)}/table"),
-                names=(("slot", judged.slot_title(n)), ("set", judged.title)),
+                names=(("slot", title), ("set", judged.title),
+                       ("has", "have" if " and " in title else "has")),
                 others=(amount("npsh_required", required, D.HEAD),),
             )  # fmt: skip
             yield common
             if not broken(common):
-                yield replace(
-                    common, code="npsh_short", severity=Severity.FAIL,
+                yield common.varied(
+                    code="npsh_short", severity=Severity.FAIL,
                     criterion=judged.criterion(key),
                     required=amount("required", max(by_ratio, by_margin), D.HEAD),
                 )  # fmt: skip
@@ -144,6 +147,6 @@ def _lift(judged: JudgedSet) -> Iterator[Reading]:
         )  # fmt: skip
         yield common
         if not broken(common):
-            yield replace(common, code="suction_lift", severity=Severity.CAUTION, criterion=None,
+            yield common.varied(code="suction_lift", severity=Severity.CAUTION, criterion=None,
                           required=amount("required", 0.0, D.HEAD))  # fmt: skip
 

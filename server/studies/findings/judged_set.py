@@ -88,6 +88,12 @@ class JudgedSet:
         ids = [point.id for point in self.result.points]
         return ids.index(self.result.held_point) if self.result.held_point in ids else -1
 
+    @cached_property
+    def suction_bores(self) -> tuple[Path, ...]:
+        """Paths of the bores of the suction line."""
+        reaches = self.station.suction_line.reaches
+        return tuple(f"/suction_line/reaches/{reach.id}/bore" for reach in reaches)
+
     @property
     def lowest_pressure(self) -> float:
         """Gauge pressure below which there is no water [Pa]; -inf while the altitude is absent."""
@@ -160,6 +166,23 @@ class JudgedSet:
         for n in np.flatnonzero(self.result.combinations[k]):
             if flows[n] > 0:
                 yield int(n)
+
+    def running_kinds(self, c: int, k: int) -> Iterator[tuple[int, str]]:
+        """Yield the first of each kind of running unit, with the names of all that run alike.
+
+        Equal units at one speed pass the same flow: they are judged, and told, together.
+        """
+        alike: dict[tuple[object, ...], list[int]] = {}
+        shares = self.result.best_efficiency_share[c, k]
+        for n in self.running(c, k):
+            slot = self.result.slots[n]
+            share = float(shares[n])
+            key = (slot.pump, slot.curve, self.leg_of_slot[n], round(share, 6) if share == share else None)
+            alike.setdefault(key, []).append(n)
+        for slots in alike.values():
+            titles = [self.slot_title(n) for n in slots]
+            last = titles.pop()
+            yield slots[0], f"{', '.join(titles)} and {last}" if titles else last
 
     def held_shut(self, c: int, k: int) -> Iterator[int]:
         """Yield the slots that run in case `c` with combination `k` and pass nothing."""

@@ -1,7 +1,7 @@
 """A reading: one result against one limit, met or not. Findings and tables are made of readings."""
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Literal
 
 from server.studies.shapes import SEVERITY_ORDER, Amount, Case, Finding, Path, Severity, Verdict
@@ -13,9 +13,13 @@ Sense = Literal["at_least", "at_most"]
 Names = tuple[tuple[str, str], ...]
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
+@dataclass(slots=True, kw_only=True, eq=False)
 class Reading:
-    """One comparison; `severity` is how it weighs when the limit is not met."""
+    """One comparison; `severity` is how it weighs when the limit is not met.
+
+    Never changed after it is made. It is not frozen because a judgement makes a thousand of them
+    between an edit and its answer, and a frozen one takes three times as long to make.
+    """
 
     code: str
     severity: Severity
@@ -30,24 +34,35 @@ class Reading:
     others: tuple[Amount, ...] = ()
     names: Names = ()
     at_limit_share: float = AT_LIMIT_SHARE
+    margin: float = field(init=False)  # provided over required, below zero is not met
+    verdict: Verdict = field(init=False)
 
-    @property
-    def margin(self) -> float:
-        """Provided over required, in the sense of the limit: below zero is not met."""
+    def __post_init__(self) -> None:
+        """Compare, once."""
         provided, required = self.provided.value, self.required.value
         if provided is None or required is None:
-            return float("nan")
-        return provided - required if self.sense == "at_least" else required - provided
+            self.margin, self.verdict = float("nan"), Verdict.NOT_CHECKED
+            return
+        self.margin = provided - required if self.sense == "at_least" else required - provided
+        scale = abs(required)
+        if self.margin < -ROUNDING * max(scale, 1e-12):
+            self.verdict = Verdict.DOES_NOT_MEET
+        else:
+            at_limit = self.margin < self.at_limit_share * scale
+            self.verdict = Verdict.AT_LIMIT if at_limit else Verdict.MEETS
+
+    def varied(self, **changes: object) -> "Reading":
+        """Return the same reading with some of it changed, compared anew."""
+        new = object.__new__(Reading)
+        for name in self.__slots__:
+            setattr(new, name, changes[name] if name in changes else getattr(self, name))
+        new.__post_init__()
+        return new
 
     @property
-    def verdict(self) -> Verdict:
-        """The answer of this one comparison."""
-        margin, scale = self.margin, abs(self.required.value or 0.0)
-        if margin != margin:
-            return Verdict.NOT_CHECKED
-        if margin < -ROUNDING * max(scale, 1e-12):
-            return Verdict.DOES_NOT_MEET
-        return Verdict.AT_LIMIT if margin < self.at_limit_share * scale else Verdict.MEETS
+    def relative_margin(self) -> float:
+        """The margin in proportion to the limit."""
+        return self.margin / max(abs(self.required.value or 0.0), 1e-9)
 
 
 def broken(reading: Reading) -> bool:
@@ -61,7 +76,7 @@ def worst_first(readings: Iterable[Reading]) -> list[Reading]:
         readings,
         key=lambda r: (
             SEVERITY_ORDER.index(r.severity),
-            r.margin / max(abs(r.required.value or 0.0), 1e-9),
+            r.relative_margin,
         ),
     )
 

@@ -19,7 +19,7 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "No water at {point} in {case}: the grade line falls so far below it that the main drains or "
          "the column breaks{also}."),
     code("npsh_broken", "NPSH under what is required", "supply",
-         "{slot} has {provided} of NPSH and requires {required} in {case}: it cavitates{also}."),
+         "{slot} {has} {provided} of NPSH available in {case}, where {required} is required: cavitation{also}."),
     code("trip_reached", "a trip acts in a scenario", "sets",
          "The {side} pressure reaches {provided} in {case}; the trip at {required} stops the pumps{also}."),
     code("rating_exceeded", "rating exceeded at shut-off", "sets",
@@ -30,7 +30,7 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          relief="Against a shut zone at top speed {part} would see {provided} ({case}); it is rated "
                 "{required}." + RELIEF),
     code("station_off", "no water with the station off", "sets",
-         "With the station off {water_words} at {point} ({case}), and no standby power is named."),
+         "With the station off, at {point} {water_words} ({case}), and no standby power is named."),
     code("suction_main_low", "supplying main too low", "supply",
          "{supply} falls to {provided} at the connection in {case}; at least {required} is "
          "required{also}.",
@@ -73,22 +73,22 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "fire is {required}, {short} more."),
     code("units_few", "too few pumps", "sets", "{set} has {provided} pump; at least {required} are required."),
     code("npsh_short", "NPSH margin short", "supply",
-         "{slot} has {provided} of NPSH in {case}; {required} is asked for {npsh_required} "
+         "{slot} {has} {provided} of NPSH in {case}; {required} is asked for {npsh_required} "
          "required{also}."),
     code("suction_lift_long", "suction lift too long", "supply",
          "The pumps lift by {provided} on the suction side in {case}; at most {required} is allowed{also}."),
     code("allowable_region_outside", "outside the allowable region", "pumps",
-         "{slot} runs at {provided} of its best-efficiency flow in {case}; the maker's allowable region "
+         "{slot} {run} at {provided} of its best-efficiency flow in {case}; the maker's allowable region "
          "{end_words} {required}{also}."),
     code("minimum_flow_broken", "below minimum flow", "pumps",
-         "{slot} runs at {provided} of its best-efficiency flow in {case}, below its minimum continuous "
+         "{slot} {run} at {provided} of its best-efficiency flow in {case}, below its minimum continuous "
          "flow of {required}{also}.",
-         assumed="{slot} runs at {provided} of its best-efficiency flow in {case}, below the {required} "
+         assumed="{slot} {run} at {provided} of its best-efficiency flow in {case}, below the {required} "
                  "assumed as its minimum continuous flow{also}."),
     code("held_shut", "held shut", "sets",
          "{slot} runs and passes nothing in {case}: the others hold its check valve shut{also}."),
     code("region_outside", "outside the preferred region", "pumps",
-         "{slot} runs at {provided} of its best-efficiency flow ({flow}) in {case}: outside, {side} of its "
+         "{slot} {run} at {provided} of its best-efficiency flow ({flow}) in {case}: outside, {side} of its "
          "preferred region of {low} to {high}{also}."),
     code("motor_overloaded", "motor too small", "pumps",
          "{pump} needs {provided} at its shaft at top speed up to its last row; its motor gives {required}."),
@@ -100,10 +100,10 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("fire_duration_short", "fire too short", "demand",
          "{fire} lasts {provided}; at least {required} is required."),
     code("region_outside_in_fire", "outside the preferred region in a fire", "pumps",
-         "{slot} runs at {provided} of its best-efficiency flow during the fire of {case}: outside, {side} of "
+         "{slot} {run} at {provided} of its best-efficiency flow during the fire of {case}: outside, {side} of "
          "its preferred region of {low} to {high}{also}. A fire is short."),
     code("region_edge", "at the edge of the preferred region", "pumps",
-         "{slot} runs at {provided} of its best-efficiency flow in {case}: at the edge of its preferred "
+         "{slot} {run} at {provided} of its best-efficiency flow in {case}: at the edge of its preferred "
          "region of {low} to {high}{also}."),
     code("set_point_not_held", "set point not held", "sets",
          "{set} cannot hold {required} at {held} in {case}: {provided} at {speed} speed; the requirements "
@@ -117,13 +117,13 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "The highest speed of {set} is {provided}; the criteria go up to {required}. Power grows with its "
          "cube."),
     code("speed_cannot_tell_night", "speed cannot tell night from no flow", "sets",
-         "{slot} runs at {speed} for {flow} in {case}, and no flow needs {zero}: {provided} apart, under "
-         "{required}. Stop it by flow or power, not by speed{also}."),
+         "{slot} runs at {speed} for {flow} in {case}, and no flow needs {zero}: {provided} apart; under "
+         "{required} it is no signal. Stop it by flow or power, not by speed{also}."),
     code("pressure_steep_in_speed", "pressure steep in speed", "sets",
          "1 % of speed moves the pressure at {held} by {provided} in {case}; at most {required} is "
          "wanted{also}."),
     code("station_off_relies_on_standby", "station off relies on standby power", "sets",
-         "With the station off {water_words} at {point} ({case}). This rests on {standby_words}."),
+         "With the station off, at {point} {water_words} ({case}). This rests on {standby_words}."),
     code("after_trip_end_of_curve", "past the curve after a trip", "sets",
          "If {lost} trips in {case}, the {left} left would run past the end of their curve ({required} asked, "
          "the curves end at {provided}) until {standby} has started{also}.",

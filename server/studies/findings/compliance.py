@@ -1,0 +1,124 @@
+"""Compliance: every criterion with what is provided, for the Criteria sheet and the memo."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from server.studies.findings.criteria import Criterion
+from server.studies.findings.reading import Reading, worst_first
+from server.studies.shapes import Amount, Case, Finding, Severity, Verdict
+from server.units import Dimension
+
+# codes of readings that inform about a criterion without judging it
+INFORMING = frozenset({"pressure_by_speed", "region_edge", "region_outside_in_fire"})
+NO_SUCH_CASE = ("npsh-margin-outside-min", "power-disagreement-max")
+# rules judged by a finding rather than by one number against another
+BY_FINDING = frozenset({"station-off-pressure-min", "gap-narrow"})
+NOT_COMPUTED = {
+    "hours-outside-region": "energy and hours are not computed in this version",
+    "starts-small-max": "starts an hour are not computed in this version",
+    "starts-15-kw-max": "starts an hour are not computed in this version",
+    "starts-75-kw-max": "starts an hour are not computed in this version",
+    "starts-185-kw-max": "starts an hour are not computed in this version",
+    "temperature-rise-max": "running at no flow is not computed in this version",
+    "transient-pressure-min": "transients are not computed in this version",
+}
+
+
+@dataclass(frozen=True, slots=True)
+class ComplianceRow:
+    """One criterion and how the proposed set stands against it."""
+
+    criterion: Criterion
+    verdict: Verdict
+    required: Amount | None = None
+    provided: Amount | None = None
+    case: Case | None = None
+    subject: str = ""
+    because: str = ""
+
+
+def compliance_rows(
+    criteria: dict[str, Criterion], readings: Iterable[Reading], findings: Iterable[Finding],
+    pump_set: str | None,
+) -> tuple[ComplianceRow, ...]:  # fmt: skip
+    """Return a row for every criterion, in the order of the sheet, for the set `pump_set`."""
+    by_key: dict[str, list[Reading]] = {}
+    for reading in readings:
+        judged = reading.verdict is not Verdict.NOT_CHECKED and reading.code not in INFORMING
+        if judged and reading.criterion is not None and reading.pump_set in (None, pump_set):
+            by_key.setdefault(reading.criterion.rsplit("/", 1)[-1], []).append(reading)
+    found = [f for f in findings if f.pump_set in (None, pump_set)]
+    return tuple(
+        _row(criterion, by_key.get(key, []), [f for f in found if f.basis == key], pump_set)
+        for key, criterion in criteria.items()
+    )
+
+
+def _row(
+    criterion: Criterion, readings: list[Reading], findings: list[Finding], pump_set: str | None
+) -> ComplianceRow:
+    limit = None
+    if criterion.quantity is not None:
+        limit = Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals)
+    if criterion.sense in ("setting", "stated") and not readings:
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because="a setting, judged elsewhere"
+                             if criterion.sense == "setting" else criterion.source)  # fmt: skip
+    if criterion.key in BY_FINDING:
+        return _by_finding(criterion, limit, findings, pump_set)
+    if not readings:
+        return _unread(criterion, limit, findings)
+    worst = worst_first(readings)[0]
+    for reading in worst_first(readings):
+        if reading.verdict is Verdict.DOES_NOT_MEET:
+            worst = reading
+            break
+    else:
+        worst = min(readings, key=lambda r: r.relative_margin)
+    return ComplianceRow(
+        criterion, worst.verdict, worst.required, worst.provided, worst.case, worst.subject
+    )
+
+
+def _by_finding(
+    criterion: Criterion, limit: Amount | None, findings: list[Finding], pump_set: str | None
+) -> ComplianceRow:
+    if pump_set is None:
+        return ComplianceRow(criterion, Verdict.NOT_CHECKED, limit, because="no set is solved")
+    if not findings:
+        return ComplianceRow(criterion, Verdict.MEETS, limit)
+    worst = findings[0]
+    verdict = {
+        Severity.STOP: Verdict.DOES_NOT_MEET,
+        Severity.FAIL: Verdict.DOES_NOT_MEET,
+        Severity.NOT_CHECKED: Verdict.NOT_CHECKED,
+    }.get(worst.severity, Verdict.MEETS)
+    same = worst.provided is not None and worst.provided.dimension is criterion.dimension
+    because = "by standby power" if worst.code == "station_off_relies_on_standby" else ""
+    return ComplianceRow(criterion, verdict, limit, worst.provided if same else None, worst.governing,
+                         worst.subject, because)  # fmt: skip
+
+
+def _unread(criterion: Criterion, limit: Amount | None, findings: list[Finding]) -> ComplianceRow:
+    if criterion.quantity is None:
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, None, because="no limit in this profile")
+    if criterion.key in NOT_COMPUTED:
+        return ComplianceRow(criterion, Verdict.NOT_CHECKED, limit, because=NOT_COMPUTED[criterion.key])
+    if criterion.key == "vessel-connections-max":
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because="no vessel is entered")
+    narrow = criterion.key.endswith("-high-specific-speed")
+    longer_fire = criterion.key.startswith("fire-duration-above")
+    if narrow or longer_fire or criterion.key in NO_SUCH_CASE:
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because="no such case")
+    missing = findings[0].mend[0] if findings and findings[0].mend else ""
+    return ComplianceRow(criterion, Verdict.NOT_CHECKED, limit, subject=missing,
+                         because="what it needs is not given or not solved")  # fmt: skip
+
+
+def departures(rows: Iterable[ComplianceRow]) -> tuple[ComplianceRow, ...]:
+    """Return the rows that depart from their profile."""
+    return tuple(row for row in rows if row.criterion.departs)
+
+
+def is_ratio(row: ComplianceRow) -> bool:
+    """Return whether a row's numbers are read in per cent."""
+    return row.criterion.dimension is Dimension.RATIO
