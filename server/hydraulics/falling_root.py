@@ -1,6 +1,7 @@
 """The root of a falling function known by its values only, for whole arrays at once."""
 
 from collections.abc import Callable
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -9,12 +10,21 @@ from server.hydraulics.errors import SolutionNotFound
 
 MOST_PASSES = 100
 SECANT_ONLY = 24  # passes after which every other one is a bisection
-ENOUGH = 1e-13  # share of the bracket's larger end below which a step changes nothing
+ENOUGH = 1e-12  # share of the bracket's larger end below which a step changes nothing
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class FallingRoot:
+    """Roots and the values at the ends of the brackets, which tell why there is none."""
+
+    root: FloatArray  # nan where there is none
+    at_low: FloatArray
+    at_high: FloatArray
 
 
 def falling_root(
     function: Callable[[FloatArray], FloatArray], low: FloatArray, high: FloatArray
-) -> FloatArray:
+) -> FallingRoot:
     """Return where a falling function passes zero: secants, kept inside a shrinking bracket.
 
     Parameters
@@ -26,8 +36,8 @@ def falling_root(
 
     Returns
     -------
-    ndarray, shape (...)
-        Roots, to 1e-13 of the bracket's larger end; nan where the value is below zero at `low`,
+    FallingRoot
+        Roots, to 1e-12 of the bracket's larger end; nan where the value is below zero at `low`,
         above zero at `high`, or not a number.
 
     Raises
@@ -43,12 +53,15 @@ def falling_root(
     below, above = np.array(low, dtype=np.float64), np.array(high, dtype=np.float64)
     value_below, value_above = function(below), function(above)
     bracketed = (value_below >= 0) & (value_above <= 0)
+    at_low, at_high = value_below, value_above
     enough = ENOUGH * np.maximum(np.abs(below), np.abs(above))
     x, moving = np.where(value_above == 0, above, below), bracketed & (value_below != 0)
     moving &= value_above != 0
     for pass_number in range(MOST_PASSES):
         if not moving.any():
-            return np.where(bracketed, x, np.nan)
+            return FallingRoot(
+                root=np.where(bracketed, x, np.nan), at_low=at_low, at_high=at_high
+            )
         fall = value_below - value_above
         share = np.where(moving, value_below, 0.0) / np.where(moving & (fall > 0), fall, 1.0)
         if pass_number > SECANT_ONLY and pass_number % 2:
@@ -57,8 +70,12 @@ def falling_root(
         value = np.where(moving, function(ahead), 0.0)
         rises, falls = moving & (value > 0), moving & (value < 0)
         # the end that stays is weighed down, so that the next secant passes over the root
-        value_above = np.where(rises, value_above * _weight(value, value_below, rises), value_above)
-        value_below = np.where(falls, value_below * _weight(value, value_above, falls), value_below)
+        value_above = np.where(
+            rises, value_above * _weight(value, value_below, rises), value_above
+        )
+        value_below = np.where(
+            falls, value_below * _weight(value, value_above, falls), value_below
+        )
         below, value_below = np.where(rises, ahead, below), np.where(rises, value, value_below)
         above, value_above = np.where(falls, ahead, above), np.where(falls, value, value_above)
         near = (np.abs(ahead - x) <= enough) | (above - below <= enough) | (value == 0)

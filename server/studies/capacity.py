@@ -13,7 +13,7 @@ import numpy as np
 from server.hydraulics import affinity
 from server.hydraulics.falling_root import falling_root
 from server.studies.limits import StudyLimits
-from server.studies.lowering.lowered import Floats, LoweredSet
+from server.studies.lowering.lowered import Flags, Floats, LoweredSet
 from server.studies.set_ends import CommonSpeed
 from server.studies.system_heads import Draw, SystemHeads, point_pressures, system_heads
 
@@ -60,24 +60,24 @@ def capacities(
 
     low = np.array(np.broadcast_to(units.last_head[:, None], shape))
     high = np.array(np.broadcast_to(units.peak_head[:, None], shape))
-    at_end, at_shut = short(low), short(high)
     # where no root lies between, the limit binds at once (y at the peak) or never (at the last row)
-    y = falling_root(short, low, high)
+    found = falling_root(short, low, high)
+    y, at_end, at_shut = found.root, found.at_low, found.at_high
     y = np.where(at_shut > 0, high, np.where(at_end <= 0, low, y))
     flow = speed * units.total(y)
     flow[at_shut > 0] = 0.0
     end = speed * units.total(units.last_head)
     free = at_end <= 0
-    found = []
+    rows = []
     for m in range(shape[0]):
         head, head_limit, at = _least(end[m], flow[m, :points], free[m, :points], names)
         everything, all_limit, _ = _least(end[m], flow[m], free[m], names)
         y_head = float(units.last_head[m]) if at is None else float(y[m, at])
-        found.append(
+        rows.append(
             Capacity(by_head=head, by_head_limit=head_limit, by_all=everything,
                      by_all_limit=all_limit, share=_largest_share(units, m, y_head))
         )  # fmt: skip
-    return tuple(found)
+    return tuple(rows)
 
 
 def _excess(
@@ -102,7 +102,7 @@ def _excess(
 
 def _heads(of: LoweredSet, asked: Asked, flow: Floats) -> SystemHeads:
     """Return the grades at low supply on aged pipes, the fire served first."""
-    aged = of.main.knows("aged") and of.suction_line.knows("aged")
+    aged = of.route.knows("aged")
     fire = np.minimum(flow, asked.fire_flow[:, None])
     draw = Draw(
         domestic=flow - fire, fire=fire, fire_point=asked.fire_point[:, None] + 0 * flow,
@@ -120,20 +120,28 @@ def _npsh_excess(
     least = np.full(y.shape, np.inf)
     for t, x in enumerate(units.kind_flows(y)):
         one, flow = of.units[t], speed * x
-        required = affinity.npsh_required(one.curve, flow, speed=speed, exponent=one.npsh_exponent)
-        available = vapour + suction_grade - one.suction_coefficient * flow * flow - of.eye_level
+        required = affinity.npsh_required(
+            one.curve, flow, speed=speed, exponent=one.npsh_exponent
+        )
+        available = (
+            vapour + suction_grade - one.suction_coefficient * flow * flow - of.eye_level
+        )
         asked = np.maximum(limits.npsh_ratio * required, required + limits.npsh_margin)
         least = np.where(units.count[:, t] > 0, np.minimum(least, available - asked), least)
     return least
 
 
 def _least(
-    end: float, flow: Floats, free: Floats, names: Sequence[str]
+    end: float, flow: Floats, free: Flags, names: Sequence[str]
 ) -> tuple[float, str, int | None]:
     """Return the smallest limit, its name and place; the end of the curve where none is before."""
     before = np.where(free, np.inf, flow)
     at = int(np.argmin(before))
-    return (float(before[at]), names[at], at) if before[at] < end else (float(end), "curve_end", None)
+    return (
+        (float(before[at]), names[at], at)
+        if before[at] < end
+        else (float(end), "curve_end", None)
+    )
 
 
 def _largest_share(units: CommonSpeed, row: int, y: float) -> float:

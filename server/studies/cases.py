@@ -25,7 +25,9 @@ class Cases:
     shown: Flags  # (C,) the scenario's own supply state
     is_fire: Flags  # (C,)
     draw: Draw  # arrays (C,)
-    running: tuple[tuple[int, ...], ...]  # per case, slots that may run: duty, and who replaces one out
+    running: tuple[
+        tuple[int, ...], ...
+    ]  # per case, slots that may run: duty, and who replaces one out
     jockeys: tuple[tuple[int, ...], ...]  # per case, jockey slots that may run
 
 
@@ -53,8 +55,12 @@ def cases_of(of: LoweredSet) -> Cases:
         draw=Draw(
             domestic=_each(of.scenarios, [s.domestic for s in of.scenarios]),
             fire=_each(of.scenarios, [s.fire for s in of.scenarios]),
-            fire_point=_each(of.scenarios, [s.fire_point for s in of.scenarios]).astype(np.intp),
-            aged=_each(of.scenarios, [s.pipes == "aged" for s in of.scenarios]).astype(np.bool_),
+            fire_point=_each(of.scenarios, [s.fire_point for s in of.scenarios]).astype(
+                np.intp
+            ),
+            aged=_each(of.scenarios, [s.pipes == "aged" for s in of.scenarios]).astype(
+                np.bool_
+            ),
             shift=np.concatenate([shifts(of, s.low_shift) for s in of.scenarios]),
         ),
         running=tuple(running),
@@ -103,5 +109,3 @@ def may_run(
         mains += [i for i in left if slots[i].facts.role == "standby"][:1]
     jockeys = tuple(i for i in left if slots[i].facts.role == "jockey")
     return tuple(sorted(mains)), jockeys
-
-

@@ -64,7 +64,8 @@ def choose(
         return np.full(cases, -1, dtype=np.intp), np.full(cases, NONE, dtype=np.int8)
     preferred = np.array([slot.preferred for slot in slots], dtype=np.float64)
     allowable = np.array(
-        [(slot.facts.allowable_low, slot.facts.allowable_high) for slot in slots], dtype=np.float64
+        [(slot.facts.allowable_low, slot.facts.allowable_high) for slot in slots],
+        dtype=np.float64,
     )
     solved = state == State.SOLVED
     inside = solved & _all_inside(share, preferred, combinations)
@@ -119,4 +120,6 @@ def _total(values: Flags) -> Floats:
 
 def _worst(values: Floats) -> Floats:
     """Return the largest of the states that have a number, 0 where none has."""
-    return np.asarray(_by_scenario(np.nan_to_num(values, nan=0.0)).max(axis=1), dtype=np.float64)
+    return np.asarray(
+        _by_scenario(np.nan_to_num(values, nan=0.0)).max(axis=1), dtype=np.float64
+    )

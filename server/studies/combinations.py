@@ -60,7 +60,9 @@ def combinations_of(
         return len(mask), slots[mask[0]].facts.role != "jockey", mask
 
     masks = tuple(sorted(frozenset().union(*per_case), key=rank))
-    available = np.array([[mask in some for mask in masks] for some in per_case], dtype=np.bool_)
+    available = np.array(
+        [[mask in some for mask in masks] for some in per_case], dtype=np.bool_
+    )
     return masks, available.reshape(len(per_case), len(masks))
 
 

@@ -3,7 +3,6 @@
 import numpy as np
 
 from server import __version__
-from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
 from server.station.station import Station
 from server.studies.cases import Cases, cases_of
@@ -15,7 +14,7 @@ from server.studies.lowering import lower
 from server.studies.lowering.lowered import Flags, LoweredSet
 from server.studies.made_cases import made_cases
 from server.studies.set_ends import at_common_speed, flow_at_end, zero_flow_speed
-from server.studies.set_states import SetStates, legs_of, solve_states
+from server.studies.set_states import SetStates, solve_states
 from server.studies.shapes import Stamp
 from server.studies.system_heads import SystemHeads, point_pressures, system_heads
 
@@ -57,11 +56,10 @@ def duty_of(of: LoweredSet, limits: StudyLimits, stamp: Stamp) -> DutyResult:
     heads = system_heads(of, cases.draw)
     masks, available = combinations_of(of.slots, cases.running, cases.jockeys)
     combinations = as_flags(masks, len(of.slots))
-    legs = legs_of(of)
     states = _only_available(
-        solve_states(of, legs, combinations, cases.draw.flow, heads.required_head), available
+        solve_states(of, combinations, cases.draw.flow, heads.required_head), available
     )
-    return _result(of, limits, stamp, cases, heads, masks, available, combinations, legs, states)
+    return _result(of, limits, stamp, cases, heads, masks, available, combinations, states)
 
 
 def _only_available(states: SetStates, available: Flags) -> SetStates:
@@ -79,7 +77,7 @@ def _only_available(states: SetStates, available: Flags) -> SetStates:
 
 def _result(
     of: LoweredSet, limits: StudyLimits, stamp: Stamp, cases: Cases, heads: SystemHeads,
-    masks: tuple[Mask, ...], available: Flags, combinations: Flags, legs: tuple[LegCurve, ...],
+    masks: tuple[Mask, ...], available: Flags, combinations: Flags,
     states: SetStates,
 ) -> DutyResult:  # fmt: skip
     """Put the result together: pressures follow from grades, the choice from all of it."""
@@ -90,7 +88,7 @@ def _result(
     grade, pressure = point_pressures(of, entry, heads.zone_loss[:, None, :])
     discharge_pressure = water.weight * (discharge - levels.discharge_gauge_level)
     held = discharge_pressure if levels.point < 0 else pressure[..., levels.point]
-    units = at_common_speed(of, legs, combinations)
+    units = at_common_speed(of, combinations)
     end = flow_at_end(of, units)
     slot = states.slot
     chosen, choice_class = choose(
@@ -98,9 +96,11 @@ def _result(
         share=slot["best_efficiency_share"], combinations=combinations, held_pressure=held,
         set_point=levels.pressure, flow_at_end=end,
     )  # fmt: skip
-    shape = states.state.shape
+    velocity = of.route.velocities(flow)
     vapour = (water.atmosphere - water.vapour_pressure) / water.weight
-    available_head = vapour + heads.suction_grade[:, None, None] - slot["suction_loss"] - of.eye_level
+    available_head = (
+        vapour + heads.suction_grade[:, None, None] - slot["suction_loss"] - of.eye_level
+    )
     running = np.isfinite(slot["npsh_required"]) | np.isfinite(slot["best_efficiency_share"])
     result = DutyResult(
         stamp=stamp,
@@ -146,18 +146,16 @@ def _result(
         discharge_grade=discharge,
         discharge_pressure=discharge_pressure,
         zone_entry_grade=entry,
-        suction_line_velocity=of.suction_line.velocities(flow),
-        main_velocity=of.main.velocities(flow),
+        suction_line_velocity=velocity[:, : of.suction_reaches],
+        main_velocity=velocity[:, of.suction_reaches :],
         suction_branch_velocity=slot["suction_velocity"],
         discharge_branch_velocity=slot["discharge_velocity"],
         pressure_per_speed=water.weight * states.head_per_per_cent,
         zero_flow_speed=zero_flow_speed(of, units, cases.draw),
-        flow_at_end=np.broadcast_to(end, shape),
+        flow_at_end=np.broadcast_to(end, states.state.shape),
         energy_residual=states.energy_residual,
         mass_residual=states.mass_residual,
-        made=made_cases(
-            of, limits, cases, heads, legs, units, masks, states, pressure, chosen, end
-        ),
+        made=made_cases(of, limits, cases, heads, units, masks, states, pressure, chosen, end),
         needs_missing=of.needs_missing,
     )
     _lock(result)
@@ -170,5 +168,3 @@ def _lock(result: DutyResult) -> None:
         value = getattr(result, name)
         if isinstance(value, np.ndarray):
             value.flags.writeable = False
-
-

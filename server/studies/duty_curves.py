@@ -16,8 +16,9 @@ from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.limits import limits_of
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
-from server.studies.set_states import legs_of, solve_states
+from server.studies.set_states import solve_states
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
+from server.studies.system_heads import Draw, required_head, system_heads
 
 READINGS = 121  # points of a curve
 MOST_CURVES = 6
@@ -92,7 +93,7 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     lowered = lower(station, result.pump_set, limits_of(station))
     if isinstance(lowered, NotSolved):
         raise ValueError(f"set {result.pump_set} of the result is not solved in this document")
-    legs = legs_of(lowered)
+    legs = tuple(unit.leg for unit in lowered.units)
     drawn = _drawn(lowered, result)
     sets = tuple(_running_set(lowered, legs, result, k) for k in drawn)
     furthest = max((float(s.flow[-1]) for s in sets), default=0.0)
@@ -108,7 +109,7 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
         required_low=_required(lowered, grid, "low", pipes),
         required_high=_required(lowered, grid, "high", pipes),
         pipes=pipes,
-        along=_along(lowered, legs, result, drawn, sets, along_state, pipes),
+        along=_along(lowered, result, drawn, sets, along_state, pipes),
         along_state=along_state,
     )
 
@@ -116,7 +117,7 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
 def _pipes(lowered: LoweredSet, result: DutyResult) -> PipeAge:
     """Return the age that most cases are solved at, aged when both are as many."""
     aged = sum(case.pipes == "aged" for case in result.cases)
-    return "aged" if lowered.main.knows("aged") and 2 * aged >= len(result.cases) else "new"
+    return "aged" if lowered.route.knows("aged") and 2 * aged >= len(result.cases) else "new"
 
 
 def _units(lowered: LoweredSet, result: DutyResult, combination: int) -> list[int]:
@@ -198,31 +199,20 @@ def _held(
 
 
 def _suction_grade(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> Floats:
-    shift = lowered.supply.shift[SUPPLY_STATES.index(state)]
-    lost = lowered.suction_line.head_loss(
-        flow, np.full(flow.shape, pipes == "aged"), lowered.water.kinematic_viscosity
-    )
-    return np.asarray(lowered.supply.grade(flow, shift) - lost)
+    none = np.zeros(flow.shape)
+    shift = np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)])
+    draw = Draw(domestic=flow, fire=none, fire_point=-1, aged=pipes == "aged", shift=shift)
+    return system_heads(lowered, draw).suction_grade
 
 
 def _required(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> Floats:
     """Return the head that holds the set point, all flow taken as demand of the zone. [m]"""
-    control, weight = lowered.control, lowered.water.weight
-    suction = _suction_grade(lowered, flow, state, pipes)
-    if control.point < 0:
-        held = control.discharge_gauge_level + control.pressure / weight
-        return np.asarray(held - suction)
-    none = np.zeros(flow.shape)
-    lost = lowered.points.loss(flow, none, none - 1)[..., control.point]
-    main = lowered.main.head_loss(
-        flow, np.full(flow.shape, pipes == "aged"), lowered.water.kinematic_viscosity
-    )
-    held = lowered.points.elevation[control.point] + control.pressure / weight
-    return np.asarray(held + lost + main - suction)
+    shift = lowered.supply.shift[SUPPLY_STATES.index(state)]
+    return required_head(lowered, flow, pipes == "aged", shift)
 
 
 def _along(
-    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult, drawn: tuple[int, ...],
+    lowered: LoweredSet, result: DutyResult, drawn: tuple[int, ...],
     sets: tuple[RunningSet, ...], state: SupplyState, pipes: PipeAge,
 ) -> tuple[AlongControl, ...]:  # fmt: skip
     """Return each drawn combination where it holds the set point, solved as the duty is."""
@@ -230,7 +220,7 @@ def _along(
     for k, running in zip(drawn, sets, strict=True):
         flow = np.linspace(0.0, float(running.flow[-1]), READINGS)
         solved = solve_states(
-            lowered, legs, result.combinations[k][None, :], flow,
+            lowered, result.combinations[k][None, :], flow,
             _required(lowered, flow, state, pipes),
         )  # fmt: skip
         held = (solved.state[:, 0] == State.SOLVED) & (flow > 0)

@@ -8,7 +8,6 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from server.hydraulics.leg_curve import LegCurve
 from server.studies.capacity import NO_UNIT, Asked, Capacity, capacities
 from server.studies.cases import installed_slots, shifts
 from server.studies.duty_result import FirmCapacity
@@ -39,12 +38,10 @@ class Requirement:
         return (self.fire_flow, self.fire_point, self.shift, tuple(self.least))
 
 
-def firm_capacity(
-    of: LoweredSet, limits: StudyLimits, legs: Sequence[LegCurve]
-) -> tuple[FirmCapacity, ...]:
+def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ...]:
     """Return the firm capacity of each horizon for peak hour and for each fire with its demand."""
     asked = [one for one in requirements(of, limits) if not np.isnan(one.shift)]
-    solved = _solve(of, limits, legs, asked)
+    solved = _solve(of, limits, asked)
     found = []
     for one in asked:
         installed = installed_slots(of.slots, one.horizon.order)
@@ -72,7 +69,7 @@ def firm_capacity(
 
 
 def _solve(
-    of: LoweredSet, limits: StudyLimits, legs: Sequence[LegCurve], asked: Sequence[Requirement]
+    of: LoweredSet, limits: StudyLimits, asked: Sequence[Requirement]
 ) -> dict[tuple[Counts, tuple[object, ...]], Capacity]:
     """Return every capacity that is looked up, solved side by side."""
     jobs: dict[tuple[Counts, tuple[object, ...]], Requirement] = {}
@@ -84,7 +81,8 @@ def _solve(
     rest = {key: one for key, one in jobs.items() if any(key[0])}
     if not rest:
         return solved
-    units = CommonSpeed(legs=tuple(legs), count=np.array([counts for counts, _ in rest], dtype=np.float64))
+    legs = tuple(unit.leg for unit in of.units)
+    units = CommonSpeed(legs=legs, count=np.array([n for n, _ in rest], dtype=np.float64))
     rows = tuple(rest.values())
     together = Asked(
         fire_flow=np.array([one.fire_flow for one in rows]),

@@ -4,7 +4,6 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
 from server.studies.cases import Cases, installed_slots, largest
 from server.studies.combinations import Mask
@@ -21,7 +20,7 @@ LAST = 10**6  # order of a horizon after all: every slot is installed
 
 def made_cases(
     of: LoweredSet, limits: StudyLimits, cases: Cases, heads: SystemHeads,
-    legs: Sequence[LegCurve], units: CommonSpeed, masks: Sequence[Mask], states: SetStates, pressure: Floats,
+    units: CommonSpeed, masks: Sequence[Mask], states: SetStates, pressure: Floats,
     chosen: Indices, flow_at_end: Floats,
 ) -> MadeCases:  # fmt: skip
     """Return the made cases of a set whose scenario cases are solved."""
@@ -30,7 +29,7 @@ def made_cases(
         station_off=station_off(of, cases, heads),
         after_trip=after_trip(of, cases, masks, states, pressure, chosen, flow_at_end),
         handover=handover(of, units, masks),
-        firm_capacity=firm_capacity(of, limits, legs),
+        firm_capacity=firm_capacity(of, limits),
     )
 
 
@@ -46,7 +45,9 @@ def zero_flow(of: LoweredSet, masks: Sequence[Mask]) -> ZeroFlow | None:
     shift = of.supply.shift
     static = of.supply.grade(np.zeros(shift.shape), shift)
     control = of.control
-    shutoff = [np.nan if s.facts.shutoff_head is None else s.facts.shutoff_head for s in of.slots]
+    shutoff = [
+        np.nan if s.facts.shutoff_head is None else s.facts.shutoff_head for s in of.slots
+    ]
     asked = required_head(of, np.zeros(shift.shape), True, np.nan_to_num(shift))
     asked = np.where(np.isfinite(shift), asked, np.nan)
     holding = max(shutoff[i] for i in masks[0])
@@ -128,7 +129,7 @@ def after_trip(
 
 def handover(of: LoweredSet, units: CommonSpeed, masks: Sequence[Mask]) -> Handover:
     """Return the flows between one number of units and the next, on aged pipes where known."""
-    aged = of.main.knows("aged") and of.suction_line.knows("aged")
+    aged = of.route.knows("aged")
     flows = preferred_flows(of, units, aged, of.supply.shift)
     chain = steps(of, masks)
     fewer, more = chain[:-1], chain[1:]

@@ -51,14 +51,17 @@ class CommonSpeed:
         return self._largest(given)
 
     def _largest(self, heads: Sequence[float]) -> Floats:
-        return np.asarray(np.where(self.count > 0, heads, -np.inf).max(axis=1), dtype=np.float64)
+        return np.asarray(
+            np.where(self.count > 0, heads, -np.inf).max(axis=1), dtype=np.float64
+        )
 
 
-def at_common_speed(of: LoweredSet, legs: Sequence[LegCurve], combinations: Flags) -> CommonSpeed:
+def at_common_speed(of: LoweredSet, combinations: Flags) -> CommonSpeed:
     """Return combinations (M, N) of slots as counts of their units."""
     kinds = np.array([slot.unit for slot in of.slots])
-    count = [(combinations & (kinds == t)).sum(axis=1) for t in range(len(legs))]
-    return CommonSpeed(legs=tuple(legs), count=np.stack(count, axis=1).astype(np.float64))
+    count = [(combinations & (kinds == t)).sum(axis=1) for t in range(len(of.units))]
+    legs = tuple(unit.leg for unit in of.units)
+    return CommonSpeed(legs=legs, count=np.stack(count, axis=1).astype(np.float64))
 
 
 def flow_at_end(of: LoweredSet, units: CommonSpeed) -> Floats:
@@ -112,24 +115,29 @@ def preferred_flows(
         return required_head(of, speed * flows, aged, shifts) / speed**2 - heads
 
     bottom, top = np.full(heads.shape, low), np.full(heads.shape, high)
-    flow = np.where(known, falling_root(gap, bottom, top) * flows, np.nan)
+    found = falling_root(gap, bottom, top)
+    flow = np.where(known, found.root * flows, np.nan)
     start, end = flow[:, 0], flow[:, 1]
     # where a speed limit comes before the end of the region, the limit is the end of the range
-    too_slow = known[:, 0] & (gap(bottom)[:, 0] < 0)
-    too_fast = known[:, 1] & (gap(top)[:, 1] > 0)
+    too_slow = known[:, 0] & (found.at_low[:, 0] < 0)
+    too_fast = known[:, 1] & (found.at_high[:, 1] > 0)
     if too_slow.any():
         start = np.where(too_slow, _flows_at_speed(of, units, low, aged, shift), start)
     if too_fast.any():
         end = np.where(too_fast, _flows_at_speed(of, units, high, aged, shift), end)
     empty = ~(end > start)
-    return PreferredFlows(start=np.where(empty, np.nan, start), end=np.where(empty, np.nan, end))
+    return PreferredFlows(
+        start=np.where(empty, np.nan, start), end=np.where(empty, np.nan, end)
+    )
 
 
 def _region_heads(of: LoweredSet, units: CommonSpeed) -> Floats:
     """Return y where the last unit enters its preferred region and where the first leaves it."""
     enters, leaves = [], []
     for t, leg in enumerate(units.legs):
-        low, high = next((slot.preferred for slot in of.slots if slot.unit == t), (np.nan, np.nan))
+        low, high = next(
+            (slot.preferred for slot in of.slots if slot.unit == t), (np.nan, np.nan)
+        )
         best = leg.pump.best
         flow = np.nan if best is None else best.flow
         within = np.clip(np.array([low, high]) * flow, leg.first_flow, leg.last_flow)
@@ -155,6 +163,6 @@ def _flows_at_speed(
 
     low = np.array(np.broadcast_to(units.last_head[:, None], shape))
     high = np.array(np.broadcast_to(units.peak_head[:, None], shape))
-    y = falling_root(gap, low, high)
+    y = falling_root(gap, low, high).root
     flow = speed * units.total(np.where(np.isnan(y), high, y))
     return np.where(np.isnan(y) | np.isnan(shift), np.nan, flow)

@@ -1,6 +1,5 @@
 """States of every running combination in every case, solved as arrays."""
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -8,7 +7,6 @@ from numpy.typing import NDArray
 
 from server.hydraulics import affinity
 from server.hydraulics.control import hold_head
-from server.hydraulics.leg_curve import LegCurve, leg_curve
 from server.hydraulics.states import State
 from server.studies.lowering.lowered import Flags, Floats, LoweredSet
 
@@ -33,13 +31,8 @@ class SetStates:
     slot: dict[str, Floats]  # the quantities of PER_SLOT
 
 
-def legs_of(of: LoweredSet) -> tuple[LegCurve, ...]:
-    """Return the leg of each unit, pump less branch losses."""
-    return tuple(leg_curve(unit.curve, loss=unit.leg_coefficient) for unit in of.units)
-
-
 def solve_states(
-    of: LoweredSet, legs: Sequence[LegCurve], combinations: Flags, flow: Floats, required: Floats
+    of: LoweredSet, combinations: Flags, flow: Floats, required: Floats
 ) -> SetStates:
     """Return the states of K combinations in C cases.
 
@@ -47,8 +40,6 @@ def solve_states(
     ----------
     of : LoweredSet
         The set.
-    legs : sequence of LegCurve
-        Leg of each unit.
     combinations : ndarray of bool, shape (K, N)
         Slots that run in each combination.
     flow, required : ndarray, shape (C,)
@@ -59,13 +50,15 @@ def solve_states(
     held = hold_head(
         flow,
         head=np.where(unknown, 0.0, required),
-        legs=[legs[slot.unit] for slot in of.slots],
+        legs=[of.units[slot.unit].leg for slot in of.slots],
         combinations=combinations,
         lowest_speed=of.control.lowest_speed,
         highest_speed=of.control.highest_speed,
     )
     state = np.array(held.state)
-    state[_valve_stays_shut(of, combinations, held.speed, held.head, held.leg_flow)] = State.HELD_SHUT
+    state[_valve_stays_shut(of, combinations, held.speed, held.head, held.leg_flow)] = (
+        State.HELD_SHUT
+    )
     state[unknown] = State.NOT_AVAILABLE
     blank = np.where(unknown, np.nan, 1.0)[:, None]
     speed = held.speed * blank
@@ -97,12 +90,16 @@ def _valve_stays_shut(
     return shut
 
 
-def _readings(of: LoweredSet, combinations: Flags, leg_flow: Floats, speed: Floats) -> dict[str, Floats]:
+def _readings(
+    of: LoweredSet, combinations: Flags, leg_flow: Floats, speed: Floats
+) -> dict[str, Floats]:
     """Return the quantities of PER_SLOT, shape (C, K, N): read once for each kind of unit."""
     shape = leg_flow.shape
     slot = {name: np.full(shape, np.nan) for name in PER_SLOT}
     for unit in range(len(of.units)):
-        slots = np.array([i for i, one in enumerate(of.slots) if one.unit == unit], dtype=np.intp)
+        slots = np.array(
+            [i for i, one in enumerate(of.slots) if one.unit == unit], dtype=np.intp
+        )
         columns = np.flatnonzero(combinations[:, slots].any(axis=1))
         if not columns.size:
             continue
@@ -111,7 +108,9 @@ def _readings(of: LoweredSet, combinations: Flags, leg_flow: Floats, speed: Floa
         one = unit_readings(of, unit, leg_flow[:, columns, first], speed[:, columns])
         running = combinations[np.ix_(columns, slots)]
         for name, values in one.items():
-            slot[name][:, columns[:, None], slots] = np.where(running, values[..., None], np.nan)
+            slot[name][:, columns[:, None], slots] = np.where(
+                running, values[..., None], np.nan
+            )
     return slot
 
 

@@ -45,14 +45,17 @@ def system_heads(of: LoweredSet, draw: Draw) -> SystemHeads:
     """
     flow, viscosity = draw.flow, of.water.kinematic_viscosity
     supply = of.supply.grade(flow, draw.shift)
-    suction = supply - of.suction_line.head_loss(flow, draw.aged, viscosity)
-    main = of.main.head_loss(flow, draw.aged, viscosity)
+    lost = of.route.reach_losses(flow, draw.aged, viscosity)
+    suction = supply - lost[..., : of.suction_reaches].sum(axis=-1)
+    main = lost[..., of.suction_reaches :].sum(axis=-1)
     zone = of.points.loss(draw.domestic, draw.fire, draw.fire_point)
     held = of.control.pressure / of.water.weight
     if of.control.point < 0:
         asked = of.control.discharge_gauge_level + held
     else:
-        asked = of.points.elevation[of.control.point] + held + main + zone[..., of.control.point]
+        asked = (
+            of.points.elevation[of.control.point] + held + main + zone[..., of.control.point]
+        )
     return SystemHeads(
         supply_grade=supply, suction_grade=suction, main_loss=main, zone_loss=zone,
         required_head=asked - suction,
@@ -67,7 +70,9 @@ def required_head(of: LoweredSet, flow: Floats, aged: ArrayLike, shift: ArrayLik
     return system_heads(of, draw).required_head
 
 
-def point_pressures(of: LoweredSet, zone_entry: Floats, zone_loss: Floats) -> tuple[Floats, Floats]:
+def point_pressures(
+    of: LoweredSet, zone_entry: Floats, zone_loss: Floats
+) -> tuple[Floats, Floats]:
     """Return grade [m] and gauge pressure [Pa] at each point, shape (..., P)."""
     grade = zone_entry[..., None] - zone_loss
     return grade, of.water.weight * (grade - of.points.elevation)

@@ -8,7 +8,7 @@ from server.studies.limits import StudyLimits
 from server.studies.lowering import pumps, supply, zone
 from server.studies.lowering.lowered import LoweredSet, Scenario
 from server.studies.lowering.needs import Needs
-from server.studies.lowering.pipes import line
+from server.studies.lowering.pipes import route
 from server.studies.shapes import PipeAge
 
 
@@ -38,9 +38,7 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     of_bypass = supply.bypass(station, needs)
     points = zone.points(station, needs)
     scenarios = zone.scenarios(station, needs)
-    ages = _ages(scenarios)
-    suction_line = line("/suction_line", station.suction_line, ages, needs)
-    main = line("/discharge_main", station.discharge_main, ages, needs)
+    way = route(station, _ages(scenarios), needs)
     control = pumps.control(station, pump_set, points.facts, limits, needs)
     units, slots = pumps.units_and_slots(
         station, pump_set, limits, control.highest_speed, of_water.density, needs
@@ -49,8 +47,8 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     if needs.stops or of_supply is None:
         return NotSolved(pump_set_id, tuple(needs.stops))
     return LoweredSet(
-        pump_set=pump_set_id, water=of_water, supply=of_supply, suction_line=suction_line,
-        main=main, points=points, units=units, slots=slots, control=control, eye_level=eye,
+        pump_set=pump_set_id, water=of_water, supply=of_supply, route=way,
+        suction_reaches=len(station.suction_line.reaches), points=points, units=units, slots=slots, control=control, eye_level=eye,
         scenarios=scenarios, growth=zone.growth(station), bypass=of_bypass,
         needs_missing=_pairs(needs.leaves_out),
     )  # fmt: skip

@@ -6,6 +6,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from server.hydraulics.conduit import Conduit
+from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.pump_curve import PumpCurve
 from server.hydraulics.supply import FixedGradeSupply, FlowTestSupply
 from server.hydraulics.water import GRAVITY
@@ -68,15 +69,16 @@ class Line:
     new: tuple[Conduit, ...]  # empty when that age is not known
     aged: tuple[Conduit, ...]
 
-    def head_loss(self, flow: ArrayLike, aged: ArrayLike, viscosity: float) -> Floats:
-        """Return the head lost from end to end at the age that each flow asks for."""
+    def reach_losses(self, flow: ArrayLike, aged: ArrayLike, viscosity: float) -> Floats:
+        """Return the head lost in each reach at the age that each flow asks for, (..., R)."""
         old = np.asarray(aged, dtype=np.bool_)
         at = np.asarray(flow, dtype=np.float64)
         if not self.new or bool(old.all()):
             return _lost(self.aged, at, viscosity)
         if not self.aged or not bool(old.any()):
             return _lost(self.new, at, viscosity)
-        return np.where(old, _lost(self.aged, at, viscosity), _lost(self.new, at, viscosity))
+        worn = np.broadcast_to(old, at.shape)[..., None]
+        return np.where(worn, _lost(self.aged, at, viscosity), _lost(self.new, at, viscosity))
 
     def velocities(self, flow: ArrayLike) -> Floats:
         """Return the velocity in each reach, shape (..., R)."""
@@ -88,10 +90,8 @@ class Line:
 
 
 def _lost(conduits: tuple[Conduit, ...], flow: Floats, viscosity: float) -> Floats:
-    total = np.zeros(flow.shape)
-    for conduit in conduits:
-        total = total + conduit.head_loss(flow, kinematic_viscosity=viscosity)
-    return total
+    parts = [c.reach_head_loss(flow, kinematic_viscosity=viscosity) for c in conduits]
+    return parts[0] if len(parts) == 1 else np.concatenate(parts, axis=-1)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -118,6 +118,7 @@ class Unit:
     """A pump in its leg; slots with the same pump, curve and leg share one."""
 
     curve: PumpCurve
+    leg: LegCurve  # the curve less the loss of both branches
     suction_coefficient: float  # c in h = c q^2 [m/(m3/s)2]
     discharge_coefficient: float  # check valve included
     suction_bore: float  # [m]
@@ -128,11 +129,6 @@ class Unit:
     npsh_exponent: float
     motor_efficiency: float  # nan when absent
     drive_efficiency: float
-
-    @property
-    def leg_coefficient(self) -> float:
-        """Loss of the whole leg over flow squared [m/(m3/s)2]."""
-        return self.suction_coefficient + self.discharge_coefficient
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -181,7 +177,9 @@ class Growth:
     order: int
     year: int | None
     peak_hour: float | None
-    fires: tuple[tuple[str, float, float, int], ...]  # (fire id, domestic beside, fire flow, point)
+    fires: tuple[
+        tuple[str, float, float, int], ...
+    ]  # (fire id, domestic beside, fire flow, point)
     low_shift: float
 
 
@@ -199,8 +197,8 @@ class LoweredSet:
     pump_set: str
     water: Water
     supply: Supply
-    suction_line: Line
-    main: Line
+    route: Line  # suction line, then discharge main: one flow, so one reading gives both
+    suction_reaches: int  # how many of its reaches lie before the pumps
     points: ZonePoints
     units: tuple[Unit, ...]
     slots: tuple[Slot, ...]

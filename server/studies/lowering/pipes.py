@@ -1,12 +1,11 @@
 """Reaches, fittings and legs from the document to conduits and loss coefficients."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from itertools import groupby
 
 import numpy as np
 
-from server.hydraulics.conduit import Conduit as PipeLine
-from server.hydraulics.conduit import FrictionLaw, conduit
+from server.hydraulics.conduit import Conduit, FrictionLaw, conduit
 from server.hydraulics.fittings import (
     FULL_OPEN_VELOCITY,
     k_from_cv,
@@ -14,8 +13,9 @@ from server.hydraulics.fittings import (
     k_from_kv,
     quadratic_coefficient,
 )
-from server.station.conduit import Branch, Conduit, Fitting, Leg, Reach
-from server.studies.lowering.lowered import Line
+from server.station.conduit import Branch, Fitting, Leg, Reach
+from server.station.station import Station
+from server.studies.lowering.lowered import Floats, Line
 from server.studies.lowering.needs import ABSENT, Needs
 from server.studies.shapes import PipeAge
 
@@ -23,42 +23,43 @@ OUTSIDE_LAW = "outside_friction_law"
 LAWS = {"colebrook": FrictionLaw.DARCY_WEISBACH, "hazen_williams": FrictionLaw.HAZEN_WILLIAMS}
 
 
-def line(path: str, entered: Conduit, ages: Iterable[PipeAge], needs: Needs) -> Line:
-    """Return a line of reaches; what is absent stops the study, but only at the ages used.
+def route(station: Station, ages: Iterable[PipeAge], needs: Needs) -> Line:
+    """Return the suction line and the discharge main as one line of reaches.
 
     Parameters
     ----------
-    path : str
-        Path of the conduit, "/discharge_main".
-    entered : Conduit
-        The reaches as entered.
+    station : Station
+        The document.
     ages : iterable of {"new", "aged"}
-        Ages that the scenarios use.
+        Ages that the scenarios use: what is absent at one of them stops the study.
     needs : Needs
         Gathers what is absent.
     """
-    if not entered.reaches:
-        needs.stop(f"{path}/reaches")
-        return Line(new=(), aged=())
+    reaches: list[tuple[str, Reach]] = []
+    for path, entered in (
+        ("/suction_line", station.suction_line), ("/discharge_main", station.discharge_main),
+    ):  # fmt: skip
+        if not entered.reaches:
+            needs.stop(f"{path}/reaches")
+        reaches += [(f"{path}/reaches/{reach.id}", reach) for reach in entered.reaches]
     used = set(ages)
-    shapes = [_shape(f"{path}/reaches/{r.id}", r, needs) for r in entered.reaches]
-    walls: dict[PipeAge, tuple[PipeLine, ...]] = {"new": (), "aged": ()}
+    shapes = [_shape(path, reach, needs) for path, reach in reaches]
+    walls: dict[PipeAge, tuple[Conduit, ...]] = {"new": (), "aged": ()}
     for age in walls:
-        resistances = [_wall(f"{path}/reaches/{r.id}", r, age, age in used, needs)
-                       for r in entered.reaches]  # fmt: skip
+        resistances = [_wall(path, reach, age, age in used, needs) for path, reach in reaches]
         columns = np.array([[*s, w] for s, w in zip(shapes, resistances, strict=True)])
-        if not np.all(np.isfinite(columns)):
+        if not reaches or not np.all(np.isfinite(columns)):
             continue
         try:
-            walls[age] = _conduits(entered.reaches, columns)
+            walls[age] = _conduits([reach for _, reach in reaches], columns)
         except ValueError:
             # the ranges of single fields were checked on entry; roughness against bore was not
             worst = int(np.argmax(columns[:, 4] / columns[:, 1]))
-            needs.stop(f"{path}/reaches/{entered.reaches[worst].id}/roughness/{age}", OUTSIDE_LAW)
+            needs.stop(f"{reaches[worst][0]}/roughness/{age}", OUTSIDE_LAW)
     return Line(new=walls["new"], aged=walls["aged"])
 
 
-def _conduits(reaches: tuple[Reach, ...], columns: np.ndarray) -> tuple[PipeLine, ...]:  # type: ignore[type-arg]
+def _conduits(reaches: Sequence[Reach], columns: Floats) -> tuple[Conduit, ...]:
     """Return neighbouring reaches of one law as one conduit each."""
     parts = []
     for law, group in groupby(range(len(reaches)), key=lambda i: reaches[i].roughness.law):
@@ -78,7 +79,9 @@ def _shape(path: str, reach: Reach, needs: Needs) -> tuple[float, float, float, 
         needs.stop(f"{path}/k")
     k = reach.k or 0.0
     for fitting in reach.fittings:
-        more_k, more_length = _fitting(f"{path}/fittings/{fitting.id}/loss", fitting, bore, needs)
+        more_k, more_length = _fitting(
+            f"{path}/fittings/{fitting.id}/loss", fitting, bore, needs
+        )
         k += fitting.count * more_k
         length += fitting.count * more_length
     return length, bore, k, float(reach.barrels)
@@ -90,7 +93,10 @@ def _fitting(path: str, fitting: Fitting, bore: float, needs: Needs) -> tuple[fl
     if given.by == "equivalent_length":
         return 0.0, needs.must(f"{path}/length", given.length)
     if given.by == "loss_at_flow":
-        loss, flow = needs.must(f"{path}/loss", given.loss), needs.must(f"{path}/at_flow", given.at_flow)
+        loss, flow = (
+            needs.must(f"{path}/loss", given.loss),
+            needs.must(f"{path}/at_flow", given.at_flow),
+        )
         if not np.isfinite(loss + flow + bore):
             return np.nan, 0.0
         return float(k_from_head_loss(loss, flow=flow, bore=bore)), 0.0
@@ -99,7 +105,11 @@ def _fitting(path: str, fitting: Fitting, bore: float, needs: Needs) -> tuple[fl
         return np.nan, 0.0
     if given.by == "k" or not np.isfinite(bore):
         return given.value, 0.0
-    converted = k_from_kv(given.value, bore=bore) if given.by == "kv" else k_from_cv(given.value, bore=bore)
+    converted = (
+        k_from_kv(given.value, bore=bore)
+        if given.by == "kv"
+        else k_from_cv(given.value, bore=bore)
+    )
     return float(converted), 0.0
 
 
@@ -144,4 +154,6 @@ def _branch(path: str, branch: Branch, needs: Needs) -> tuple[float, float]:
     if branch.k is None:
         needs.stop(f"{path}/k")
         return np.nan, bore
-    return (float(quadratic_coefficient(branch.k, bore=bore)) if np.isfinite(bore) else np.nan), bore
+    return (
+        float(quadratic_coefficient(branch.k, bore=bore)) if np.isfinite(bore) else np.nan
+    ), bore

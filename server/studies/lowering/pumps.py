@@ -1,14 +1,16 @@
 """Slots, their pumps and legs, and the control of a set from the document."""
 
 import math
+from functools import lru_cache
 
 import numpy as np
 
 from server.hydraulics.errors import CurveRefused
+from server.hydraulics.leg_curve import LegCurve, leg_curve
 from server.hydraulics.pump_curve import PumpCurve, pump_curve
 from server.station.conduit import Leg
 from server.station.entry import Quantity
-from server.station.pump import Curve, Pump
+from server.station.pump import Curve, CurveTable, Pump
 from server.station.pump_set import PumpSet
 from server.station.pump_set import Slot as EnteredSlot
 from server.station.station import Station
@@ -23,6 +25,7 @@ DRIVE_EFFICIENCY = 0.97  # default where none is entered, criteria.md [-]
 NPSH_EXPONENT = 2.0
 HELD_KINDS = ("zone_point_pressure", "discharge_pressure")
 COLUMNS = ("flow", "head", "efficiency", "shaft_power", "npsh_required")
+KEPT = 64  # curves of pumps kept between lowerings
 POWER_READINGS = 241  # readings of a curve for its largest power
 
 
@@ -84,7 +87,9 @@ def _curve_of(pump: Pump, slot: EnteredSlot, path: str, needs: Needs) -> Curve |
 def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
     """Return a pump in its leg, None when its curve cannot be had."""
     lowered = _curve(pump, curve, needs)
-    suction, discharge, suction_bore, discharge_bore, cracking, open_at, assumed = branches(leg, needs)
+    suction, discharge, suction_bore, discharge_bore, cracking, open_at, assumed = branches(
+        leg, needs
+    )
     path = f"/pumps/{pump.id}"
     motor = needs.part(f"{path}/motor_efficiency", pump.motor_efficiency)
     drive = needs.default(f"{path}/drive_efficiency", pump.drive_efficiency, DRIVE_EFFICIENCY)
@@ -94,7 +99,7 @@ def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
     if lowered is None or not math.isfinite(suction + discharge):
         return None
     return Unit(
-        curve=lowered, suction_coefficient=suction, discharge_coefficient=discharge,
+        curve=lowered, leg=_leg(lowered, suction + discharge), suction_coefficient=suction, discharge_coefficient=discharge,
         suction_bore=suction_bore, discharge_bore=discharge_bore, cracking_head=cracking,
         full_open_velocity=open_at, full_open_assumed=assumed,
         npsh_exponent=NPSH_EXPONENT if pump.npsh_exponent is None else pump.npsh_exponent,
@@ -112,19 +117,10 @@ def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
         return None
     if not math.isfinite(speed):
         return None
-    columns = _columns(curve)
+    eyes = 2 if pump.kind == "double_suction" else 1
     try:
-        lowered = pump_curve(
-            columns["flow"] or [],
-            head=columns["head"],
-            # per minute, as specific speed counts it
-            tested_speed=speed * 60.0,
-            efficiency=columns["efficiency"],
-            shaft_power=columns["shaft_power"],
-            npsh_required=columns["npsh_required"],
-            bep_flow=si_or_none(curve.best_efficiency_flow),
-            stages=pump.stages,
-            eyes=2 if pump.kind == "double_suction" else 1,
+        lowered = _fitted(
+            curve.table, si_or_none(curve.best_efficiency_flow), speed, pump.stages, eyes
         )
     except CurveRefused as refused:
         stated = refused.reason == "bep_outside_rows"
@@ -132,6 +128,30 @@ def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
         return None
     _say_what_the_rows_lack(f"{path}/table", lowered, needs)
     return lowered
+
+
+@lru_cache(maxsize=KEPT)
+def _fitted(
+    table: CurveTable, best_flow: float | None, speed: float, stages: int, eyes: int
+) -> PumpCurve:
+    """Return the curve through a table; kept, because most edits leave the pumps as they are."""
+    columns = _columns(table)
+    return pump_curve(
+        columns["flow"] or [],
+        head=columns["head"],
+        tested_speed=speed * 60.0,  # a minute, as specific speed counts it
+        efficiency=columns["efficiency"],
+        shaft_power=columns["shaft_power"],
+        npsh_required=columns["npsh_required"],
+        bep_flow=best_flow,
+        stages=stages,
+        eyes=eyes,
+    )
+
+
+@lru_cache(maxsize=KEPT)
+def _leg(curve: PumpCurve, loss: float) -> LegCurve:
+    return leg_curve(curve, loss=loss)
 
 
 def _say_what_the_rows_lack(path: str, curve: PumpCurve, needs: Needs) -> None:
@@ -145,13 +165,13 @@ def _say_what_the_rows_lack(path: str, curve: PumpCurve, needs: Needs) -> None:
         needs.leave_out(path, "no_shutoff_row")
 
 
-def _columns(curve: Curve) -> dict[str, list[float | None] | None]:
+def _columns(table: CurveTable) -> dict[str, list[float | None] | None]:
     """Return the columns of the table in SI; a column without a unit is not in the table."""
-    present = [name for name in COLUMNS if getattr(curve.table.units, name)]
+    present = [name for name in COLUMNS if getattr(table.units, name)]
     columns: dict[str, list[float | None] | None] = dict.fromkeys(COLUMNS)
     for place, name in enumerate(present):
-        unit = getattr(curve.table.units, name)
-        cells = [row[place] if place < len(row) else None for row in curve.table.rows]
+        unit = getattr(table.units, name)
+        cells = [row[place] if place < len(row) else None for row in table.rows]
         columns[name] = [None if cell is None else to_si(cell, unit) for cell in cells]
     return columns
 
@@ -184,6 +204,7 @@ def _facts(
     )  # fmt: skip
 
 
+@lru_cache(maxsize=KEPT)
 def _largest_power(curve: PumpCurve, speed: float, density: float) -> float | None:
     """Return the largest shaft power from the first to the last row at the highest speed."""
     flows = np.linspace(curve.first_flow, curve.last_flow, POWER_READINGS)
@@ -212,7 +233,9 @@ def control(
     else:
         gauge = needs.part(level_path, level)
         at = _held_point(path, entered.kind, entered.point, points, needs)
-    pressure = needs.must(f"{path}/pressure", entered.pressure) if entered.kind in HELD_KINDS else NAN
+    pressure = (
+        needs.must(f"{path}/pressure", entered.pressure) if entered.kind in HELD_KINDS else NAN
+    )
     lowest = _speed(entered.lowest_speed, limits.speed_lowest)
     highest = _speed(entered.highest_speed, limits.speed_highest)
     if lowest > highest:
@@ -228,7 +251,11 @@ def _speed(entered: Quantity | None, criterion: float) -> float:
 
 
 def _held_point(
-    path: str, kind: str | None, entered: str | None, points: tuple[PointFacts, ...], needs: Needs
+    path: str,
+    kind: str | None,
+    entered: str | None,
+    points: tuple[PointFacts, ...],
+    needs: Needs,
 ) -> int:
     """Return the index of the point that is held; its elevation and loss must be known."""
     if kind != "zone_point_pressure":

@@ -31,7 +31,9 @@ def water(site: Site, needs: Needs) -> Water:
         density=float(density(usual)),
         kinematic_viscosity=float(kinematic_viscosity(usual)),
         vapour_pressure=float(vapour_pressure(warm)),
-        atmosphere=float(atmospheric_pressure(altitude)) - weather if altitude == altitude else NAN,
+        atmosphere=float(atmospheric_pressure(altitude)) - weather
+        if altitude == altitude
+        else NAN,
     )
 
 
@@ -90,7 +92,11 @@ def _tested_main(
                                residual_pressure=residual, test_flow=flow)
             )  # fmt: skip
         except SupplyRefused as refused:
-            field = "test_flow" if refused.reason == "test_flow_not_positive" else "residual_pressure"
+            field = (
+                "test_flow"
+                if refused.reason == "test_flow_not_positive"
+                else "residual_pressure"
+            )
             needs.stop(f"{path}/{field}", refused.reason)
     if len(lowered) < len(basis):
         return None, 0.0

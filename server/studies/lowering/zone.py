@@ -6,7 +6,7 @@ import numpy as np
 
 from server.station.demand import Fire, Horizon, Scenario
 from server.station.station import Station
-from server.station.zone import LossAtFlow, Point
+from server.station.zone import BranchLoss, LossAtFlow, Point
 from server.studies.duty_result import PointFacts
 from server.studies.lowering.lowered import ZONE_EXPONENT, Growth, ZonePoints
 from server.studies.lowering.lowered import Scenario as LoweredScenario
@@ -53,13 +53,13 @@ def _point(point: Point, needs: Needs) -> tuple[PointFacts, float, float, float,
     return facts, elevation, loss, share, branch
 
 
-def _coefficient(path: str, given: LossAtFlow, needs: Needs) -> float:
+def _coefficient(path: str, given: LossAtFlow | BranchLoss, needs: Needs) -> float:
     """Return c of h = c Q^1.852 from a loss at a flow; a loss of zero needs no flow."""
     loss = needs.part(f"{path}/loss", given.loss)
     if loss == 0:
         return 0.0
     flow = needs.part(f"{path}/at_flow", given.at_flow)
-    return loss / flow**ZONE_EXPONENT
+    return float(loss / flow**ZONE_EXPONENT)
 
 
 def scenarios(station: Station, needs: Needs) -> tuple[LoweredScenario, ...]:
