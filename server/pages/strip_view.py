@@ -26,10 +26,12 @@ from server.station.station import Station
 from server.studies.assess import Assessment
 from server.studies.duty_result import DutyResult
 from server.studies.findings import words
+from server.studies.findings.answers import answer_to
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Finding, Severity
 from server.units import Dimension, View, shown_with_unit
 
+MOST_MENDS = 4  # links under one finding; the sheet they lead to shows the rest
 SEVERITY_CSS = {
     Severity.STOP: "stop",
     Severity.FAIL: "stop",
@@ -143,7 +145,6 @@ def scenario_row(sheet: OpenedSheet) -> tuple[ScenarioTab, ...]:
 
 def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[FindingLine, ...]:
     """Return findings as lines with links to the fields that mend them."""
-    answers = {answer.finding: answer.text for answer in sheet.station.answers}
     return tuple(
         FindingLine(
             code=finding.code,
@@ -151,8 +152,11 @@ def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[Find
             grade=words.severity_words(finding.severity),
             sentence=words.sentence(finding, sheet.station, sheet.view),
             basis=words.basis(finding, sheet.station),
-            mends=tuple((sheet.field_words(path), sheet.field_href(path)) for path in finding.mend),
-            answer=answers.get(finding.code, ""),
+            mends=tuple(
+                (words.field_words(sheet.station, path), sheet.field_href(path))
+                for path in finding.mend[:MOST_MENDS]
+            ),
+            answer=answer_to(finding, sheet.station),
         )
         for finding in findings
     )
