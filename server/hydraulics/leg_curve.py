@@ -39,6 +39,8 @@ class LegCurve:
         G(0); None when the pump's first row is above zero flow. [m]
     peak_head, peak_flow : float
         Highest head and where it stands. [m], [m3/s]
+    falls_throughout : bool
+        Whether the leg has one flow for each head, so that load is shared uniquely.
     falling_head : ndarray, shape (E + 1,)
         Heads, rising, between the pieces of the falling envelope. [m]
     falling_left, falling_right : ndarray, shape (E,)
@@ -59,6 +61,7 @@ class LegCurve:
     shutoff_head: float | None
     peak_head: float
     peak_flow: float
+    falls_throughout: bool
     falling_head: FloatArray
     falling_left: FloatArray
     falling_right: FloatArray
@@ -82,13 +85,6 @@ class LegCurve:
     def last_head(self) -> float:
         """Head at the last row [m]."""
         return float(self.falling_head[0])
-
-    @property
-    def falls_throughout(self) -> bool:
-        """Whether the leg has one flow for each head, so that load is shared uniquely."""
-        return self.peak_flow == self.first_flow and bool(
-            np.all(np.diff(self.curve(self.curve.breaks)) < 0)
-        )
 
     def head(self, flow: ArrayLike) -> FloatArray:
         """Return the head at tested speed, nan outside the rows [m]."""
@@ -221,6 +217,7 @@ def leg_curve(pump: PumpCurve, *, loss: float) -> LegCurve:
         shutoff_head=float(heads[0]) if curve.first == 0 else None,
         peak_head=float(heads[peak]),
         peak_flow=float(curve.breaks[peak]),
+        falls_throughout=bool(np.all(np.diff(heads) < 0)),
         falling_head=read_only(steps),
         falling_left=read_only(left),
         falling_right=read_only(right),

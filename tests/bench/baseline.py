@@ -3,8 +3,8 @@
 Frozen: it is what our array solver is measured against, so it must not change when that does.
 The manifold head is found by brentq, and for every head it tries each pump's flow by brentq.
 All numbers are plain floats and the pieces of a curve are found by bisection, which is as quick
-as a scalar program in this language gets without giving up the curve. A pump whose shut-off head
-is not above the manifold head is held shut and costs nothing.
+as a scalar program in this language gets without giving up the curve. A pump whose shut-off
+head is not above the manifold head is held shut and costs nothing.
 """
 
 from bisect import bisect_right

@@ -33,6 +33,8 @@ HUMPED = leg_curve(
     pump_curve([0, 0.01, 0.02, 0.03, 0.04], head=[50, 52, 48, 40, 28], tested_speed=1450),
     loss=0.0,
 )
+ROWS = np.linspace(0, 0.03, 301)
+LEVEL = leg_curve(pump_curve(ROWS, head=60 - 2e4 * ROWS**2, tested_speed=1450), loss=500.0)
 LIMITS = {"lowest_speed": 0.55, "highest_speed": 1.0}
 ONE_TO_THREE = [[True, False, False], [True, True, False], [True, True, True]]
 
@@ -121,11 +123,7 @@ def test_the_change_of_head_for_one_per_cent_of_speed_is_that_of_a_small_step(fl
 @settings(max_examples=40, deadline=None)
 @given(st.floats(1e-9, 1e-5))
 def test_at_the_smallest_flows_the_balance_still_holds(flow):
-    flow_rows = np.linspace(0, 0.03, 301)
-    level = leg_curve(
-        pump_curve(flow_rows, head=60 - 2e4 * flow_rows**2, tested_speed=1450), loss=500.0
-    )
-    result = held(flow, 40.0, [level, level])
+    result = held(flow, 40.0, [LEVEL, LEVEL])
 
     assert result.state[0, 0] == State.SOLVED
     assert result.leg_flow[0, 0].sum() == pytest.approx(flow, rel=1e-9)

@@ -54,6 +54,8 @@ def test_a_lossless_parabola_in_four_rows_is_met_by_legs_with_all_the_loss():
 
 
 speeds = st.floats(0.6, 1.0)
+LEVEL = parabola(60.0, 20000.0, 0.03)
+STRONG = leg_curve(main_pump(), loss=0.0)
 
 
 @settings(max_examples=80, deadline=None)
@@ -110,13 +112,11 @@ def test_more_speed_gives_more_flow(static, ratio):
 @given(st.floats(0.0, 1e-6))
 def test_beside_shutoff_the_balance_still_holds(below):
     """A level curve at shut-off, where rounding in the head is a large step in flow."""
-    level = parabola(60.0, 20000.0, 0.03)
     head = 60.0 - below
-    strong = leg_curve(main_pump(), loss=0.0)
-    flow = float(strong.largest_flow(head)) + float(level.largest_flow(head))
+    flow = float(STRONG.largest_flow(head)) + float(LEVEL.largest_flow(head))
     coefficient = (head - 20.0) / flow**2
     system = PowerSystem(static_head=np.array([20.0]), coefficient=np.array([coefficient]))
-    result = solve_parallel([strong, level], system=system)
+    result = solve_parallel([STRONG, LEVEL], system=system)
 
     assert result.energy_residual[0] < 1e-9
     assert result.mass_residual[0] < 1e-9
