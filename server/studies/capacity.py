@@ -39,11 +39,12 @@ class Capacity:
     by_head_limit: str
     by_all: float  # [m3/s]
     by_all_limit: str
+    not_counted: tuple[str, ...]  # limits for which a figure is absent
     share: float  # largest flow over best-efficiency flow at by_head, nan when not known
 
 
 NO_UNIT = Capacity(by_head=0.0, by_head_limit="no_unit", by_all=0.0, by_all_limit="no_unit",
-                   share=np.nan)  # fmt: skip
+                   not_counted=(), share=np.nan)  # fmt: skip
 
 
 def capacities(
@@ -62,6 +63,8 @@ def capacities(
     high = np.array(np.broadcast_to(units.peak_head[:, None], shape))
     # where no root lies between, the limit binds at once (y at the peak) or never (at the last row)
     found = falling_root(short, low, high)
+    is_asked = np.isfinite(np.pad(asked.least, ((0, 0), (0, len(SUCTION_LIMITS)))))
+    unknown = is_asked & (found.at_low <= -LARGE)
     y, at_end, at_shut = found.root, found.at_low, found.at_high
     y = np.where(at_shut > 0, high, np.where(at_end <= 0, low, y))
     flow = speed * units.total(y)
@@ -75,7 +78,9 @@ def capacities(
         y_head = float(units.last_head[m]) if at is None else float(y[m, at])
         rows.append(
             Capacity(by_head=head, by_head_limit=head_limit, by_all=everything,
-                     by_all_limit=all_limit, share=_largest_share(units, m, y_head))
+                     by_all_limit=all_limit,
+                     not_counted=tuple(names[i] for i in np.flatnonzero(unknown[m])),
+                     share=_largest_share(units, m, y_head))
         )  # fmt: skip
     return tuple(rows)
 
@@ -102,11 +107,10 @@ def _excess(
 
 def _heads(of: LoweredSet, asked: Asked, flow: Floats) -> SystemHeads:
     """Return the grades at low supply on aged pipes, the fire served first."""
-    aged = of.route.knows("aged")
     fire = np.minimum(flow, asked.fire_flow[:, None])
     draw = Draw(
         domestic=flow - fire, fire=fire, fire_point=asked.fire_point[:, None] + 0 * flow,
-        aged=aged, shift=asked.shift[:, None] + 0 * flow,
+        aged=True, shift=asked.shift[:, None] + 0 * flow,
     )  # fmt: skip
     return system_heads(of, draw)
 

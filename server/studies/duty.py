@@ -1,5 +1,7 @@
 """The duty of one set in all its cases: what runs, at which speed, flow, pressure and power."""
 
+from dataclasses import fields, is_dataclass
+
 import numpy as np
 
 from server import __version__
@@ -101,7 +103,6 @@ def _result(
     available_head = (
         vapour + heads.suction_grade[:, None, None] - slot["suction_loss"] - of.eye_level
     )
-    running = np.isfinite(slot["npsh_required"]) | np.isfinite(slot["best_efficiency_share"])
     result = DutyResult(
         stamp=stamp,
         pump_set=of.pump_set,
@@ -133,7 +134,7 @@ def _result(
         leg_flow=slot["leg_flow"],
         best_efficiency_share=slot["best_efficiency_share"],
         efficiency=slot["efficiency"],
-        npsh_available=np.where(running, available_head, np.nan),
+        npsh_available=available_head,
         npsh_required=slot["npsh_required"],
         shaft_power=slot["shaft_power"],
         wire_power=slot["wire_power"],
@@ -162,9 +163,10 @@ def _result(
     return result
 
 
-def _lock(result: DutyResult) -> None:
+def _lock(part: object) -> None:
     """Make the arrays of a result read-only: it is shared by every reader."""
-    for name in DutyResult.__dataclass_fields__:
-        value = getattr(result, name)
-        if isinstance(value, np.ndarray):
-            value.flags.writeable = False
+    if isinstance(part, np.ndarray):
+        part.flags.writeable = False
+    elif is_dataclass(part):
+        for field in fields(part):
+            _lock(getattr(part, field.name))

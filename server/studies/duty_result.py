@@ -208,6 +208,7 @@ class FirmCapacity:
     all_running: float  # [m3/s] no unit out, limited by head
     best_efficiency_share: float  # largest of the units left, at by_head
     runs_out: int | None  # year in which the growing demand passes by_all, linear between horizons; None: not within them
+    not_counted: tuple[str, ...] = ()  # limits, named as above, for which a figure is absent
 
 
 @dataclass(frozen=True, slots=True, eq=False)

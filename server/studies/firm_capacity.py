@@ -40,6 +40,8 @@ class Requirement:
 
 def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ...]:
     """Return the firm capacity of each horizon for peak hour and for each fire with its demand."""
+    if not of.route.knows("aged"):
+        return ()
     asked = [one for one in requirements(of, limits) if not np.isnan(one.shift)]
     solved = _solve(of, limits, asked)
     found = []
@@ -62,7 +64,7 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
                 by_head_limit=by_head.by_head_limit, by_all=worst.by_all,
                 by_all_limit=worst.by_all_limit, unit_out=of.slots[out].facts.id,
                 all_running=left(installed).by_head, best_efficiency_share=by_head.share,
-                runs_out=_runs_out(of, one, worst.by_all),
+                runs_out=_runs_out(of, one, worst.by_all), not_counted=worst.not_counted,
             )
         )  # fmt: skip
     return tuple(found)

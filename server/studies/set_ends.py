@@ -23,16 +23,20 @@ class CommonSpeed:
     count: Floats  # (M, T) how many of each
 
     def kind_flows(self, y: Floats) -> tuple[Floats, ...]:
-        """Return the flow over speed of one leg of each kind, shape of y."""
-        return tuple(leg.largest_flow(y) for leg in self.legs)
+        """Return the flow over speed of one leg of each kind, shape of y; 0 of a kind not there."""
+        there = [bool(np.any(self.count[:, t])) for t in range(len(self.legs))]
+        return tuple(
+            leg.largest_flow(y) if runs else np.zeros(y.shape)
+            for leg, runs in zip(self.legs, there, strict=True)
+        )
 
     def total(self, y: Floats) -> Floats:
         """Return X(y), y of shape (M, ...): a leg above its peak adds nothing."""
         spread = (slice(None),) + (None,) * (y.ndim - 1)
-        flows = self.kind_flows(y)
-        return np.asarray(
-            sum(self.count[:, t][spread] * x for t, x in enumerate(flows)), dtype=np.float64
-        )
+        total = np.zeros(y.shape)
+        for t, x in enumerate(self.kind_flows(y)):
+            total += self.count[:, t][spread] * x
+        return total
 
     @property
     def last_head(self) -> Floats:

@@ -43,13 +43,14 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     units, slots = pumps.units_and_slots(
         station, pump_set, limits, control.highest_speed, of_water.density, needs
     )
+    growth = zone.growth(station, needs)
     eye = needs.part("/site/eye_level", station.site.eye_level)
     if needs.stops or of_supply is None:
         return NotSolved(pump_set_id, tuple(needs.stops))
     return LoweredSet(
         pump_set=pump_set_id, water=of_water, supply=of_supply, route=way,
         suction_reaches=len(station.suction_line.reaches), points=points, units=units, slots=slots, control=control, eye_level=eye,
-        scenarios=scenarios, growth=zone.growth(station), bypass=of_bypass,
+        scenarios=scenarios, growth=growth, bypass=of_bypass,
         needs_missing=_pairs(needs.leaves_out),
     )  # fmt: skip
 

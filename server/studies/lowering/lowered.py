@@ -73,7 +73,8 @@ class Line:
         """Return the head lost in each reach at the age that each flow asks for, (..., R)."""
         old = np.asarray(aged, dtype=np.bool_)
         at = np.asarray(flow, dtype=np.float64)
-        if not self.new or bool(old.all()):
+        # with one age only the caller has asked `knows`, or the flow is zero and nothing is lost
+        if not self.new or (self.aged and bool(old.all())):
             return _lost(self.aged, at, viscosity)
         if not self.aged or not bool(old.any()):
             return _lost(self.new, at, viscosity)

@@ -1,6 +1,6 @@
 """Reaches, fittings and legs from the document to conduits and loss coefficients."""
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from itertools import groupby
 
 import numpy as np
@@ -16,7 +16,7 @@ from server.hydraulics.fittings import (
 from server.station.conduit import Branch, Fitting, Leg, Reach
 from server.station.station import Station
 from server.studies.lowering.lowered import Floats, Line
-from server.studies.lowering.needs import ABSENT, Needs
+from server.studies.lowering.needs import Needs
 from server.studies.shapes import PipeAge
 
 OUTSIDE_LAW = "outside_friction_law"
@@ -46,7 +46,9 @@ def route(station: Station, ages: Iterable[PipeAge], needs: Needs) -> Line:
     shapes = [_shape(path, reach, needs) for path, reach in reaches]
     walls: dict[PipeAge, tuple[Conduit, ...]] = {"new": (), "aged": ()}
     for age in walls:
-        resistances = [_wall(path, reach, age, age in used, needs) for path, reach in reaches]
+        # the made cases stand on aged pipes: without them they are left out, the scenarios are not
+        say = needs.stop if age in used else needs.leave_out if age == "aged" else _nothing
+        resistances = [_wall(path, reach, age, say) for path, reach in reaches]
         columns = np.array([[*s, w] for s, w in zip(shapes, resistances, strict=True)])
         if not reaches or not np.all(np.isfinite(columns)):
             continue
@@ -113,17 +115,21 @@ def _fitting(path: str, fitting: Fitting, bore: float, needs: Needs) -> tuple[fl
     return float(converted), 0.0
 
 
-def _wall(path: str, reach: Reach, age: PipeAge, used: bool, needs: Needs) -> float:
-    """Return roughness [m] or C of a reach at an age; absent at an age in use stops the study."""
+def _nothing(path: str) -> None:
+    """Take no notice of a new wall that no scenario asks for."""
+
+
+def _wall(path: str, reach: Reach, age: PipeAge, say: Callable[[str], None]) -> float:
+    """Return roughness [m] or C of a reach at an age, nan when absent, which is said if aged."""
     wall = reach.roughness
     if wall.law == "hazen_williams":
         coefficient = wall.coefficient_aged if age == "aged" else wall.coefficient_new
-        if coefficient is None and used:
-            needs.stop(f"{path}/roughness/coefficient_{age}", ABSENT)
+        if coefficient is None:
+            say(f"{path}/roughness/coefficient_{age}")
         return np.nan if coefficient is None else coefficient
     quantity = wall.aged if age == "aged" else wall.new
-    if quantity is None and used:
-        needs.stop(f"{path}/roughness/{age}", ABSENT)
+    if quantity is None:
+        say(f"{path}/roughness/{age}")
     return np.nan if quantity is None else quantity.si
 
 

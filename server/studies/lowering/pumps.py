@@ -25,6 +25,7 @@ DRIVE_EFFICIENCY = 0.97  # default where none is entered, criteria.md [-]
 NPSH_EXPONENT = 2.0
 HELD_KINDS = ("zone_point_pressure", "discharge_pressure")
 COLUMNS = ("flow", "head", "efficiency", "shaft_power", "npsh_required")
+MOST_COMBINATIONS = 512  # numbers running that are looked at
 KEPT = 64  # curves of pumps kept between lowerings
 POWER_READINGS = 241  # readings of a curve for its largest power
 
@@ -69,6 +70,11 @@ def units_and_slots(
         since = order.get(slot.from_horizon or "", 0)
         region = limits.preferred_region(facts.specific_speed)
         slots.append(Slot(facts=facts, unit=index[key], from_year=since, preferred=region))
+    if pump_set.slots and all(slot.role == "standby" for slot in pump_set.slots):
+        needs.stop(base, "only_standby_units")
+    kinds = [slot.unit for slot in slots]
+    if math.prod(kinds.count(kind) + 1 for kind in set(kinds)) > MOST_COMBINATIONS:
+        needs.stop(base, "too_many_unlike_units")
     return tuple(units), tuple(slots)
 
 

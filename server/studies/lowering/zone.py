@@ -133,20 +133,28 @@ def _fire_flow(station: Station, fire: Fire, needs: Needs) -> tuple[float, int]:
     return flow, at
 
 
-def growth(station: Station) -> tuple[Growth, ...]:
-    """Return what each horizon asks of firm capacity; what is not entered is left out."""
-    at = {point.id: i for i, point in enumerate(station.zone.points)}
+def growth(station: Station, needs: Needs) -> tuple[Growth, ...]:
+    """Return what each horizon asks of firm capacity; what is absent is told and left out."""
     rows = []
     for order, horizon in enumerate(station.horizons):
+        path = f"/horizons/{horizon.id}"
+        peak = needs.part(f"{path}/demand/peak_hour", horizon.demand.peak_hour)
         fires = []
         for fire in station.fires:
-            beside = getattr(horizon.demand, fire.beside)
-            if fire.flow is None or beside is None or fire.carried_by != "pumps":
-                continue
-            fires.append((fire.id, beside.si, fire.flow.si, at.get(fire.point or "", -1)))
-        peak = horizon.demand.peak_hour
+            beside = _domestic(horizon, fire.beside, needs)
+            flow, at = _fire_flow(station, fire, needs)
+            if np.isfinite(beside + flow):
+                fires.append((fire.id, beside, flow, at))
+        if horizon.year is None:
+            needs.leave_out(f"{path}/year")
         rows.append(
-            Growth(id=horizon.id, order=order, year=horizon.year, peak_hour=si_or_none(peak),
-                   fires=tuple(fires), low_shift=_low_shift(horizon))
-        )  # fmt: skip
+            Growth(
+                id=horizon.id,
+                order=order,
+                year=horizon.year,
+                peak_hour=None if np.isnan(peak) else peak,
+                fires=tuple(fires),
+                low_shift=_low_shift(horizon),
+            )
+        )
     return tuple(rows)
