@@ -1,0 +1,52 @@
+"""Firm capacity: each unit in turn out, all others as the control allows."""
+
+from server.memo.blocks import Block, Cell, Column, Heading, Paragraph, Table
+from server.memo.source import MemoSource
+from server.studies.findings.judged_set import JudgedSet
+from server.studies.findings.requirement_words import limit_title
+from server.units import Dimension as D
+
+REQUIREMENTS = {"peak_hour": "Peak hour", "maximum_day_fire": "Maximum day and fire"}
+
+
+def blocks(of: MemoSource) -> tuple[Block, ...]:
+    """Return the section."""
+    made: list[Block] = [Heading("Firm capacity")]
+    if of.judged is None or not of.judged.result.made.firm_capacity:
+        why = "the proposed set is not solved" if of.judged is None else "no horizon has the demands for it"
+        return (*made, Paragraph((f"Not computed: {why}.",)))
+    made.append(
+        Paragraph(("The largest flow at low supply and aged pipes with each installed unit in turn out, the"
+                   " least of them: limited by head and curve end, and also by suction limits and NPSH margin."
+                   " Found by solving the coupled system; nameplate flows are never added.",))
+    )  # fmt: skip
+    made.append(_table(of, of.judged))
+    return tuple(made)
+
+
+def _table(of: MemoSource, judged: JudgedSet) -> Table:
+    horizons = {h.id: str(h.year or h.title) for h in of.station.horizons}
+    slots = {s.id: judged.slot_title(n) for n, s in enumerate(judged.slots)}
+    rows: list[tuple[Cell, ...]] = []
+    for firm in judged.result.made.firm_capacity:
+        rows.append(
+            (
+                f"{REQUIREMENTS.get(firm.requirement, firm.requirement)}, {horizons.get(firm.horizon, '')}",
+                firm.required_flow, firm.by_head, limit_title(firm.by_head_limit, of.station), firm.by_all,
+                limit_title(firm.by_all_limit, of.station), slots.get(firm.unit_out, "–"), _known(firm.all_running),
+                "–" if firm.runs_out is None else str(firm.runs_out),
+            )
+        )  # fmt: skip
+    return Table(
+        "Firm capacity against what is required",
+        (Column("Requirement"), Column("Required", D.FLOW), Column("By head", D.FLOW), Column("limited by"),
+         Column("By all limits", D.FLOW), Column("limited by"), Column("Unit out"),
+         Column("No unit out", D.FLOW), Column("Passed in")),
+        tuple(rows),
+        ("“Passed in”: the year in which the demand, growing linearly between the horizons, passes the"
+         " capacity by all limits; a dash: not within the horizons.",),
+    )  # fmt: skip
+
+
+def _known(value: float) -> float | None:
+    return value if value == value else None
