@@ -46,7 +46,6 @@ def create_app(settings: Settings) -> FastAPI:
         redoc_url=None,
         openapi_url=None,
         telemetry=NO_TELEMETRY,
-        max_body_size=LARGEST_BODY,
         lifespan=lifespan,
     )
     app.state.settings = settings
@@ -57,5 +56,10 @@ def create_app(settings: Settings) -> FastAPI:
         app.include_router(router)
     app.add_middleware(GZipMiddleware, minimum_size=1000, compresslevel=5)
     # added last, so that it stands in front of everything
-    app.add_middleware(Guard, allowed_hosts=settings.allowed_hosts, refuse=problems.refusal)
+    app.add_middleware(
+        Guard,
+        allowed_hosts=settings.allowed_hosts,
+        largest_body=LARGEST_BODY,
+        refuse=problems.refusal,
+    )
     return app

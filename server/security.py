@@ -9,6 +9,7 @@ from collections.abc import Callable
 from urllib.parse import urlsplit
 
 from fastapi import Request, Response
+from starlette.exceptions import HTTPException
 from starlette.types import ASGIApp, Message, Receive, Scope, Send
 
 # The first hash is of the empty style sheet that plotly fills, the second of its map styles.
@@ -35,8 +36,11 @@ log = logging.getLogger("firmhead")
 class Guard:
     """The outermost layer of the application, in front of every route and every error page."""
 
-    def __init__(self, app: ASGIApp, *, allowed_hosts: tuple[str, ...], refuse: Refuse) -> None:
+    def __init__(
+        self, app: ASGIApp, *, allowed_hosts: tuple[str, ...], largest_body: int, refuse: Refuse
+    ) -> None:
         self.app = app
+        self.largest_body = largest_body
         self.allowed_hosts = frozenset(allowed_hosts)
         self.refuse = refuse
 
@@ -46,6 +50,15 @@ class Guard:
             await self.app(scope, receive, send)
             return
         started = False
+        received = 0
+
+        async def receive_guarded() -> Message:
+            nonlocal received
+            message = await receive()
+            received += len(message.get("body", b""))
+            if received > self.largest_body:
+                raise HTTPException(413, self._too_large())
+            return message
 
         async def send_guarded(message: Message) -> None:
             nonlocal started
@@ -66,7 +79,7 @@ class Guard:
             await self.refuse(request, *refused)(scope, receive, send_guarded)
             return
         try:
-            await self.app(scope, receive, send_guarded)
+            await self.app(scope, receive_guarded, send_guarded)
         except Exception:
             log.exception("%s %s could not be answered", scope["method"], scope["path"])
             if started:
@@ -81,12 +94,18 @@ class Guard:
         host = request.headers.get("host", "")
         if _host_name(host) not in self.allowed_hosts:
             return 400, f"This program does not answer to the name “{host[:60]}”."
+        length = request.headers.get("content-length", "")
+        if length.isdigit() and int(length) > self.largest_body:
+            return 413, self._too_large()
         if request.method in SAFE_METHODS or _is_from_here(request, host):
             return None
         return 403, (
             "A change is taken from this program's own pages only; another program sends JSON, "
             "with Content-Type: application/json."
         )
+
+    def _too_large(self) -> str:
+        return f"At most {self.largest_body // 1_000_000} MB can be sent at once."
 
 
 def _host_name(host: str) -> str:

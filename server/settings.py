@@ -46,7 +46,7 @@ def read_settings(
     demo: bool = False,
     environ: Mapping[str, str] | None = None,
 ) -> Settings:
-    """Return the settings: a flag first, then FIRMHEAD_PORT and FIRMHEAD_DATA, then the default.
+    """Return the settings: a flag, else FIRMHEAD_PORT and FIRMHEAD_DATA, else the default.
 
     Raises
     ------

@@ -9,6 +9,7 @@ PAGES: tuple[str, ...] = (
     "server.vendor",
     "server.pages.health",
     "server.pages.api",
+    "server.pages.api_solve",
 )
 
 

@@ -10,13 +10,12 @@ from starlette.exceptions import HTTPException
 from server.pages.rendering import render
 from server.station.edits import Conflict
 from server.station.faults import BadStation, Fault, errors_json, quoted
+from server.station.fields import find
 
 SENTENCES = {
     400: "The request cannot be read.",
     404: "There is no page at this address.",
     405: "This address does not take that kind of request.",
-    413: "That is too large: at most 10 MB can be sent at once.",
-    415: "This kind of content is not taken here.",
 }
 TITLES = {403: "Not allowed", 404: "Not found", 409: "Changed elsewhere", 413: "Too large"}
 
@@ -57,7 +56,9 @@ def faults_answer(request: Request, status: int, faults: tuple[Fault, ...]) -> R
 
 def conflict_answer(conflict: Conflict) -> JSONResponse:
     """Return the API's answer to a change that met another one: 409 with both values."""
-    fault = Fault(conflict.path, "", "", "", conflict.sentence)
+    node = find(conflict.path)
+    sheet = node.sheet if node is not None and conflict.path else ""
+    fault = Fault(conflict.path, sheet, "", "", conflict.sentence)
     error = {**fault.as_json(), **conflict.as_json()}
     return JSONResponse({"errors": [error]}, 409)
 

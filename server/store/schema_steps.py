@@ -19,7 +19,8 @@ def step_1(connection: sqlite3.Connection) -> None:
     """Make stations, documents and revisions."""
     connection.execute(
         "CREATE TABLE station (id TEXT PRIMARY KEY, title TEXT NOT NULL, "
-        "job_number TEXT NOT NULL, place TEXT NOT NULL, newest INTEGER NOT NULL, archived BOOLEAN NOT NULL DEFAULT 0)"
+        "job_number TEXT NOT NULL, place TEXT NOT NULL, newest INTEGER NOT NULL, "
+        "archived BOOLEAN NOT NULL DEFAULT 0)"
     )
     connection.execute(
         "CREATE TABLE document (hash TEXT PRIMARY KEY, version INTEGER NOT NULL, "

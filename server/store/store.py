@@ -74,8 +74,8 @@ class Store:
     def list_stations(self, archived: bool = False) -> tuple[StationRow, ...]:
         """Return the stations in use, or the archived ones, the last edited first."""
         columns = (
-            station.c.id, station.c.title, station.c.job_number, station.c.place, station.c.newest,
-            station.c.archived, revision.c.made_at, revision.c.author,
+            station.c.id, station.c.title, station.c.job_number, station.c.place,
+            station.c.newest, station.c.archived, revision.c.made_at, revision.c.author,
         )  # fmt: skip
         question = (
             select(*columns)

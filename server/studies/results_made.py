@@ -1,0 +1,114 @@
+"""The cases that are always made, as JSON data."""
+
+from server.hydraulics.states import State
+from server.studies.duty_result import DutyResult
+from server.studies.results_numbers import by_point, case_key, or_null
+from server.studies.results_shape import (
+    AfterTripJson,
+    FirmCapacityJson,
+    HandoverJson,
+    StationOffJson,
+    ZeroFlowJson,
+)
+from server.studies.shapes import SUPPLY_STATES
+
+
+def zero_flow_json(result: DutyResult) -> list[ZeroFlowJson] | None:
+    """Return the set against a shut zone at each supply state; None if it could not be had."""
+    made = result.made.zero_flow
+    if made is None:
+        return None
+    return [
+        {
+            "supply": supply,
+            "speed_held_ratio": or_null(made.speed_held[s]),
+            "point_pressure_held_pa": by_point(result, made.point_pressure_held[s]),
+            "discharge_pressure_largest_pa": or_null(made.discharge_pressure_largest[s]),
+            "point_pressure_largest_pa": by_point(result, made.point_pressure_largest[s]),
+            "discharge_pressure_all_pa": or_null(made.discharge_pressure_all[s]),
+            "point_pressure_all_pa": by_point(result, made.point_pressure_all[s]),
+        }
+        for s, supply in enumerate(SUPPLY_STATES)
+    ]
+
+
+def station_off_json(result: DutyResult) -> list[StationOffJson] | None:
+    """Return what the zone has with no pump running; a point without water has no pressure."""
+    made = result.made.station_off
+    if made is None:
+        return None
+    found: list[StationOffJson] = []
+    for c, case in enumerate(made.cases):
+        dry = [p.id for p, drains in zip(result.points, made.drains[c], strict=True) if drains]
+        pressures = by_point(result, made.arithmetic_pressure[c])
+        found.append(
+            {
+                "case": case_key(case),
+                "path": made.path,
+                "point_pressure_pa": {**pressures, **dict.fromkeys(dry, None)},
+                "without_water": dry,
+            }
+        )
+    return found
+
+
+def after_trip_json(result: DutyResult) -> list[AfterTripJson] | None:
+    """Return what runs on when a unit trips, case by case."""
+    made = result.made.after_trip
+    if made is None:
+        return None
+    return [
+        {
+            "case": case_key(case),
+            "lost": made.lost[c],
+            "units_left": int(made.running[c]),
+            "state": State(int(made.state[c])).name.lower(),
+            "best_efficiency_share_ratio": or_null(made.best_efficiency_share[c]),
+            "point_pressure_pa": by_point(result, made.point_pressure[c]),
+            "flow_at_end_of_curve_m3_s": or_null(made.flow_at_end[c]),
+        }
+        for c, case in enumerate(made.cases)
+    ]
+
+
+def handover_json(result: DutyResult) -> list[HandoverJson] | None:
+    """Return the flows between one number of units and the next, at each supply state."""
+    made = result.made.handover
+    if made is None:
+        return None
+    return [
+        {
+            "fewer": _slots(result, fewer),
+            "more": _slots(result, more),
+            "supply": supply,
+            "fewer_end_m3_s": or_null(made.fewer_end[h, s]),
+            "more_start_m3_s": or_null(made.more_start[h, s]),
+        }
+        for h, (fewer, more) in enumerate(zip(made.fewer, made.more, strict=True))
+        for s, supply in enumerate(SUPPLY_STATES)
+    ]
+
+
+def firm_capacity_json(result: DutyResult) -> list[FirmCapacityJson]:
+    """Return the firm capacity for each requirement and horizon."""
+    return [
+        {
+            "requirement": each.requirement,
+            "fire": each.fire,
+            "horizon": each.horizon,
+            "required_flow_m3_s": or_null(each.required_flow),
+            "by_head_m3_s": or_null(each.by_head),
+            "by_head_limit": each.by_head_limit,
+            "by_all_m3_s": or_null(each.by_all),
+            "by_all_limit": each.by_all_limit,
+            "unit_out": each.unit_out,
+            "all_running_m3_s": or_null(each.all_running),
+            "runs_out_year": each.runs_out,
+        }
+        for each in result.made.firm_capacity
+    ]
+
+
+def _slots(result: DutyResult, combination: int) -> list[str]:
+    flags = result.combinations[combination]
+    return [slot.id for slot, runs in zip(result.slots, flags, strict=True) if runs]
