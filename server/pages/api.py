@@ -1,6 +1,6 @@
 """The JSON API of stations: files in and out, edits on a revision, revisions, findings.
 
-A revision is an entity tag, as `"r17"`. A write names in If-Match the revision it was made from;
+A revision is an entity tag, as `"r17"`. A write names in If-Match the one it was made from;
 what was changed elsewhere since is merged, and a true conflict is 409 with both values.
 """
 
@@ -59,7 +59,7 @@ def api_stations(request: Request, archived: bool = False) -> JSONResponse:
 def api_create(request: Request, body: JsonBytes) -> JSONResponse:
     """Keep a station file as a new station."""
     store = store_of(request)
-    station_id = store.create(read_station(body), actor_of(request), "import")
+    station_id = store.create(read_station(body), actor_of(request).name, "import")
     headers = {"Location": link(request, "api_station", station_id=station_id)}
     return _written(store.load(station_id), False, 201, headers)
 
@@ -86,7 +86,7 @@ def api_replace(request: Request, station_id: str, body: JsonBytes) -> JSONRespo
     base = _base(request, store, station_id)
     document = read_station(body)
     newest = _loaded(store, station_id, None).number
-    loaded = store.replace(station_id, document, base, actor_of(request))
+    loaded = store.replace(station_id, document, base, actor_of(request).name)
     return _written(loaded, base < newest)
 
 
@@ -98,7 +98,7 @@ def api_edits(request: Request, station_id: str, body: JsonBytes) -> JSONRespons
     store = store_of(request)
     base = _base(request, store, station_id)
     newest = _loaded(store, station_id, None).number
-    loaded = store.save(station_id, edits_in(body), base, actor_of(request))
+    loaded = store.save(station_id, edits_in(body), base, actor_of(request).name)
     return _written(loaded, base < newest)
 
 

@@ -11,17 +11,22 @@ from fastapi import Depends, HTTPException, Request
 
 Right = Literal["read", "edit", "check", "own", "public"]
 RIGHTS: tuple[Right, ...] = ("read", "edit", "check", "own", "public")
-LOCAL = "local"
 
 
-def actor_of(request: Request) -> str:
-    """Return the name under which what this request changes is stored."""
+@dataclass(frozen=True, slots=True)
+class Actor:
+    """Who asks: the name under which changes are stored, and what may be done."""
+
+    name: str
+    rights: frozenset[Right]
+
+
+LOCAL = Actor("local", frozenset(RIGHTS))
+
+
+def actor_of(request: Request) -> Actor:
+    """Return who makes a request."""
     return LOCAL
-
-
-def rights_of(actor: str) -> frozenset[Right]:
-    """Return what an actor may do."""
-    return frozenset(RIGHTS) if actor == LOCAL else frozenset(("public",))
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,7 +35,7 @@ class Needs:
 
     right: Right
 
-    def __call__(self, request: Request) -> str:
+    def __call__(self, request: Request) -> Actor:
         """Return the actor; 403 if the right is missing."""
         actor = actor_of(request)
         if self.right not in rights_of(actor):
