@@ -38,10 +38,11 @@ class Needs:
     def __call__(self, request: Request) -> Actor:
         """Return the actor; 403 if the right is missing."""
         actor = actor_of(request)
-        if self.right not in rights_of(actor):
-            raise HTTPException(
-                403, f"This needs the right to {self.right}, which {actor} has not."
+        if self.right not in actor.rights:
+            sentence = (
+                f"This needs the right to {self.right}, which {actor.name} does not have."
             )
+            raise HTTPException(403, sentence)
         return actor
 
 
