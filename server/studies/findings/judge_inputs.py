@@ -121,6 +121,10 @@ def _defaults(station: Station) -> Iterator[Finding]:
             yield default_used(f"/pumps/{pump.id}/npsh_exponent", "2")
         if pump.minimum_flow is None:
             yield default_used(f"/pumps/{pump.id}/minimum_flow", "the criteria row")
+    for each in station.sets:
+        for name in ("lowest_speed", "highest_speed"):
+            if each.control.kind is not None and getattr(each.control, name) is None:
+                yield default_used(f"/sets/{each.id}/control/{name}", "the criteria row")
     for leg in station.legs:
         if leg.discharge_branch.full_open_velocity is None:
             yield default_used(f"/legs/{leg.id}/discharge_branch/full_open_velocity", "1.5 m/s")
@@ -152,19 +156,31 @@ def _departures(criteria: dict[str, Criterion]) -> Iterator[Finding]:
 
 def _scenarios(station: Station) -> Iterator[Finding]:
     """Yield the demands and years that no scenario in use judges."""
-    used = {(scenario.horizon, scenario.demand, bool(scenario.fire)) for scenario in station.scenarios
-            if scenario.on}  # fmt: skip
+    used = [scenario for scenario in station.scenarios if scenario.on]
     for horizon in station.horizons:
         names = (("horizon", horizon.title or str(horizon.year or "")),)
+        own = [scenario for scenario in used if scenario.horizon == horizon.id]
         if horizon.year is None:
             yield _not_checked("horizon_without_year", f"/horizons/{horizon.id}/year", names)
         for demand, words in DEMANDS:
-            if not any(at == horizon.id and kind == demand for at, kind, _ in used):
-                yield _not_checked("scenario_missing", "/scenarios", (*names, ("demand", words)),
+            if not any(scenario.demand == demand and scenario.fire is None for scenario in own):
+                yield _not_checked("scenario_missing", _scenario_field(station, horizon.id, demand),
+                                   (*names, ("demand", words)),
                                    subject=f"/horizons/{horizon.id}/demand/{demand}")  # fmt: skip
-        if station.fires and not any(at == horizon.id and fire for at, _, fire in used):
-            yield _not_checked("fire_scenario_missing", "/scenarios", names,
+        if station.fires and not any(scenario.fire is not None for scenario in own):
+            yield _not_checked("fire_scenario_missing", _scenario_field(station, horizon.id, None), names,
                                subject=f"/horizons/{horizon.id}")  # fmt: skip
+
+
+def _scenario_field(station: Station, horizon: str, demand: str | None) -> Path:
+    """Return the switch of a scenario that is left out, or the list that wants one."""
+    for scenario in station.scenarios:
+        of_kind = scenario.fire is not None if demand is None else (
+            scenario.demand == demand and scenario.fire is None
+        )
+        if scenario.horizon == horizon and of_kind and not scenario.on:
+            return f"/scenarios/{scenario.id}/on"
+    return "/scenarios"
 
 
 def _demands(station: Station) -> Iterator[Finding]:
@@ -193,12 +209,16 @@ def _demands(station: Station) -> Iterator[Finding]:
 
 def _points(station: Station) -> Iterator[Finding]:
     """Yield the kinds of point without which a requirement is judged nowhere."""
+    roles = {point.role for point in station.zone.points}
+    customers = [point for point in station.zone.points if point.role != "hydrant"]
+    known = sorted((p for p in customers if p.elevation is not None),
+                   key=lambda p: 0.0 if p.elevation is None else p.elevation.si)  # fmt: skip
     if not station.zone.points:
         return
-    roles = {point.role for point in station.zone.points}
-    for role, code in (("critical", "no_critical_point"), ("lowest", "no_lowest_point")):
+    for role, code, place in (("critical", "no_critical_point", -1), ("lowest", "no_lowest_point", 0)):
         if role not in roles:
-            yield _not_checked(code, f"/zone/points/{station.zone.points[0].id}/role", subject="/zone/points")
+            path = f"/zone/points/{known[place].id}/role" if known else "/zone/points"
+            yield _not_checked(code, path, subject="/zone/points")
 
 
 def _under_criteria(station: Station, criteria: dict[str, Criterion]) -> Iterator[Finding]:

@@ -51,7 +51,7 @@ def _in_case(judged: JudgedSet, c: int, k: int, p: int, pressure: float) -> Iter
                        point.highest_pressure_abnormal, "at_most", judged.case(c),
                        (f"{judged.path}/control/pressure",))  # fmt: skip
         return
-    if point.role != "hydrant":
+    if point.role != "hydrant" or point.required_pressure is not None:
         held = p == judged.held_index and bool(result.set_point_held[c, k])
         yield _reading(judged, "pressure_low", "service-pressure-min", p, pressure,
                        point.required_pressure, "at_least", judged.case(c), raising, held)  # fmt: skip

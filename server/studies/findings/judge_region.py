@@ -5,29 +5,17 @@ from collections.abc import Iterator
 from server.hydraulics.states import State
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import Reading, Sense
-from server.studies.shapes import Case, Finding, Path, Region, Severity
+from server.studies.shapes import Finding, Path, Region, Severity
 from server.units import Dimension as D
 
 
 def judge_region(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
     """Return readings of every running pump, and the cases that have no duty."""
     readings: list[Reading] = []
-    shut: dict[int, list[Case]] = {}
     for c, k in judged.stated:
         for n, title in judged.running_kinds(c, k):
             readings.extend(_of_pump(judged, c, k, n, title))
-        for n in judged.held_shut(c, k):
-            shut.setdefault(n, []).append(judged.case(c))
-    findings = [
-        Finding(
-            code="held_shut", severity=Severity.FAIL, subject=judged.slot_path(n),
-            pump_set=judged.id, governing=cases[0], cases=tuple(cases), basis="physics",
-            names=(("slot", judged.slot_title(n)), ("set", judged.title)),
-            mend=(f"{judged.slot_path(n)}/role", f"{judged.curve_path(n)}/table"),
-        )
-        for n, cases in shut.items()
-    ]  # fmt: skip
-    return readings, [*findings, *_without_duty(judged)]
+    return readings, list(_without_duty(judged))
 
 
 def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[Reading]:
@@ -136,9 +124,8 @@ def _why(judged: JudgedSet, c: int) -> str:
     )
     if State.END_OF_CURVE in states:
         return "end_of_curve"
-    if states & {State.BELOW_STATIC, State.HELD_SHUT}:
-        return "no_flow"
-    return "no_unit"
+    # a combination with a unit held shut is never chosen: all that may run have one
+    return "held_shut" if states & {State.BELOW_STATIC, State.HELD_SHUT} else "no_unit"
 
 
 def _flow_at_end(judged: JudgedSet, c: int) -> float:
@@ -149,12 +136,21 @@ def _flow_at_end(judged: JudgedSet, c: int) -> float:
 
 
 def _mend_no_duty(judged: JudgedSet, code: str) -> tuple[Path, ...]:
-    tables = tuple(
-        dict.fromkeys(
-            f"{judged.curve_path(n)}/table"
-            for n in range(len(judged.slots))
-            if judged.slots[n].role != "jockey"
-        )
-    )
+    """Return the fields that give the case a duty, best first."""
     slots = (f"{judged.path}/slots",)
-    return slots if code == "no_unit" else (*tables, *slots) or slots
+    if code == "no_unit":
+        later = tuple(
+            f"{judged.path}/slots/{slot.id}/from_horizon"
+            for slot in judged.entered.slots
+            if slot.from_horizon is not None and slot.role == "duty"
+        )
+        return (*later, *slots)
+    if code == "held_shut":
+        legs = dict.fromkeys(leg for leg in judged.leg_of_slot if leg is not None)
+        return tuple(f"/legs/{leg}/discharge_branch/cracking_head" for leg in legs)
+    tables = dict.fromkeys(
+        f"{judged.curve_path(n)}/table"
+        for n in range(len(judged.slots))
+        if judged.slots[n].role != "jockey"
+    )
+    return (*tables, *slots)

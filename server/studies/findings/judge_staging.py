@@ -6,6 +6,7 @@ import numpy as np
 
 from server.hydraulics.states import State
 from server.studies.duty_result import AfterTrip, Floats, Handover
+from server.studies.findings.case_words import scenario_title
 from server.studies.findings.judged_set import STATED, JudgedSet, amount
 from server.studies.shapes import SUPPLY_STATES, Case, Finding, Severity
 from server.units import Dimension as D
@@ -85,6 +86,7 @@ def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
     """Return that no single flow suits all supply states, although each state has an overlap."""
     ends, starts = handover.fewer_end[h], handover.more_start[h]
     n = _added(judged, handover, h)
+    before = int(np.flatnonzero(judged.result.combinations[handover.fewer[h]])[0])
     low, high = int(np.argmax(starts)), int(np.argmin(ends))
     return Finding(
         code="handover_by_share", severity=Severity.CAUTION, subject=judged.slot_path(n),
@@ -96,48 +98,39 @@ def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
         names=(("fewer", _units(judged, handover.fewer[h])), ("more", _units(judged, handover.more[h])),
                ("starts_in", SUPPLY_STATES[low]), ("ends_in", SUPPLY_STATES[high]),
                ("set", judged.title)),
-        basis="physics", mend=("/supply/states/low", f"{judged.curve_path(n)}/table"),
+        basis="physics",
+        mend=(f"{judged.curve_path(before)}/table", f"{judged.curve_path(n)}/table"),
     )  # fmt: skip
 
 
 def _after_trip(judged: JudgedSet, after: AfterTrip) -> Iterator[Finding]:
-    """Yield the cases in which the units left pass the end of their curve or leave their region."""
-    ended: list[int] = []
-    outside: list[int] = []
-    for i in range(len(after.cases)):
-        if after.running[i] == 0:
-            continue
-        state = State(int(after.state[i]))
-        if state is State.END_OF_CURVE:
-            ended.append(i)
-        elif state in STATED and after.best_efficiency_share[i] > _right_end(judged):
-            outside.append(i)
-    mend = (*_tables(judged), f"{judged.path}/slots")
-    if ended:
-        worst = max(ended, key=lambda i: _demand(judged, after.cases[i]))
-        yield Finding(
-            code="after_trip_end_of_curve", severity=Severity.CAUTION, subject=judged.path,
-            pump_set=judged.id, governing=after.cases[worst],
-            cases=tuple(after.cases[i] for i in ended),
-            provided=amount("flow_at_end", float(after.flow_at_end[worst]), D.FLOW),
-            required=amount("demand", _demand(judged, after.cases[worst]), D.FLOW),
-            names=(*_trip_names(judged, after, worst),), basis="physics", mend=mend,
-        )  # fmt: skip
-    if outside:
-        worst = max(outside, key=lambda i: float(after.best_efficiency_share[i]))
-        yield Finding(
-            code="after_trip_outside_region", severity=Severity.NOTE, subject=judged.path,
-            pump_set=judged.id, criterion=judged.criterion("preferred-region-high"),
-            governing=after.cases[worst], cases=tuple(after.cases[i] for i in outside),
-            provided=amount("share", float(after.best_efficiency_share[worst]), D.RATIO, 0),
-            required=amount("required", _right_end(judged), D.RATIO, 0),
-            others=(amount("flow_at_end", float(after.flow_at_end[worst]), D.FLOW),),
-            names=(*_trip_names(judged, after, worst),), basis="preferred-region-high", mend=mend,
-        )  # fmt: skip
+    """Yield the cases in which the units left pass the end of their curve.
 
-
-def _right_end(judged: JudgedSet) -> float:
-    return judged.limit("preferred-region-high")
+    That they leave their preferred region is no finding: fewest units run, so one less is always to
+    the right of it. How far they go while still on the curve is told beside.
+    """
+    ended = [i for i in range(len(after.cases))
+             if after.running[i] > 0 and State(int(after.state[i])) is State.END_OF_CURVE]  # fmt: skip
+    if not ended:
+        return
+    on_curve = [i for i in range(len(after.cases))
+                if after.running[i] > 0 and State(int(after.state[i])) in STATED]  # fmt: skip
+    furthest = max(on_curve, key=lambda i: float(after.best_efficiency_share[i]), default=None)
+    worst = max(ended, key=lambda i: _demand(judged, after.cases[i]))
+    share = float("nan") if furthest is None else float(after.best_efficiency_share[furthest])
+    beside = share > judged.limit("preferred-region-high")
+    names = dict(_trip_names(judged, after, worst))
+    if beside and furthest is not None and not names["state"]:
+        names["state"] = "beside"
+        names["share_case"] = scenario_title(judged.station, after.cases[furthest])
+    yield Finding(
+        code="after_trip_end_of_curve", severity=Severity.CAUTION, subject=judged.path,
+        pump_set=judged.id, governing=after.cases[worst], cases=tuple(after.cases[i] for i in ended),
+        provided=amount("flow_at_end", float(after.flow_at_end[worst]), D.FLOW),
+        required=amount("demand", _demand(judged, after.cases[worst]), D.FLOW),
+        others=(amount("share", share, D.RATIO, 0),), names=tuple(names.items()), basis="physics",
+        mend=(*_tables(judged), f"{judged.path}/slots"),
+    )  # fmt: skip
 
 
 def _trip_names(judged: JudgedSet, after: AfterTrip, i: int) -> tuple[tuple[str, str], ...]:

@@ -184,14 +184,6 @@ class JudgedSet:
             last = titles.pop()
             yield slots[0], f"{', '.join(titles)} and {last}" if titles else last
 
-    def held_shut(self, c: int, k: int) -> Iterator[int]:
-        """Yield the slots that run in case `c` with combination `k` and pass nothing."""
-        flows = self.result.leg_flow[c, k]
-        asked = self.result.demand[c]
-        for n in np.flatnonzero(self.result.combinations[k]):
-            if flows[n] <= 0 and asked > 0:
-                yield int(n)
-
     def case(self, c: int) -> Case:
         """Return case `c`."""
         return self.result.cases[c]

@@ -11,8 +11,9 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("end_of_curve", "past the end of the curve", "sets",
          "{set} reaches the end of its pump curves in {case}: {required} is asked, the curves end at "
          "{provided}. No duty is stated{also}."),
-    code("no_flow", "nothing flows", "sets",
-         "{set} cannot lift water in {case}: no pump that may run reaches the head at no flow{also}."),
+    code("held_shut", "held shut", "sets",
+         "{set} has no duty in {case}: in every combination that may run the others, or its own cracking "
+         "head, hold a check valve shut{also}."),
     code("no_unit", "no unit can run", "sets",
          "{set} has no unit that may run in {case}{also}."),
     code("no_water_at_point", "no water at a point", "main-and-zone",
@@ -85,8 +86,6 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "flow of {required}{also}.",
          assumed="{slot} {run} at {provided} of its best-efficiency flow in {case}, below the {required} "
                  "assumed as its minimum continuous flow{also}."),
-    code("held_shut", "held shut", "sets",
-         "{slot} runs and passes nothing in {case}: the others hold its check valve shut{also}."),
     code("region_outside", "outside the preferred region", "pumps",
          "{slot} {run} at {provided} of its best-efficiency flow ({flow}) in {case}: outside, {side} of its "
          "preferred region of {low} to {high}{also}."),
@@ -127,6 +126,9 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("after_trip_end_of_curve", "past the curve after a trip", "sets",
          "If {lost} trips in {case}, the {left} left would run past the end of their curve ({required} asked, "
          "the curves end at {provided}) until {standby} has started{also}.",
+         beside="If {lost} trips in {case}, the {left} left would run past the end of their curve ({required} "
+                "asked, the curves end at {provided}) until {standby} has started{also}. In {share_case} they "
+                "stay on it, at {share} of best-efficiency flow.",
          no_standby="If {lost} trips in {case}, the {left} left would run past the end of their curve "
                     "({required} asked, the curves end at {provided}), and the set has no standby{also}."),
     code("handover_by_share", "no single flow to hand over at", "sets",
@@ -174,11 +176,6 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "{required}. The fire requirements are met{also}."),
     code("pressure_by_speed", "pressure moves with speed", "sets",
          "1 % of speed moves the pressure at {held} by {provided} in {case}; the limit is {limit}{also}."),
-    code("after_trip_outside_region", "right of the region after a trip", "sets",
-         "If {lost} trips in {case}, the {left} left run at {provided} of best-efficiency flow until {standby} "
-         "has started; their curves end at {flow_at_end} in all{also}.",
-         no_standby="If {lost} trips in {case}, the {left} left run at {provided} of best-efficiency flow; the "
-                    "set has no standby{also}."),
     code("main_slow", "main slow", "main-and-zone",
          "{part} reaches {provided} at most on the fastest day in {horizon}; {required} once a day keeps it "
          "clean{also}."),

@@ -45,6 +45,8 @@ _REASONS = {
     "outside_friction_law": "the roughness is too large for the bore",
     "residual_not_below_static": "the residual pressure must be below the static pressure",
     "test_flow_not_positive": "the test flow must be above zero",
+    "lowest_speed_above_highest": "the lowest speed lies above the highest",
+    "too_few_rows": "its rows are too few to draw a curve",
     "bep_outside_rows": "the stated best-efficiency flow lies outside the rows",
 }  # fmt: skip
 _CHECKS = {
