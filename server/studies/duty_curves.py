@@ -18,9 +18,9 @@ from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
 from server.studies.set_states import solve_states
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
-from server.studies.system_heads import Draw, required_head, system_heads
+from server.studies.system_heads import Draw, SystemHeads, system_heads
 
-READINGS = 121  # points of a curve
+READINGS = 181  # points of a curve
 MOST_CURVES = 6
 
 
@@ -93,9 +93,8 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     lowered = lower(station, result.pump_set, limits_of(station))
     if isinstance(lowered, NotSolved):
         raise ValueError(f"set {result.pump_set} of the result is not solved in this document")
-    legs = tuple(unit.leg for unit in lowered.units)
     drawn = _drawn(lowered, result)
-    sets = tuple(_running_set(lowered, legs, result, k) for k in drawn)
+    sets = tuple(_running_set(lowered, result, k) for k in drawn)
     furthest = max((float(s.flow[-1]) for s in sets), default=0.0)
     asked = float(np.nanmax(result.demand)) if result.demand.size else 0.0
     grid = np.linspace(0.0, max(furthest, 1.1 * asked, 1e-3), READINGS)
@@ -104,12 +103,12 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     along_state = state if state in known else known[0]
     return DutyCurves(
         sets=sets,
-        held=_held(lowered, legs, result),
+        held=_held(lowered, result),
         flow=grid,
-        required_low=_required(lowered, grid, "low", pipes),
-        required_high=_required(lowered, grid, "high", pipes),
+        required_low=_heads(lowered, grid, "low", pipes).required_head,
+        required_high=_heads(lowered, grid, "high", pipes).required_head,
         pipes=pipes,
-        along=_along(lowered, result, drawn, sets, along_state, pipes),
+        along=_along(lowered, result, drawn, grid, along_state, pipes),
         along_state=along_state,
     )
 
@@ -153,23 +152,19 @@ def _at_speed(legs: list[LegCurve], speed: float) -> tuple[Floats, Floats]:
     return flows.flow.sum(axis=-1)[usable], head[usable]
 
 
-def _running_set(
-    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult, combination: int
-) -> RunningSet:
+def _running_set(lowered: LoweredSet, result: DutyResult, combination: int) -> RunningSet:
     units = _units(lowered, result, combination)
-    flow, head = _at_speed([legs[u] for u in units], lowered.control.highest_speed)
+    flow, head = _at_speed([lowered.units[u].leg for u in units], lowered.control.highest_speed)
     slots = [int(n) for n in np.flatnonzero(result.combinations[combination])]
     small = all(lowered.slots[n].facts.role == "jockey" for n in slots)
-    outline = _preferred(lowered, legs, slots) if len(set(units)) == 1 else (np.empty(0), np.empty(0))
+    outline = _preferred(lowered, slots) if len(set(units)) == 1 else (np.empty(0), np.empty(0))
     return RunningSet(combination, len(units), small, flow, head, *outline)
 
 
-def _preferred(
-    lowered: LoweredSet, legs: tuple[LegCurve, ...], slots: list[int]
-) -> tuple[Floats, Floats]:
+def _preferred(lowered: LoweredSet, slots: list[int]) -> tuple[Floats, Floats]:
     """Return the outline of the preferred region of equal units, between its two loci."""
     slot, count = lowered.slots[slots[0]], len(slots)
-    leg, best = legs[slot.unit], slot.facts.best_efficiency_flow
+    leg, best = lowered.units[slot.unit].leg, slot.facts.best_efficiency_flow
     if best is None:
         return np.empty(0), np.empty(0)
     low, high = best * slot.preferred[0], min(best * slot.preferred[1], leg.last_flow)
@@ -183,9 +178,7 @@ def _preferred(
     return np.asarray(count * x * s), np.asarray(s**2 * leg.head(x))
 
 
-def _held(
-    lowered: LoweredSet, legs: tuple[LegCurve, ...], result: DutyResult
-) -> tuple[HeldCurve, ...]:
+def _held(lowered: LoweredSet, result: DutyResult) -> tuple[HeldCurve, ...]:
     """Return the curve at the speed of each shown case."""
     curves = []
     for case in np.flatnonzero(result.shown):
@@ -193,43 +186,40 @@ def _held(
         running = np.flatnonzero(result.combinations[max(k, 0)])
         speed = float(result.speed[case, max(k, 0), running[0]]) if running.size else np.nan
         if k >= 0 and np.isfinite(speed):
-            together = [legs[u] for u in _units(lowered, result, k)]
+            together = [lowered.units[u].leg for u in _units(lowered, result, k)]
             curves.append(HeldCurve(int(case), *_at_speed(together, speed)))
     return tuple(curves)
 
 
-def _suction_grade(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> Floats:
-    none = np.zeros(flow.shape)
-    shift = np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)])
-    draw = Draw(domestic=flow, fire=none, fire_point=-1, aged=pipes == "aged", shift=shift)
-    return system_heads(lowered, draw).suction_grade
-
-
-def _required(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> Floats:
-    """Return the head that holds the set point, all flow taken as demand of the zone. [m]"""
-    shift = lowered.supply.shift[SUPPLY_STATES.index(state)]
-    return required_head(lowered, flow, pipes == "aged", shift)
+def _heads(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> SystemHeads:
+    """Return grades and required head, all flow taken as demand of the zone."""
+    draw = Draw(
+        domestic=flow, fire=np.zeros(flow.shape), fire_point=-1, aged=pipes == "aged",
+        shift=np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)]),
+    )  # fmt: skip
+    return system_heads(lowered, draw)
 
 
 def _along(
-    lowered: LoweredSet, result: DutyResult, drawn: tuple[int, ...],
-    sets: tuple[RunningSet, ...], state: SupplyState, pipes: PipeAge,
+    lowered: LoweredSet, result: DutyResult, drawn: tuple[int, ...], flow: Floats,
+    state: SupplyState, pipes: PipeAge,
 ) -> tuple[AlongControl, ...]:  # fmt: skip
     """Return each drawn combination where it holds the set point, solved as the duty is."""
+    if not drawn:
+        return ()
+    heads = _heads(lowered, flow, state, pipes)
+    on = result.combinations[list(drawn)]
+    solved = solve_states(lowered, on, flow, heads.required_head)
+    held = (solved.state == State.SOLVED) & (flow > 0)[:, None]
     curves = []
-    for k, running in zip(drawn, sets, strict=True):
-        flow = np.linspace(0.0, float(running.flow[-1]), READINGS)
-        solved = solve_states(
-            lowered, result.combinations[k][None, :], flow,
-            _required(lowered, flow, state, pipes),
-        )  # fmt: skip
-        held = (solved.state[:, 0] == State.SOLVED) & (flow > 0)
-        on = result.combinations[k]
-        slot = {name: np.where(held[:, None], values[:, 0, on], np.nan) for name, values in solved.slot.items()}
+    for i, k in enumerate(drawn):
+        slot = {
+            name: np.where(held[:, i, None], values[:, i, on[i]], np.nan)
+            for name, values in solved.slot.items()
+        }
         power = slot["shaft_power"].sum(axis=1)
         useful = (slot["shaft_power"] * slot["efficiency"]).sum(axis=1)
-        suction = _suction_grade(lowered, flow, state, pipes)
-        available = _npsh_available(lowered, suction[:, None] - slot["suction_loss"])
+        available = _npsh_available(lowered, heads.suction_grade[:, None] - slot["suction_loss"])
         curves.append(
             AlongControl(
                 combination=k, flow=flow, speed=slot["speed"][:, 0],
