@@ -29,6 +29,10 @@ from server.memo.blocks import (
     TitleBlock,
     Warned,
 )
+from server.memo.book import memo_book
+from server.resources import folder
+from server.station.station import Station
+from server.studies.assess import assess
 from server.studies.shapes import Severity
 from server.units import View, display_unit, shown, shown_with_unit
 
@@ -177,6 +181,10 @@ class _Writer:
         return f'<ol class="findings">{items}</ol>'
 
 
+def _css(name: str) -> str:
+    return f' class="{name}"' if name else ""
+
+
 def band_html(mark: BandMark) -> str:
     """Return a band mark as HTML, as `templates/parts/band_mark.html` draws it."""
     drawn = ""
@@ -264,3 +272,28 @@ def whole_page(book: MemoBook, view: View, paper: Paper, styles: str) -> str:
         f"<style>{styles}\n{page_css(book.head, paper)}</style></head>"
         f'<body class="paper">{memo_body(book, view, paper)}</body></html>\n'
     )
+
+
+def memo_html(
+    station: Station, view: View, paper: Paper, *, standalone: bool = True, document_hash: str = ""
+) -> str:
+    """Return the memo of a station as HTML.
+
+    Parameters
+    ----------
+    station : Station
+        The document.
+    view : {"si", "us"}
+        Units that are read.
+    paper : {"a4", "letter"}
+        Paper it is printed on.
+    standalone : bool
+        A whole page that needs no other file, or the memo's own part alone.
+    document_hash : str
+        Of the document's canonical bytes; computed when left out.
+    """
+    book = memo_book(station, assess(station, document_hash), view)
+    if not standalone:
+        return memo_body(book, view, paper)
+    styles = (folder("static") / "memo.css").read_text(encoding="utf-8")
+    return whole_page(book, view, paper, styles)
