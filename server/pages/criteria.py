@@ -10,9 +10,9 @@ from server.pages.frame import SheetPage, register, show
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
 from server.station import fields
-from server.station.entry import Quantity, Sheet
+from server.station.entry import Sheet
 from server.studies.findings.criteria import Criterion, criteria_of
-from server.studies.findings.rule import Rule, Sense
+from server.studies.findings.rule import Sense
 from server.units import UNITS
 
 router = APIRouter()
@@ -30,7 +30,6 @@ class CriterionRow:
     title: str
     basis: str
     profile: str
-    sense: str
     departs: bool
     limit: FieldView | None
     source: FieldView | None
@@ -81,8 +80,7 @@ def _row(sheet: SheetView, criterion: Criterion) -> CriterionRow:
         html_id=f"criterion-{criterion.key}",
         title=criterion.title,
         basis=criterion.rule.source_words,
-        profile=_words(criterion.rule, criterion.profile),
-        sense=SENSE_WORDS[criterion.sense],
+        profile=_words(criterion),
         departs=criterion.departs,
         limit=field_view(sheet, f"{path}/limit", "cell") if judged else None,
         source=field_view(sheet, f"{path}/source", "cell") if own else None,
@@ -90,11 +88,14 @@ def _row(sheet: SheetView, criterion: Criterion) -> CriterionRow:
     )
 
 
-def _words(rule: Rule, limit: Quantity | None) -> str:
+def _words(criterion: Criterion) -> str:
+    """Return what the profile says: "at least 200 kPa"."""
+    limit = criterion.profile
     if limit is None:
-        return "no number" if rule.sense != "stated" else ""
+        return "no number" if criterion.sense != "stated" else ""
     printed = UNITS[limit.unit].printed
-    return f"{limit.value:g}\u00a0{printed}" if printed else f"{limit.value:g}"
+    number = f"{limit.value:g}\u00a0{printed}" if printed else f"{limit.value:g}"
+    return f"{SENSE_WORDS[criterion.sense]} {number}"
 
 
 register(SheetPage("criteria", build))

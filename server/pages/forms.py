@@ -22,6 +22,13 @@ GOVERNING = frozenset({
     "/suction_line/reaches/*/fittings/*/loss/by", "/discharge_main/reaches/*/fittings/*/loss/by",
     "/criteria/profile", "/criteria/rows/*/limit",
 })  # fmt: skip
+# what an empty choice means, where it means something
+EMPTY_WORDS = {
+    "/sets/*/slots/*/curve": "its first curve",
+    "/sets/*/slots/*/from_horizon": "the first horizon",
+    "/scenarios/*/fire": "no fire",
+    "/horizons/*/pipes": "by the year",
+}
 SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
 SOURCE_WORDS = {
     "survey": "survey", "test": "test", "code": "code", "standard": "standard", "maker": "maker",
@@ -61,6 +68,11 @@ class FieldView:
     def cell(self) -> bool:
         """Whether the field stands in a table, where its column says label and unit."""
         return self.look == "cell"
+
+    @property
+    def wide(self) -> bool:
+        """Whether the field takes a line of its own."""
+        return self.long or self.kind == "pattern"
 
     @property
     def described(self) -> str:
@@ -147,10 +159,10 @@ def choices_of(sheet: SheetView, path: str) -> tuple[tuple[str, str], ...]:
     node = fields.node_at(path)
     entry = fields.entry_for(path)
     if node.kind == "reference":
-        return (("", "none chosen"), *_items_referred(sheet, path, entry))
+        return (("", EMPTY_WORDS.get(node.pattern, "none chosen")), *_items_referred(sheet, path, entry))
     if not entry.choices:
         return ()
-    return (("", "not chosen"), *entry.choices) if node.default is None else entry.choices
+    return (("", EMPTY_WORDS.get(node.pattern, "not chosen")), *entry.choices) if node.default is None else entry.choices
 
 
 def _items_referred(
@@ -206,7 +218,7 @@ def reading(entry: Entry, value: Quantity, view: View) -> str:
     other: View = "si" if view == "us" else "us"
     for reader in (view, other):
         unit = display_unit(dimension, reader)
-        if unit.symbol != value.unit:
+        if unit.symbol != value.unit and (value.value or unit.offset):
             decimals = entry.decimals
             if decimals is None:
                 decimals = display_decimals(dimension, reader)

@@ -183,8 +183,8 @@ def _is_empty(sheet: SheetView, path: str) -> bool:
 
 
 def next_of(sheet: SheetView) -> Next | None:
-    """Return what this sheet still waits for, or the next sheet that waits."""
-    if sheet.read_only:
+    """Return what this sheet still waits for, or the next sheet that waits; nothing once it is solved."""
+    if sheet.read_only or sheet.result is not None:
         return None
     here = missing_on(sheet, sheet.sheet)
     if here:

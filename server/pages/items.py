@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from server.pages.forms import FieldView, field_view
 from server.pages.sheet import Refusal, SheetView
 from server.station import fields, paths
+from server.station.titles import lowered
 from server.units import display_unit
 
 
@@ -144,12 +145,13 @@ def item_table(
 
 
 def _column(sheet: SheetView, pattern: str, name: str) -> Column:
-    entry = fields.entry_for(pattern)
-    kind = fields.kind_of(pattern)
+    node, entry = fields.node_at(pattern), fields.entry_for(pattern)
+    kind = node.kind
+    title = f"{node.group_title}, {lowered(node.title)}" if node.with_group else node.title
     unit = ""
     if kind == "quantity" and entry.dimension is not None:
         unit = display_unit(entry.dimension, sheet.view).printed
-    return Column(name, entry.title, unit, kind in ("quantity", "number", "integer"))
+    return Column(name, title, unit, kind in ("quantity", "number", "integer"))
 
 
 def _article(word: str) -> str:

@@ -15,9 +15,8 @@ from server.station import paths
 
 router = APIRouter()
 
-FIRST = ("title", "kind", "speed", "motor_power")
-REST = (
-    "stages", "allowable_region/low", "allowable_region/high", "minimum_flow", "npsh_exponent",
+PUMP = (
+    "title", "kind", "stages", "speed", "motor_power", "allowable_region/low", "allowable_region/high", "minimum_flow", "npsh_exponent",
     "motor_efficiency", "drive_efficiency", "rating",
 )  # fmt: skip
 CURVE = ("diameter", "fit", "best_efficiency_flow")
@@ -37,8 +36,7 @@ class PumpCard:
     """One pump."""
 
     steps: Steps
-    first: tuple[FieldView, ...]
-    rest: tuple[FieldView, ...]
+    fields: tuple[FieldView, ...]
     curves: tuple[CurveCard, ...]
     add_curve: Adding
 
@@ -61,8 +59,7 @@ def _pump(sheet: SheetView, path: str) -> PumpCard:
     curves = f"{path}/curves"
     return PumpCard(
         steps_of(sheet, path),
-        field_views(sheet, path, FIRST),
-        field_views(sheet, path, REST),
+        field_views(sheet, path, PUMP),
         tuple(_curve(sheet, curve) for curve in items_of(sheet, curves)),
         adding(sheet, curves),
     )

@@ -17,19 +17,8 @@ from server.studies.duty_result import DutyResult
 from server.studies.shapes import Finding, Severity
 from server.units import View
 
-SHEETS: tuple[tuple[Sheet, str], ...] = (
-    ("summary", "Summary"),
-    ("supply", "Site and supply"),
-    ("main-and-zone", "Main and zone"),
-    ("demand", "Demand and scenarios"),
-    ("pumps", "Pumps"),
-    ("sets", "Sets"),
-    ("duty", "Duty"),
-    ("criteria", "Criteria"),
-    ("memo", "Memo"),
-    ("history", "History"),
-)
-SHEET_TITLES: dict[Sheet, str] = dict(SHEETS)
+SHEET_TITLES = fields.SHEET_TITLES
+SHEETS: tuple[tuple[Sheet, str], ...] = tuple(SHEET_TITLES.items())
 SHEET_NUMBERS: dict[Sheet, int] = {sheet: number for number, (sheet, _) in enumerate(SHEETS, 1)}
 OPEN = (Severity.STOP, Severity.FAIL, Severity.CAUTION)
 
@@ -130,8 +119,10 @@ class SheetView:
         return self.href(sheet, anchor=paths.html_id(path))
 
     def field_words(self, path: str) -> str:
-        """Return the field at a path in words."""
-        return paths.words(self.station, path)
+        """Return the field at a path in words, without the name of the sheet when it is this one."""
+        told = paths.words(self.station, path)
+        short = told.removeprefix(f"{fields.SHEET_TITLES[self.sheet]}, ")
+        return short[:1].upper() + short[1:]
 
     def with_refusal(self, path: str, refusal: Refusal) -> "SheetView":
         """Return the same sheet with a refused entry in one of its fields."""
