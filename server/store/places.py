@@ -14,6 +14,8 @@ def make_usable(folder: Path) -> None:
     StoreRefused
         If it is no folder, or cannot be written.
     """
+    if folder.exists() and not folder.is_dir():
+        raise StoreRefused(f"{folder} is a file; --data names a folder.")
     try:
         folder.mkdir(parents=True, exist_ok=True)
         with tempfile.TemporaryFile(dir=folder):
