@@ -92,7 +92,7 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("motor_overloaded", "motor too small", "pumps",
          "{pump} needs {provided} at its shaft at top speed up to its last row; its motor gives {required}."),
     code("handover_gap", "a gap between numbers of units", "sets",
-         "Between {fewer} and {more} a gap of {width} is served outside the preferred region: {from} to "
+         "Between {fewer} and {more} a gap of {provided} is served outside the preferred region: {from} to "
          "{to} ({case}).",
          scenario="Between {fewer} and {more} flows from {from} to {to} are outside the preferred region "
                   "whichever runs, and {case} lies there{also}."),
