@@ -5,12 +5,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from server.hydraulics.arrays import FloatArray
+from server.hydraulics.arrays import BoolArray, FloatArray
 from server.hydraulics.errors import SolutionNotFound
 
-MOST_PASSES = 100
-SECANT_ONLY = 24  # passes after which every other one is a bisection
-ENOUGH = 1e-12  # share of the bracket's larger end below which a step changes nothing
+MOST_PASSES = 250
+SLOW = 4  # passes in which a bracket has to halve, else it is halved
+ENOUGH = 1e-12  # width of a bracket that counts as a root, as a share of its larger end
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -43,7 +43,7 @@ def falling_root(
     Raises
     ------
     SolutionNotFound
-        If a root is not reached in 100 passes.
+        If a root is not reached in 250 passes.
 
     References
     ----------
@@ -52,23 +52,29 @@ def falling_root(
     """
     below, above = np.array(low, dtype=np.float64), np.array(high, dtype=np.float64)
     value_below, value_above = function(below), function(above)
-    bracketed = (value_below >= 0) & (value_above <= 0)
     at_low, at_high = value_below, value_above
     enough = ENOUGH * np.maximum(np.abs(below), np.abs(above))
-    x, moving = np.where(value_above == 0, above, below), bracketed & (value_below != 0)
-    moving &= value_above != 0
-    for pass_number in range(MOST_PASSES):
+    bracketed = (at_low >= 0) & (at_high <= 0)
+    # a root on a bound is a bracket of no width
+    above = np.where(bracketed & (at_low == 0), below, above)
+    below = np.where(bracketed & (at_high == 0) & (at_low != 0), above, below)
+    moving = bracketed & (above - below > enough)
+    widths = [above - below]
+    for _ in range(MOST_PASSES):
         if not moving.any():
-            return FallingRoot(
-                root=np.where(bracketed, x, np.nan), at_low=at_low, at_high=at_high
-            )
+            root = np.where(bracketed, 0.5 * (below + above), np.nan)
+            return FallingRoot(root=root, at_low=at_low, at_high=at_high)
         fall = value_below - value_above
         share = np.where(moving, value_below, 0.0) / np.where(moving & (fall > 0), fall, 1.0)
-        if pass_number > SECANT_ONLY and pass_number % 2:
-            share = np.full(share.shape, 0.5)
-        ahead = np.where(moving, below + (above - below) * share, x)
-        value = np.where(moving, function(ahead), 0.0)
-        rises, falls = moving & (value > 0), moving & (value < 0)
+        secant = below + (above - below) * share
+        # not nearer to a bound than what counts: a step past the root then closes the bracket
+        ahead = np.clip(secant, below + 0.5 * enough, above - 0.5 * enough)
+        if len(widths) > SLOW:
+            stalled = widths[-1] > 0.5 * widths[-1 - SLOW]
+            ahead = np.where(stalled, 0.5 * (below + above), ahead)
+        ahead = np.where(moving, ahead, below)
+        value = function(ahead)
+        rises, falls = moving & (value > 0), moving & (value <= 0)
         # the end that stays is weighed down, so that the next secant passes over the root
         value_above = np.where(
             rises, value_above * _weight(value, value_below, rises), value_above
@@ -76,15 +82,17 @@ def falling_root(
         value_below = np.where(
             falls, value_below * _weight(value, value_above, falls), value_below
         )
-        below, value_below = np.where(rises, ahead, below), np.where(rises, value, value_below)
-        above, value_above = np.where(falls, ahead, above), np.where(falls, value, value_above)
-        near = (np.abs(ahead - x) <= enough) | (above - below <= enough) | (value == 0)
-        x, moving = ahead, moving & ~near
+        below = np.where(rises | (falls & (value == 0)), ahead, below)
+        above = np.where(falls, ahead, above)
+        value_below = np.where(rises, value, value_below)
+        value_above = np.where(falls, value, value_above)
+        widths.append(above - below)
+        moving &= above - below > enough
     worst = float(np.abs(value[moving]).max())
     raise SolutionNotFound("root of a falling function", int(moving.sum()), worst)
 
 
-def _weight(value: FloatArray, replaced: FloatArray, where: np.ndarray) -> FloatArray:  # type: ignore[type-arg]
+def _weight(value: FloatArray, replaced: FloatArray, where: BoolArray) -> FloatArray:
     """Return the factor of Anderson and Bjorck for the end that stays."""
     ratio = 1.0 - value / np.where(where & (replaced != 0), replaced, np.inf)
     return np.where(ratio > 0, ratio, 0.5)
