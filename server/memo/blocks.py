@@ -77,7 +77,7 @@ class Table:
     columns: tuple[Column, ...]
     rows: tuple[tuple["Cell", ...], ...]
     notes: tuple[str, ...] = ()
-    numbered: bool = True
+    kind: str = ""  # tables of one kind share their column widths
 
 
 Cell = float | None | str | Spans

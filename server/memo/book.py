@@ -29,9 +29,9 @@ from server.units import View
 
 Section = Callable[[MemoSource], tuple[Block, ...]]
 SECTIONS: tuple[Section, ...] = (
-    verdict.blocks, basis.blocks, duty.blocks, supply.blocks, pressures.blocks, firm_capacity.blocks,
-    npsh.blocks, motors.blocks, made_cases.blocks, demand.blocks, inputs.blocks, criteria.blocks,
-    findings.blocks, not_checked.blocks, cautions.blocks, record.blocks,
+    verdict.blocks, basis.blocks, inputs.blocks, demand.blocks, supply.blocks, duty.blocks,
+    firm_capacity.blocks, pressures.blocks, npsh.blocks, motors.blocks, made_cases.blocks,
+    findings.blocks, criteria.blocks, not_checked.blocks, cautions.blocks, record.blocks,
 )  # fmt: skip
 HASH_SHOWN = 12
 

@@ -35,10 +35,48 @@ def entered_table(station: Station, caption: str, starts: tuple[str, ...], view:
         A value entered in another unit is followed by its reading in this view.
     """
     rows = tuple(row for start in starts for row in _rows(station, start, view))
-    return Table(caption, COLUMNS, rows) if rows else None
+    return Table(caption, COLUMNS, rows, kind="inputs") if rows else None
+
+
+def item_table(
+    station: Station, caption: str, list_path: str, names: tuple[str, ...], view: View
+) -> Table | None:
+    """Return the items of a list as rows, some of their fields as columns; None without items.
+
+    Parameters
+    ----------
+    station : Station
+        The document.
+    caption : str
+        Caption of the table.
+    list_path : str
+        Path of the list.
+    names : tuple of str
+        Fields of an item.
+    view : {"si", "us"}
+        A value entered in another unit is followed by its reading in this view.
+    """
+    items = paths.get(station, list_path)
+    if not isinstance(items, tuple) or not items:
+        return None
+    pattern = f"{fields.node_at(list_path).pattern}/*"
+    columns = (Column("Name"), *(Column(fields.label(f"{pattern}/{name}")) for name in names))
+    rows: list[Row] = []
+    for item in items:
+        path = f"{list_path}/{item.id}"
+        cells: list[Cell] = []
+        for name in names:
+            value = paths.get(station, f"{path}/{name}")
+            node = fields.node_at(f"{path}/{name}")
+            told = value not in (None, "", ())
+            cells.append(_value(station, f"{path}/{name}", node, value, view) if told else None)
+        rows.append((paths.item_title(station, path), *cells))
+    return Table(caption, columns, tuple(rows))
 
 
 def _rows(station: Station, path: str, view: View) -> Iterator[Row]:
+    if path.endswith("/slots") or (path == "/zone/tank" and station.zone.kind in (None, "closed")):
+        return  # slots have a table of their own; a closed zone has no tank
     node = fields.node_at(path)
     value = paths.get(station, path)
     if node.kind == "group":
@@ -54,7 +92,8 @@ def _rows(station: Station, path: str, view: View) -> Iterator[Row]:
 
 def _is_told(node: Node, value: object) -> bool:
     # a title is the name in front of every other row of its item; curves have tables of their own
-    return value not in (None, "", ()) and node.name != "title" and node.kind not in ("table", "source")
+    usual = node.name in ("barrels", "stages") and value == node.default
+    return not usual and value not in (None, "", ()) and node.name != "title" and node.kind not in ("table", "source")
 
 
 def _name(station: Station, path: str) -> str:
@@ -85,7 +124,8 @@ def quantity_spans(value: Quantity, entry: Entry | None, view: View) -> Spans:
     typed = f" (typed {value.typed})" if value.typed else ""
     shown = f"{value.value:.10g}\u00a0{unit.printed}".rstrip("\u00a0") + typed
     dimension = (entry.dimension if entry is not None else None) or Dimension.NUMBER
-    if display_unit(dimension, view).symbol == value.unit:
+    # seconds beside hours help nobody
+    if display_unit(dimension, view).symbol == value.unit or dimension is Dimension.TIME:
         return (shown,)
     places = display_decimals(dimension, view)
     return shown, " = ", Number(value.si, dimension, places)

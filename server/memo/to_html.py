@@ -119,7 +119,7 @@ class _Writer:
         return f"<h3>{escape(block.text)}</h3>"
 
     def _table(self, table: Table) -> str:
-        number = f"Table {next(self.tables)}. " if table.numbered else ""
+        number = f"Table {next(self.tables)}. "
         heads = "".join(self._head(column) for column in table.columns)
         rows = "".join(
             "<tr>"
@@ -133,6 +133,7 @@ class _Writer:
         notes = "".join(f'<p class="small soft">{escape(note)}</p>' for note in table.notes)
         # a table of few rows stays on one page; a long one breaks between rows and repeats its head
         css = "keep" if len(table.rows) <= 14 else "long"
+        css += f" {table.kind}" if table.kind else ""
         return (
             f'<div class="table {css}"><table><caption>{number}{escape(table.caption)}</caption>'
             f"<thead><tr>{heads}</tr></thead><tbody>{rows}</tbody></table>{notes}</div>"

@@ -1,7 +1,7 @@
 """Inputs with their sources; defaults are marked and listed."""
 
 from server.memo.blocks import Block, Cell, Column, Heading, Items, Paragraph, Table
-from server.memo.entered import entered_table
+from server.memo.entered import entered_table, item_table
 from server.memo.source import MemoSource
 from server.station.pump import Curve, Pump
 from server.studies.findings import words
@@ -16,6 +16,7 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     ("Legs", ("/legs",)),
     ("Sets, control and protections", ("/sets",)),
 )
+SLOT = ("role", "pump", "curve", "leg", "drive", "from_horizon")
 CURVE_COLUMNS = (
     ("flow", "Flow"), ("head", "Head"), ("efficiency", "Efficiency"), ("shaft_power", "Shaft power"),
     ("npsh_required", "NPSH required"),
@@ -30,6 +31,9 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
                    " that is another. DEFAULT marks a value that nobody stated for this station.",), small=True),
     ]  # fmt: skip
     tables = [entered_table(of.station, caption, starts, of.view) for caption, starts in GROUPS]
+    for pump_set in of.station.sets:
+        caption = f"Slots of {pump_set.title or 'a set'}"
+        tables.append(item_table(of.station, caption, f"/sets/{pump_set.id}/slots", SLOT, of.view))
     made.extend(table for table in tables if table is not None)
     for pump in of.station.pumps:
         made.extend(_curve_table(pump, curve) for curve in pump.curves if curve.table.rows)
