@@ -64,9 +64,7 @@ def judge_inputs(station: Station, criteria: dict[str, Criterion]) -> tuple[list
         *_defaults(station), *_departures(criteria), *_empty(station), *_scenarios(station),
         *_demands(station), *_points(station), *_under_criteria(station, criteria),
     ]  # fmt: skip
-    for fire in station.fires:
-        if fire.duration is None:
-            findings.append(_missing(f"/fires/{fire.id}/duration", "absent", False, None))
+    findings.extend(_missing(path, "absent", False, None) for path in _unasked(station))
     for each in station.sets:
         findings.extend(_protections(each))
         findings.extend(_ratings(station, each))
@@ -79,6 +77,24 @@ def _not_checked(code: str, path: Path, names: tuple[tuple[str, str], ...] = (),
         code=code, severity=Severity.NOT_CHECKED, subject=subject or path, pump_set=set_id,
         names=names, basis="physics", mend=(path,), because="absent",
     )  # fmt: skip
+
+
+def _unasked(station: Station) -> Iterator[Path]:
+    """Yield the absent fields that a judge needs and no study asks for."""
+    for fire in station.fires:
+        if fire.duration is None:
+            yield f"/fires/{fire.id}/duration"
+    if station.supply.bypass.fitted is None and station.sets:
+        yield "/supply/bypass/fitted"
+    used = {slot.pump for each in station.sets for slot in each.slots}
+    for pump in station.pumps:
+        if pump.id in used and pump.motor_power is None:
+            yield f"/pumps/{pump.id}/motor_power"
+    if station.supply.kind == "main":
+        for test in station.supply.flow_tests:
+            for name in ("gauge_level", "static_pressure", "residual_pressure", "test_flow"):
+                if test.use == "compared" and getattr(test, name) is None:
+                    yield f"/supply/flow_tests/{test.id}/{name}"
 
 
 def _empty(station: Station) -> Iterator[Finding]:

@@ -1,0 +1,81 @@
+"""Words at the edge: units by view, digits that do not contradict, the words of grades."""
+
+from pathlib import Path
+
+from server.studies.findings import words
+from server.studies.findings.judged_set import amount
+from server.studies.findings.registry import CODES
+from server.studies.shapes import Case, Finding, Region, Severity, Verdict
+from server.units import Dimension
+from tests.studies.findings.demo import assessed, demo, edited, put, q
+
+GOLDEN = Path(__file__).with_name("finding_codes.txt")
+
+
+def _code(code: str) -> Finding:
+    return next(f for f in assessed(demo()).findings if f.code == code)
+
+
+def test_codes_are_those_that_answers_in_station_files_already_name() -> None:
+    listed = [f"{code.code}: {code.short} ({code.sheet})" for code in CODES.values()]
+    assert listed == GOLDEN.read_text(encoding="utf-8").splitlines()
+
+
+def test_grades_and_verdicts_have_their_own_words() -> None:
+    assert [words.severity_words(each) for each in Severity] == [
+        "Stop", "Does not meet", "Not checked", "Caution", "Note",
+    ]  # fmt: skip
+    assert words.VERDICT_WORDS[Verdict.AT_LIMIT] == "At the limit"
+    assert words.REGION_WORDS[Region.EDGE] == "edge"
+    everything = " ".join((*words.VERDICT_WORDS.values(), *words.REGION_WORDS.values()))
+    assert "OK" not in everything
+
+
+def test_sentence_reads_in_us_units() -> None:
+    said = words.sentence(_code("suction_main_low"), demo(), "us")
+    assert "17.3\u00a0psi" in said
+    assert "20.3\u00a0psi" in said
+    assert "gpm" in said
+    assert "kPa" not in said
+
+
+def test_digits_are_added_until_provided_and_required_differ() -> None:
+    finding = Finding(
+        code="pressure_low", severity=Severity.FAIL, subject="/zone/points/pt-t3r8nw", pump_set=None,
+        governing=Case("sc-p2kh2h", "st-v3a7pe", "hz-d8gn4k", "low", "aged", None),
+        provided=amount("pressure", 249_970.0, Dimension.PRESSURE, 0),
+        required=amount("required", 250_000.0, Dimension.PRESSURE),
+        names=(("point", "Top Row 31"),), mend=("/sets/st-v3a7pe/control/pressure",),
+    )  # fmt: skip
+    said = words.sentence(finding, demo(), "si")
+    assert "249.97\u00a0kPa" in said
+    assert "250.00\u00a0kPa" in said
+
+
+def test_case_names_scenario_supply_state_and_unit_out() -> None:
+    case = Case("sc-p2kh2h", "st-v3a7pe", "hz-d8gn4k", "normal", "aged", "sl-p4g7jk")
+    assert words.scenario_title(demo(), case) == "peak hour, design, normal supply, P4 out"
+
+
+def test_scenario_named_after_a_place_keeps_its_capital() -> None:
+    station = edited(put("/scenarios/sc-p2kh2h/title", "Harrowmere fair"))
+    case = Case("sc-p2kh2h", "st-v3a7pe", "hz-d8gn4k", "high", "aged", None)
+    assert words.scenario_title(station, case) == "Harrowmere fair, high supply"
+
+
+def test_duration_of_hours_reads_in_hours() -> None:
+    assert words.amount_words(amount("duration", 7200.0, Dimension.TIME), "si") == "2\u00a0h"
+    assert words.amount_words(amount("delay", 15.0, Dimension.TIME), "si") == "15\u00a0s"
+
+
+def test_basis_names_the_source_of_the_limit_or_that_it_was_typed() -> None:
+    finding = _code("suction_main_low")
+    assert words.basis(finding).startswith("Published source: Utah R309-540-6(3)(b)")
+    station = edited(put("/criteria/rows/suction-main-minimum/limit", q(139, "kPa")))
+    assert words.basis(finding, station) == "Typed for this station, no source named"
+    assert words.basis(_code("after_trip_end_of_curve")) == "Computed"
+
+
+def test_criterion_is_named_by_its_rule() -> None:
+    said = words.field_words(demo(), "/criteria/rows/suction-main-minimum/limit")
+    assert said == "Criteria, Supplying main at the connection, at ground level, limit"
