@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from server.hydraulics.arrays import BoolArray, FloatArray, StateArray
+from server.hydraulics.equal_legs import equal_legs
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
 
@@ -12,6 +13,9 @@ _STEPS = 100
 _NEWTON_ONLY = 12  # steps after which every other one is a bisection
 _ROUNDING = 1e-14  # share of the head below which a step changes nothing
 _MEND = 1e-12  # share of the flow missing above which the shares are mended
+_LEAST_STEP = 1e-6  # share of the head within which a mended root must stay
+_JUMP = 1e-6  # share of the flow missing above which no share fits
+_SMALL_FLOW = 1e-6  # below which such shares are of this flow [m3/s]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -46,7 +50,7 @@ class Sharing:
     @property
     def shares_uniquely(self) -> BoolArray:
         """Where every leg has one flow for each head, shape (M,)."""
-        falls = np.array([k.falls_throughout for k in self.kinds])
+        falls = np.array([k.shares_uniquely for k in self.kinds])
         return np.asarray(~np.any((self.count > 0) & ~falls, axis=1), dtype=np.bool_)
 
     def flows(self, u: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -144,11 +148,22 @@ def held_root(
         unknown=still & np.isnan(shutoff),
         rising=np.zeros(flow.shape, dtype=np.bool_),
     )
-    moving = runs & ~still & ~root.past_end
+    by_flow = sharing.single_kind & ~sharing.shares_uniquely
+    moving = runs & ~still & ~root.past_end & ~by_flow
     if moving.any():
         _solve(sharing.take(moving), moving, root, fixed, factor, floor, ceiling)
     root.unknown |= sharing.unknown_at(root.u) & ~still
-    return limit.astype(np.int8), root
+    states = limit.astype(np.int8)
+    for k, kind in enumerate(sharing.kinds):
+        rows = ~still & sharing.single_kind & (count[:, k] > 0)
+        if kind.shares_uniquely or not rows.any():
+            continue
+        each = flow[rows] / count[rows, k]
+        equal = equal_legs(kind, each=each, head=head[rows], low=low[rows], high=high[rows])
+        states[rows], root.u[rows], root.x[rows, k] = equal.limit, equal.u, equal.x
+        root.past_end[rows], root.unknown[rows] = equal.past_end, equal.unknown
+        root.rising[rows] = equal.rising
+    return states, root
 
 
 def _solve(
@@ -181,26 +196,35 @@ def _solve(
         if near.all():
             break
     x, _ = sharing.flows(u)
-    u, x, unknown, rising = _left_of_hump(sharing, a, b, u, x)
-    u, x = _mend(sharing, a, b, u, x)
-    root.u[rows], root.x[rows] = u, x
-    root.unknown[rows], root.rising[rows] = unknown, rising
+    wanted = a + b * np.sqrt(np.maximum(u, 0.0))
+    # A gap that is left is a jump of the largest flow: no share of these legs fits the demand.
+    jumped = np.abs((count * x).sum(axis=1) - wanted) > _JUMP * np.maximum(wanted, _SMALL_FLOW)
+    jumped &= ~sharing.shares_uniquely
+    _mend(sharing, a, b, u, x, ~jumped)
+    root.u[rows], root.x[rows], root.unknown[rows] = u, x, jumped
 
 
 def _mend(
-    sharing: Sharing, a: FloatArray, b: FloatArray, u: FloatArray, x: FloatArray
-) -> tuple[FloatArray, FloatArray]:
-    """Settle the flows where a curve is level, near shut-off, by Newton steps in the flows."""
+    sharing: Sharing,
+    a: FloatArray,
+    b: FloatArray,
+    u: FloatArray,
+    x: FloatArray,
+    rows: BoolArray,
+) -> None:
+    """Settle, in place, flows where a curve is level, near shut-off: Newton in the flows."""
     for _ in range(3):
-        off = (sharing.count * x).sum(axis=1) - a - b * np.sqrt(np.maximum(u, 0.0))
-        rough = np.abs(off) > _MEND * np.maximum(a + b * np.sqrt(np.maximum(u, 0.0)), 1e-6)
+        wanted = a + b * np.sqrt(np.maximum(u, 0.0))
+        off = (sharing.count * x).sum(axis=1) - wanted
+        rough = rows & (np.abs(off) > _MEND * np.maximum(wanted, _SMALL_FLOW))
         if not rough.any():
-            break
+            return
         at, n, y = u[rough], sharing.count[rough], x[rough]
+        may_flow = sharing.open_at(at)
         miss, inverse = np.zeros_like(y), np.zeros_like(y)
         for k, kind in enumerate(sharing.kinds):
             inside = np.clip(y[:, k], kind.first_flow, kind.last_flow)
-            flows = (n[:, k] > 0) & (y[:, k] > 0)
+            flows = (n[:, k] > 0) & may_flow[:, k]
             slope = np.minimum(kind.curve.slope(inside), -1e-9)
             miss[:, k] = np.where(flows, at - kind.head(inside), 0.0)
             inverse[:, k] = np.where(flows, 1.0 / slope, 0.0)
@@ -209,52 +233,7 @@ def _mend(
         change = -(off[rough] + (n * miss * inverse).sum(axis=1)) / np.where(
             steepness < 0, steepness, -np.inf
         )
+        change = np.clip(change, -_LEAST_STEP * at, _LEAST_STEP * at)
         u[rough] = at + change
         moved = y + (miss + change[:, None]) * inverse
-        x[rough] = np.where(y > 0, np.maximum(moved, 0.0), 0.0)
-    return u, x
-
-
-def _left_of_hump(
-    sharing: Sharing, a: FloatArray, b: FloatArray, u: FloatArray, x: FloatArray
-) -> tuple[FloatArray, FloatArray, BoolArray, BoolArray]:
-    """Solve equal legs by their flow where no largest flow fits the demand.
-
-    That is on the rising side of a hump. Legs of one kind share equally, so the demand fixes
-    the flow of each, and its head is read off the curve itself.
-    """
-    wave = np.sqrt(np.maximum(u, 0.0))
-    off = np.abs((sharing.count * x).sum(axis=1) - a - b * wave)
-    jumped = off > 1e-9 * np.maximum(a + b * wave, 1e-6)
-    jumped &= ~sharing.shares_uniquely
-    unknown = jumped & ~sharing.single_kind
-    rising = np.zeros(u.shape, dtype=np.bool_)
-    for k, kind in enumerate(sharing.kinds):
-        rows = jumped & sharing.single_kind & (sharing.count[:, k] > 0)
-        if not rows.any():
-            continue
-        n, fixed, factor = sharing.count[rows, k], a[rows], b[rows]
-        left, right = np.full(n.shape, kind.first_flow), np.full(n.shape, kind.last_flow)
-
-        def surplus(
-            y: FloatArray,
-            n: FloatArray = n,
-            fixed: FloatArray = fixed,
-            factor: FloatArray = factor,
-            kind: LegCurve = kind,
-        ) -> FloatArray:
-            return np.asarray(
-                n * y - fixed - factor * np.sqrt(np.maximum(kind.head(y), 0.0)),
-                dtype=np.float64,
-            )
-
-        fits = (surplus(left) <= 0) & (surplus(right) >= 0)
-        for _ in range(_STEPS):
-            middle = 0.5 * (left + right)
-            over = surplus(middle) > 0
-            left, right = np.where(over, left, middle), np.where(over, middle, right)
-        x[rows, k] = left
-        u[rows] = kind.head(left)
-        unknown[rows] = ~fits
-        rising[rows] = fits & (left < kind.peak_flow)
-    return u, x, unknown, rising
+        x[rough] = np.where(may_flow, np.maximum(moved, 0.0), 0.0)

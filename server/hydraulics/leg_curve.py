@@ -40,7 +40,7 @@ class LegCurve:
     peak_head, peak_flow : float
         Highest head and where it stands. [m], [m3/s]
     falls_throughout : bool
-        Whether the leg has one flow for each head, so that load is shared uniquely.
+        Whether the head falls from every row to the next.
     falling_head : ndarray, shape (E + 1,)
         Heads, rising, between the pieces of the falling envelope. [m]
     falling_left, falling_right : ndarray, shape (E,)
@@ -85,6 +85,11 @@ class LegCurve:
     def last_head(self) -> float:
         """Head at the last row [m]."""
         return float(self.falling_head[0])
+
+    @property
+    def shares_uniquely(self) -> bool:
+        """Whether the leg has one flow for each head, from nothing up."""
+        return self.falls_throughout and self.shutoff_head is not None
 
     def head(self, flow: ArrayLike) -> FloatArray:
         """Return the head at tested speed, nan outside the rows [m]."""

@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from server.hydraulics.arrays import BoolArray, FloatArray, StateArray, not_negative, positive
+from server.hydraulics.falling_root import falling_root
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
 
@@ -16,8 +17,6 @@ HIGH_SPECIFIC_SPEED = 87.0  # 4500 in US units [rev/min, m3/s, m]
 PREFERRED = (70.0, 120.0)  # preferred region [% of best efficiency flow]
 PREFERRED_HIGH = (80.0, 115.0)  # the same above the high specific speed [%]
 ASSUMED_MINIMUM = 0.25  # of best efficiency flow, where the maker states no minimum [-]
-_STEPS = 60  # of false position; about ten are usual
-_ENOUGH_HEAD = 1e-12  # surplus that counts as none [m]
 HEAT_CAPACITY = 4186.0  # of water [J/(kg K)]
 
 
@@ -252,8 +251,7 @@ def control_flows(
 
     low, high = np.full(x.shape, lowest_speed), np.full(x.shape, highest_speed)
     top, slow = surplus(high) < 0, surplus(low) > 0
-    inside = ~top & ~slow
-    found = _rising_root(surplus, np.where(inside, low, high), high)
+    found = falling_root(lambda speed: -surplus(speed), low, high).root
     speed = np.where(top, highest_speed, np.where(slow, lowest_speed, found))
     state = np.where(top, State.TOP_SPEED, np.where(slow, State.LOW_SPEED, State.SOLVED))
     state = np.where(within, state, State.END_OF_CURVE)
@@ -263,24 +261,3 @@ def control_flows(
         state=state.astype(np.int8),
         within=np.asarray(within, dtype=np.bool_),
     )
-
-
-def _rising_root(
-    function: Callable[[FloatArray], FloatArray], low: FloatArray, high: FloatArray
-) -> FloatArray:
-    """Return the roots of rising functions by false position with halving (Illinois).
-
-    Where the signs at the ends are equal the answer has no meaning: the caller masks it.
-    """
-    a, b, at_a, at_b = low, high, function(low), function(high)
-    for _ in range(_STEPS):
-        gap = at_b - at_a
-        level = gap == 0
-        c = np.clip(b - at_b * (b - a) / np.where(level, 1.0, gap), low, high)
-        at_c = function(c)
-        crossed = at_c * at_b < 0
-        a, at_a = np.where(crossed, b, a), np.where(crossed, at_b, 0.5 * at_a)
-        b, at_b = c, at_c
-        if np.all((np.abs(at_c) <= _ENOUGH_HEAD) | (low == high) | (np.abs(b - a) <= 1e-15)):
-            break
-    return b

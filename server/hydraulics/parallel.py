@@ -16,6 +16,7 @@ HEAD_TOLERANCE = 1e-9  # energy residual that counts as solved [m]
 FLOW_TOLERANCE = 1e-9  # mass residual that counts as solved [m3/s]
 _STEPS = 100
 _NEWTON_ONLY = 12  # steps after which every other one is a bisection
+_JUMP = 1e-3  # energy residual that is no rounding but a jump of the largest flow [m]
 _ROUNDING = 1e-14  # share of the head below which a step changes nothing
 
 
@@ -157,7 +158,7 @@ def solve_parallel(
     energy = _energy_residual(flow, flows.state, manifold, legs, speed)
 
     state = _set_state(flows.state, running, reaches)
-    unique = ~np.any(running & ~np.array([leg.falls_throughout for leg in legs]), axis=1)
+    unique = ~np.any(running & ~np.array([leg.shares_uniquely for leg in legs]), axis=1)
     missed = (state != State.END_OF_CURVE) & (energy > HEAD_TOLERANCE)
     if np.any(missed & unique):
         raise SolutionNotFound(
@@ -256,7 +257,8 @@ def _polish(
     """
     for _ in range(3):
         head = system.head(flow.sum(axis=1), case=every)
-        rough = _energy_residual(flow, leg_state, head, legs, speed) > 1e-3 * HEAD_TOLERANCE
+        residual = _energy_residual(flow, leg_state, head, legs, speed)
+        rough = (residual > 1e-3 * HEAD_TOLERANCE) & (residual < _JUMP)
         rough &= ~np.any(leg_state == State.END_OF_CURVE, axis=1)
         if not rough.any():
             return

@@ -118,6 +118,12 @@ def _check_flow_and_head(rows: PumpRows) -> None:
             "head_rising_throughout",
             "head must fall toward the last row; it rises from the first row to the last",
         )
+    if h[-1] >= h.max():
+        raise CurveRefused(
+            "head_highest_at_last_row",
+            f"head must fall toward the last row; the last row has the highest, {h[-1]:g} m",
+            row=h.size - 1,
+        )
     if h.max() <= 0:
         raise CurveRefused(
             "head_not_above_zero", f"head must be above zero; got {h.max():g} m at most"

@@ -218,6 +218,7 @@ def test_power_and_efficiency_that_do_not_agree_are_shown_row_by_row():
         ({"head": [50.0, 48.0, None, 37.0, 27.0]}, "head_missing", 2),
         ({"head": [50.0, 48.0, np.inf, 37.0, 27.0]}, "not_finite", 2),
         ({"head": [30.0, 31.0, 32.0, 33.0, 34.0]}, "head_rising_throughout", None),
+        ({"head": [50.0, 40.0, 45.0, 51.0, 52.0]}, "head_highest_at_last_row", 4),
         ({"head": [-1.0, -2.0, -3.0, -4.0, -5.0]}, "head_not_above_zero", None),
         ({"efficiency": [0, 0.5, 72.0, 0.6, 0.4]}, "efficiency_above_one", 2),
         ({"efficiency": [0, 0.5, -0.1, 0.6, 0.4]}, "efficiency_below_zero", 2),
