@@ -106,6 +106,7 @@ class FindingLine:
     basis: str
     mends: tuple[tuple[str, str], ...]
     answer: str
+    folds: bool  # a note: many of them are folded behind their number
 
 
 def strip_view(sheet: OpenedSheet) -> StripView | None:
@@ -157,6 +158,7 @@ def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[Find
                 for path in finding.mend[:MOST_MENDS]
             ),
             answer=answer_to(finding, sheet.station),
+            folds=finding.severity is Severity.NOTE,
         )
         for finding in findings
     )
