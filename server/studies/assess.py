@@ -33,7 +33,9 @@ class Assessment:
     results: dict[str, DutyResult | NotSolved]
     findings: tuple[Finding, ...]  # worst first
     criteria: dict[str, Criterion]
-    requirements: tuple[RequirementRow, ...]  # of the proposed set; empty while it is not solved
+    requirements: tuple[
+        RequirementRow, ...
+    ]  # of the proposed set; empty while it is not solved
     compliance: tuple[ComplianceRow, ...]
 
     @property
@@ -42,7 +44,7 @@ class Assessment:
         return proposed_of(self.station)
 
     def for_set(self, set_id: str) -> DutyResult | NotSolved | None:
-        """Return the duty of a set, what stands in its way, or None when there is no such set."""
+        """Return the duty of a set, what stands in its way, or None: no such set."""
         return self.results.get(set_id)
 
     def findings_for(self, set_id: str | None) -> tuple[Finding, ...]:
@@ -50,7 +52,7 @@ class Assessment:
         return tuple(f for f in self.findings if f.pump_set in (None, set_id))
 
     def findings_on(self, sheet: Sheet) -> tuple[Finding, ...]:
-        """Return the findings that a sheet can mend, worst first; the Summary and Duty show all."""
+        """Return the findings that a sheet can mend, worst first; Summary and Duty show all."""
         if sheet in ("summary", "duty", "memo"):
             return self.findings
         return tuple(f for f in self.findings if sheet in _sheets(f))
@@ -133,13 +135,22 @@ def forget() -> None:
 def _assessed(station: Station, key: str) -> Assessment:
     limits = limits_of(station)
     criteria = criteria_of(station)
-    results = {each.id: duty(station, each.id, limits, document_hash=key) for each in station.sets}
+    results = {
+        each.id: duty(station, each.id, limits, document_hash=key) for each in station.sets
+    }
     judgement = judge(station, results, criteria)
     proposed = proposed_of(station)
     result = results.get(proposed) if proposed is not None else None
     solved = result if isinstance(result, DutyResult) else None
-    rows = () if solved is None else requirement_rows(station, solved, judgement.readings, criteria)
+    rows = (
+        ()
+        if solved is None
+        else requirement_rows(station, solved, judgement.readings, criteria)
+    )
     table = compliance_rows(
-        criteria, judgement.readings, judgement.findings, None if solved is None else solved.pump_set
+        criteria,
+        judgement.readings,
+        judgement.findings,
+        None if solved is None else solved.pump_set,
     )
     return Assessment(station, key, results, judgement.findings, criteria, rows, table)

@@ -1,4 +1,4 @@
-"""The limits that the studies need while they solve, as SI floats; judging is done elsewhere."""
+"""The limits that the studies need while they solve, as SI floats; they judge nothing."""
 
 from dataclasses import dataclass
 
@@ -33,7 +33,7 @@ class StudyLimits:
     stage_dead_band: float  # ratio of the switch-up flow
 
     def preferred_region(self, specific_speed: float | None) -> tuple[float, float]:
-        """Return the preferred region of a pump of metric specific speed, as ratios of BEP flow."""
+        """Return the preferred region at a metric specific speed, as ratios of BEP flow."""
         if specific_speed is not None and specific_speed > self.high_specific_speed:
             return (
                 self.preferred_low_high_specific_speed,

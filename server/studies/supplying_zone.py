@@ -9,7 +9,8 @@ from server.studies.lowering.lowered import ZONE_EXPONENT
 
 PATH = "/supply/supplying_zone"
 FIELDS = (
-    "loss", "at_flow", "source_grade", "lowest_customer_level", "maximum_day", "peak_hour", "fire_flow",
+    "loss", "at_flow", "source_grade", "lowest_customer_level", "maximum_day", "peak_hour",
+    "fire_flow",
 )  # fmt: skip
 Check = Literal["peak_hour", "fire_there", "fire_here"]
 
@@ -36,7 +37,7 @@ def check_supplying_zone(
     Parameters
     ----------
     zone : SupplyingZone
-        The zone as entered; its loss is known at one flow and grows with flow to the power 1.852.
+        The zone as entered; its loss, known at one flow, grows with flow to the power 1.852.
     station_peak : float
         Largest draw of the station without a fire. [m3/s]
     station_fire : float or None

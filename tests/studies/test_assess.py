@@ -48,12 +48,17 @@ def test_station_with_all_mended_and_checked_holds() -> None:
     }  # fmt: skip
     steps = [put(f"/supply/supplying_zone/{name}", value) for name, value in zone.items()]
     station = edited(
-        *steps, put(LOW, q(0, "kPa")), put("/horizons/hz-0pn8ra/demand/minimum_night", q(5.2, "L/s"))
+        *steps,
+        put(LOW, q(0, "kPa")),
+        put("/horizons/hz-0pn8ra/demand/minimum_night", q(5.2, "L/s")),
     )
     assessment = assessed(station)
     assert assessment.holds is True
     said = assessment.lead("si")
-    assert said == "Set “Three mains, standby, jockey” holds every requirement that is judged to 2047."
+    assert (
+        said
+        == "Set “Three mains, standby, jockey” holds every requirement that is judged to 2047."
+    )
 
 
 def test_not_checked_requirement_leaves_it_open_whether_the_set_holds() -> None:

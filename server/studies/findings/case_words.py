@@ -1,4 +1,4 @@
-"""Cases in words: scenario, supply state, unit out; and in which other cases a finding stands."""
+"""Cases in words: scenario, supply state, unit out; and where else a finding stands."""
 
 from server.station.station import Station
 from server.studies.findings.judged_set import MADE
@@ -11,11 +11,20 @@ _MADE_TITLES = {
     "firm-peak_hour": "firm capacity, peak hour",
     "firm-maximum_day_fire": "firm capacity, maximum day and fire",
 }
-_COMMON_STARTS = ("Minimum", "Average", "Maximum", "Peak", "Shut-off", "Easiest", "Fire", "Night")
+_COMMON_STARTS = (
+    "Minimum",
+    "Average",
+    "Maximum",
+    "Peak",
+    "Shut-off",
+    "Easiest",
+    "Fire",
+    "Night",
+)
 
 
 def _within_sentence(title: str) -> str:
-    """Return a scenario's title as it stands inside a sentence; a proper name keeps its capital."""
+    """Return a scenario's title as inside a sentence; a proper name keeps its capital."""
     first = title.split(" ", 1)[0].rstrip(",")
     return title[:1].lower() + title[1:] if first in _COMMON_STARTS else title
 
@@ -27,7 +36,11 @@ def scenario_name(station: Station, case: Case) -> str:
         return _MADE_TITLES.get(made, made.replace("-", " ").replace("_", " "))
     for scenario in station.scenarios:
         if scenario.id == case.scenario:
-            return _within_sentence(scenario.title) if scenario.title else "a scenario without a name"
+            return (
+                _within_sentence(scenario.title)
+                if scenario.title
+                else "a scenario without a name"
+            )
     return case.scenario.replace("-", " ").replace("_", " ")
 
 
@@ -59,7 +72,7 @@ def horizon_title(station: Station, horizon_id: str) -> str:
 
 
 def also_words(station: Station, finding: Finding) -> str:
-    """Return in which other cases a finding stands: "; also in normal supply and 2 more scenarios"."""
+    """Return where else a finding stands: "; also in normal supply and 2 more scenarios"."""
     first = finding.governing
     if first is None or len(finding.cases) < 2:
         return ""

@@ -61,7 +61,8 @@ def _row(
     if criterion.quantity is not None:
         limit = Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals)
     if criterion.sense in ("setting", "stated") and not readings:
-        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because="a setting, judged elsewhere"
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit,
+                             because="a setting, judged elsewhere"
                              if criterion.sense == "setting" else criterion.source)  # fmt: skip
     if criterion.key in BY_FINDING:
         return _by_finding(criterion, limit, findings, pump_set)
@@ -94,17 +95,26 @@ def _by_finding(
     }.get(worst.severity, Verdict.MEETS)
     same = worst.provided is not None and worst.provided.dimension is criterion.dimension
     because = "by standby power" if worst.code == "station_off_relies_on_standby" else ""
-    return ComplianceRow(criterion, verdict, limit, worst.provided if same else None, worst.governing,
+    return ComplianceRow(criterion, verdict, limit, worst.provided if same else None,
+                         worst.governing,
                          worst.subject, because)  # fmt: skip
 
 
-def _unread(criterion: Criterion, limit: Amount | None, findings: list[Finding]) -> ComplianceRow:
+def _unread(
+    criterion: Criterion, limit: Amount | None, findings: list[Finding]
+) -> ComplianceRow:
     if criterion.quantity is None:
-        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, None, because="no limit in this profile")
+        return ComplianceRow(
+            criterion, Verdict.NOT_APPLICABLE, None, because="no limit in this profile"
+        )
     if criterion.key in NOT_COMPUTED:
-        return ComplianceRow(criterion, Verdict.NOT_CHECKED, limit, because=NOT_COMPUTED[criterion.key])
+        return ComplianceRow(
+            criterion, Verdict.NOT_CHECKED, limit, because=NOT_COMPUTED[criterion.key]
+        )
     if criterion.key == "vessel-connections-max":
-        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because="no vessel is entered")
+        return ComplianceRow(
+            criterion, Verdict.NOT_APPLICABLE, limit, because="no vessel is entered"
+        )
     narrow = criterion.key.endswith("-high-specific-speed")
     longer_fire = criterion.key.startswith("fire-duration-above")
     if narrow or longer_fire or criterion.key in NO_SUCH_CASE:

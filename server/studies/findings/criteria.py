@@ -38,7 +38,11 @@ def path_of(key: str) -> str:
 def _source(rule: Rule, typed: str, departs: bool) -> str:
     if not departs:
         return rule.source_words
-    return f"Typed for this station: {typed}" if typed else "Typed for this station, no source named"
+    return (
+        f"Typed for this station: {typed}"
+        if typed
+        else "Typed for this station, no source named"
+    )
 
 
 def criteria_of(station: Station) -> dict[str, Criterion]:
@@ -51,7 +55,8 @@ def criteria_of(station: Station) -> dict[str, Criterion]:
         typed = row.limit if row is not None and rule.sense != "stated" else None
         quantity = typed if typed is not None else profile
         departs = typed is not None and (
-            profile is None or not math.isclose(typed.si, profile.si, rel_tol=1e-9, abs_tol=1e-12)
+            profile is None
+            or not math.isclose(typed.si, profile.si, rel_tol=1e-9, abs_tol=1e-12)
         )
         said = row.source.text if row is not None and row.source is not None else ""
         if not said and typed is not None and typed.source is not None:

@@ -10,9 +10,11 @@ from server.station.entry import Sheet
 class FindingCode:
     """One kind of finding.
 
-    `sentence` and `variants` are templates: {provided} and {required} are the finding's amounts,
-    other names its further amounts and words, {case} the governing case. A variant is chosen by the
-    finding's word "state". `required` tells whether "holds" waits for it while it is not checked.
+    `sentence` and `variants` are templates: {provided} and {required} are the finding's
+    amounts, other names its further amounts and words, {case} the governing case. A variant is
+    chosen by the
+    finding's word "state". `required` tells whether "holds" waits for it while it is not '
+           'checked.
     """
 
     code: str
@@ -24,7 +26,13 @@ class FindingCode:
 
 
 def code(
-    name: str, short: str, sheet: Sheet, sentence: str, *, required: bool = True, **variants: str
+    name: str,
+    short: str,
+    sheet: Sheet,
+    sentence: str,
+    *,
+    required: bool = True,
+    **variants: str,
 ) -> FindingCode:
     """Make a finding code; a variant's name may use _ for - ."""
     return FindingCode(

@@ -95,5 +95,10 @@ def _once(findings: list[Finding]) -> list[Finding]:
 def _in_order(findings: list[Finding]) -> list[Finding]:
     return sorted(
         findings,
-        key=lambda f: (SEVERITY_ORDER.index(f.severity), order_of(f.code), f.pump_set or "", f.subject),
+        key=lambda f: (
+            SEVERITY_ORDER.index(f.severity),
+            order_of(f.code),
+            f.pump_set or "",
+            f.subject,
+        ),
     )

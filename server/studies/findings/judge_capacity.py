@@ -12,6 +12,10 @@ from server.studies.findings.reading import Reading, broken
 from server.studies.shapes import Case, Finding, Path, Severity
 from server.units import Dimension as D
 
+_OFF_CODES = {
+    Severity.STOP: "station_off",
+    Severity.NOT_CHECKED: "station_off_not_checked",
+}
 FIRM_CODES = {"peak_hour": "firm_peak_hour_short", "maximum_day_fire": "firm_fire_short"}
 
 
@@ -25,7 +29,7 @@ def judge_capacity(
     judged : JudgedSet
         The set.
     suction : list of Reading
-        Readings of the suction side: a capacity that falls short for the same reason is told there.
+        Readings of the suction side: a capacity short for the same reason is told there.
     """
     told = any(broken(reading) and reading.code.startswith("suction_") for reading in suction)
     readings = [firm_reading(judged, firm, told) for firm in judged.result.made.firm_capacity]
@@ -36,7 +40,9 @@ def judge_capacity(
 
 def firm_case(judged: JudgedSet, firm: FirmCapacity) -> Case:
     """Return the case in which a firm capacity is found."""
-    return Case(f"made:firm-{firm.requirement}", judged.id, firm.horizon, "low", "aged", firm.unit_out)
+    return Case(
+        f"made:firm-{firm.requirement}", judged.id, firm.horizon, "low", "aged", firm.unit_out
+    )
 
 
 def firm_reading(judged: JudgedSet, firm: FirmCapacity, told: bool) -> Reading:
@@ -110,23 +116,20 @@ def _station_off(judged: JudgedSet, off: StationOff) -> Iterator[Finding]:
     path = f"{judged.path}/standby_power"
     drains = bool(off.drains[worst, p])
     severity, mend, because = _standby(judged, path)
+    pressure, transfer = float(off.arithmetic_pressure[worst, p]), standby.transfer_time
     dry = sum(1 for i in low if bool(off.drains[i, served].any()))
     yield Finding(
-        code={Severity.STOP: "station_off", Severity.NOT_CHECKED: "station_off_not_checked"}.get(
-            severity, "station_off_relies_on_standby"
-        ),
+        code=_OFF_CODES.get(severity, "station_off_relies_on_standby"),
         severity=severity, subject="/zone", pump_set=judged.id,
         criterion=judged.criterion("station-off-pressure-min"), governing=_off_case(off, worst),
         cases=tuple(dict.fromkeys(_off_case(off, i) for i in low)),
         # a figure below a vacuum is no pressure: it is not carried further
-        provided=amount("pressure", None if drains else float(off.arithmetic_pressure[worst, p]),
-                        D.PRESSURE, 0),
+        provided=amount("pressure", None if drains else pressure, D.PRESSURE, 0),
         required=amount("required", limit, D.PRESSURE),
-        others=(amount("transfer", None if standby.transfer_time is None else standby.transfer_time.si,
-                       D.TIME),),
+        others=(amount("transfer", None if transfer is None else transfer.si, D.TIME),),
         names=(("point", judged.points[p].title), ("set", judged.title),
                ("carries", standby.carries), ("kind", standby.kind or ""),
-               ("water", "none" if drains else "below" if pressures[worst].min() < 0 else "low"),
+               ("water", "none" if drains else "below" if pressure < 0 else "low"),
                ("dry", str(dry)), ("number", str(len(low))), ("path", off.path)),
         basis="station-off-pressure-min", mend=mend, because=because,
     )  # fmt: skip

@@ -1,4 +1,4 @@
-"""What the control does: set point held or not, speed limits, speed as a signal, trips reached."""
+"""What the control does: set point held or not, speed as a signal, trips reached."""
 
 from collections.abc import Iterator
 
@@ -23,7 +23,12 @@ def judge_control(
     failing : frozenset of Case
         Cases in which a requirement of pressure is not met: that finding says it already.
     """
-    readings = [*_trips(judged), *_speed_range(judged), *_night_span(judged), *_steepness(judged)]
+    readings = [
+        *_trips(judged),
+        *_speed_range(judged),
+        *_night_span(judged),
+        *_steepness(judged),
+    ]
     return readings, [*_not_held(judged, failing), *_limiter(judged)]
 
 
@@ -55,12 +60,17 @@ def _not_held(judged: JudgedSet, failing: frozenset[Case]) -> Iterator[Finding]:
             required=amount("set_point", result.set_point, D.PRESSURE),
             others=(amount("speed", float(np.nanmax(result.speed[c, k])), D.RATIO, 1),),
             names=(("set", judged.title), ("held", _held_words(judged))), basis="physics",
-            mend=(f"{control}/lowest_speed",) if low else (f"{control}/pressure", f"{control}/highest_speed"),
+            mend=(f"{control}/lowest_speed",) if low else (f"{control}/pressure",
+                                                           f"{control}/highest_speed"),
         )  # fmt: skip
 
 
 def _held_words(judged: JudgedSet) -> str:
-    return judged.points[judged.held_index].title if judged.held_index >= 0 else "the discharge gauge"
+    return (
+        judged.points[judged.held_index].title
+        if judged.held_index >= 0
+        else "the discharge gauge"
+    )
 
 
 def _trips(judged: JudgedSet) -> Iterator[Reading]:
@@ -68,8 +78,18 @@ def _trips(judged: JudgedSet) -> Iterator[Reading]:
     trips, result = judged.entered.trips, judged.result
     for c, k in judged.stated:
         for field, quantity, pressure, sense in (
-            ("low_suction_trip", trips.low_suction_trip, result.suction_pressure[c], "at_least"),
-            ("high_discharge_trip", trips.high_discharge_trip, result.discharge_pressure[c, k], "at_most"),
+            (
+                "low_suction_trip",
+                trips.low_suction_trip,
+                result.suction_pressure[c],
+                "at_least",
+            ),
+            (
+                "high_discharge_trip",
+                trips.high_discharge_trip,
+                result.discharge_pressure[c, k],
+                "at_most",
+            ),
         ):
             if quantity is None:
                 continue
@@ -80,7 +100,8 @@ def _trips(judged: JudgedSet) -> Iterator[Reading]:
                 provided=amount("pressure", float(pressure), D.PRESSURE, 0),
                 required=amount("trip", quantity.si, D.PRESSURE),
                 sense="at_least" if sense == "at_least" else "at_most", mend=(path,),
-                names=(("set", judged.title), ("side", "suction" if sense == "at_least" else "discharge")),
+                names=(("set", judged.title),
+                       ("side", "suction" if sense == "at_least" else "discharge")),
             )  # fmt: skip
 
 
@@ -97,7 +118,8 @@ def _limiter(judged: JudgedSet) -> Iterator[Finding]:
             code="limiter_not_computed", severity=Severity.NOT_CHECKED, subject=path,
             pump_set=judged.id, governing=judged.case(worst),
             cases=tuple(judged.case(c) for c in acting),
-            provided=amount("pressure", float(judged.result.suction_pressure[worst]), D.PRESSURE, 0),
+            provided=amount("pressure", float(judged.result.suction_pressure[worst]),
+                            D.PRESSURE, 0),
             required=amount("limiter", level.si, D.PRESSURE), names=(("set", judged.title),),
             basis="physics", mend=(path,), because="not_in_this_version",
         )  # fmt: skip
@@ -107,14 +129,29 @@ def _speed_range(judged: JudgedSet) -> Iterator[Reading]:
     """Yield the typed speeds against the range of the criteria."""
     control = f"{judged.path}/control"
     for field, code, key, value, sense in (
-        ("lowest_speed", "lowest_speed_low", "speed-lowest", judged.result.lowest_speed, "at_least"),
-        ("highest_speed", "highest_speed_high", "speed-highest", judged.result.highest_speed, "at_most"),
+        (
+            "lowest_speed",
+            "lowest_speed_low",
+            "speed-lowest",
+            judged.result.lowest_speed,
+            "at_least",
+        ),
+        (
+            "highest_speed",
+            "highest_speed_high",
+            "speed-highest",
+            judged.result.highest_speed,
+            "at_most",
+        ),
     ):
         yield Reading(
-            code=code, severity=Severity.CAUTION, subject=f"{control}/{field}", pump_set=judged.id,
-            criterion=judged.criterion(key), case=None, provided=amount("speed", value, D.RATIO, 0),
+            code=code, severity=Severity.CAUTION, subject=f"{control}/{field}",
+            pump_set=judged.id,
+            criterion=judged.criterion(key), case=None,
+            provided=amount("speed", value, D.RATIO, 0),
             required=amount("required", judged.limit(key), D.RATIO, 0),
-            sense="at_least" if sense == "at_least" else "at_most", mend=(f"{control}/{field}",),
+            sense="at_least" if sense == "at_least" else "at_most",
+            mend=(f"{control}/{field}",),
             names=(("set", judged.title),), at_limit_share=0.0,
         )  # fmt: skip
 
@@ -132,10 +169,13 @@ def _night_span(judged: JudgedSet) -> Iterator[Reading]:
         n = running[0]
         speed = float(result.speed[c, k, n])
         yield Reading(
-            code="speed_cannot_tell_night", severity=Severity.CAUTION, subject=judged.slot_path(n),
-            pump_set=judged.id, criterion=judged.criterion("speed-span-min"), case=judged.case(c),
+            code="speed_cannot_tell_night", severity=Severity.CAUTION,
+            subject=judged.slot_path(n),
+            pump_set=judged.id, criterion=judged.criterion("speed-span-min"),
+            case=judged.case(c),
             provided=amount("span", speed - zero, D.RATIO, 1),
-            required=amount("required", judged.limit("speed-span-min"), D.RATIO, 0), sense="at_least",
+            required=amount("required", judged.limit("speed-span-min"), D.RATIO, 0),
+            sense="at_least",
             others=(amount("zero", zero, D.RATIO, 1), amount("speed", speed, D.RATIO, 1),
                     amount("flow", float(result.flow[c, k]), D.FLOW)),
             mend=(_demand_field(judged, c), f"{judged.curve_path(n)}/table"),
@@ -171,4 +211,6 @@ def _steepness(judged: JudgedSet) -> Iterator[Reading]:
 
 
 def _tables(judged: JudgedSet) -> tuple[Path, ...]:
-    return tuple(dict.fromkeys(f"{judged.curve_path(n)}/table" for n in range(len(judged.slots))))
+    return tuple(
+        dict.fromkeys(f"{judged.curve_path(n)}/table" for n in range(len(judged.slots)))
+    )

@@ -2,17 +2,22 @@
 
 from collections.abc import Iterable, Iterator
 
-from server.station.entry import Quantity, Record
+from server.station.entry import Quantity
 from server.station.pump_set import PumpSet
 from server.station.station import Station
 from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.findings.criteria import Criterion
+from server.studies.findings.judge_defaults import (
+    DEFAULT_USED,
+    default_used,
+    judge_defaults,
+    judge_departures,
+)
 from server.studies.findings.judged_set import amount
 from server.studies.findings.reading import Reading
 from server.studies.shapes import Finding, Path, Severity
 from server.units import Dimension as D
 
-DEFAULT_USED = "default_used"
 NOT_IN_THIS_VERSION = "not_in_this_version"
 DEMANDS = (
     ("minimum_night", "minimum night"), ("average_day", "average day"),
@@ -34,7 +39,9 @@ def judge_missing(results: dict[str, DutyResult | NotSolved]) -> Iterator[Findin
             if (path, reason) in seen:
                 continue
             seen.add((path, reason))
-            yield _missing(path, reason, stops, set_id if path.startswith(f"/sets/{set_id}") else None)
+            yield _missing(
+                path, reason, stops, set_id if path.startswith(f"/sets/{set_id}") else None
+            )
 
 
 def _missing(path: Path, reason: str, stops: bool, set_id: str | None) -> Finding:
@@ -50,18 +57,13 @@ def _missing(path: Path, reason: str, stops: bool, set_id: str | None) -> Findin
     )  # fmt: skip
 
 
-def default_used(path: Path, said: str = "") -> Finding:
-    """Return the note that a default stands in at `path`."""
-    return Finding(
-        code="default_used", severity=Severity.NOTE, subject=path, pump_set=None,
-        names=(("said", said),), basis="common_practice", mend=(path,), because=DEFAULT_USED,
-    )  # fmt: skip
-
-
-def judge_inputs(station: Station, criteria: dict[str, Criterion]) -> tuple[list[Reading], list[Finding]]:
+def judge_inputs(
+    station: Station, criteria: dict[str, Criterion]
+) -> tuple[list[Reading], list[Finding]]:
     """Return what the document shows without a study."""
     findings = [
-        *_defaults(station), *_departures(criteria), *_empty(station), *_scenarios(station),
+        *judge_defaults(station), *judge_departures(criteria), *_empty(station),
+        *_scenarios(station),
         *_demands(station), *_points(station), *_under_criteria(station, criteria),
     ]  # fmt: skip
     findings.extend(_missing(path, "absent", False, None) for path in _unasked(station))
@@ -71,7 +73,8 @@ def judge_inputs(station: Station, criteria: dict[str, Criterion]) -> tuple[list
     return list(_fires(station, criteria)), findings
 
 
-def _not_checked(code: str, path: Path, names: tuple[tuple[str, str], ...] = (), set_id: str | None = None,
+def _not_checked(code: str, path: Path, names: tuple[tuple[str, str], ...] = (),
+                 set_id: str | None = None,
                  subject: Path | None = None) -> Finding:  # fmt: skip
     return Finding(
         code=code, severity=Severity.NOT_CHECKED, subject=subject or path, pump_set=set_id,
@@ -101,73 +104,19 @@ def _empty(station: Station) -> Iterator[Finding]:
     """Yield the parts of an unfinished station that no study can name, for want of a set."""
     if not station.sets:
         for path, present in (
-            ("/supply/kind", station.supply.kind), ("/suction_line/reaches", station.suction_line.reaches),
-            ("/discharge_main/reaches", station.discharge_main.reaches), ("/zone/kind", station.zone.kind),
+            ("/supply/kind", station.supply.kind),
+            ("/suction_line/reaches", station.suction_line.reaches),
+            ("/discharge_main/reaches", station.discharge_main.reaches),
+            ("/zone/kind", station.zone.kind),
             ("/zone/points", station.zone.points), ("/horizons", station.horizons),
-            ("/scenarios", station.scenarios), ("/pumps", station.pumps), ("/legs", station.legs),
+            ("/scenarios", station.scenarios), ("/pumps", station.pumps),
+            ("/legs", station.legs),
             ("/sets", station.sets),
         ):  # fmt: skip
             if not present:
                 yield _missing(path, "absent", True, None)
     elif station.proposed_set is None:
         yield _not_checked("proposed_set_missing", "/proposed_set")
-
-
-def _walk(record: Record, path: Path) -> Iterator[tuple[Path, Quantity]]:
-    """Yield every quantity of a record with its path."""
-    for name in type(record).model_fields:
-        value = getattr(record, name)
-        if isinstance(value, Quantity):
-            yield f"{path}/{name}", value
-        elif isinstance(value, Record):
-            yield from _walk(value, f"{path}/{name}")
-        elif isinstance(value, tuple):
-            for item in value:
-                if isinstance(item, Record) and hasattr(item, "id"):
-                    yield from _walk(item, f"{path}/{name}/{item.id}")
-
-
-def _defaults(station: Station) -> Iterator[Finding]:
-    """Yield the defaults that stand in: typed by the user's action, or used for an empty field."""
-    for path, quantity in _walk(station, ""):
-        if quantity.source is not None and quantity.source.kind == "default":
-            yield default_used(path, quantity.source.text)
-    for pump in station.pumps:
-        if pump.npsh_exponent is None:
-            yield default_used(f"/pumps/{pump.id}/npsh_exponent", "2")
-        if pump.minimum_flow is None:
-            yield default_used(f"/pumps/{pump.id}/minimum_flow", "the criteria row")
-    for each in station.sets:
-        for name in ("lowest_speed", "highest_speed"):
-            if each.control.kind is not None and getattr(each.control, name) is None:
-                yield default_used(f"/sets/{each.id}/control/{name}", "the criteria row")
-    for leg in station.legs:
-        if leg.discharge_branch.full_open_velocity is None:
-            yield default_used(f"/legs/{leg.id}/discharge_branch/full_open_velocity", "1.5 m/s")
-    if station.fires:
-        for point in station.zone.points:
-            if point.fire_share is None:
-                yield default_used(f"/zone/points/{point.id}/fire_share", "1, on the safe side")
-
-
-def _departures(criteria: dict[str, Criterion]) -> Iterator[Finding]:
-    """Yield every criterion that departs from its profile, with or without a reason."""
-    for criterion in criteria.values():
-        if not criterion.departs:
-            continue
-        reasoned = bool(criterion.reason)
-        profile = criterion.profile
-        yield Finding(
-            code="criterion_departs" if reasoned else "departure_without_reason",
-            severity=Severity.NOTE if reasoned else Severity.CAUTION,
-            subject=criterion.path, pump_set=None, criterion=criterion.path,
-            provided=amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals),
-            required=amount("profile", None if profile is None else profile.si, criterion.dimension,
-                            criterion.rule.decimals),
-            names=(("rule", criterion.title), ("reason", criterion.reason)), basis=criterion.key,
-            mend=(f"{criterion.path}/{'limit' if reasoned else 'reason'}",
-                  f"{criterion.path}/{'reason' if reasoned else 'limit'}"),
-        )  # fmt: skip
 
 
 def _scenarios(station: Station) -> Iterator[Finding]:
@@ -180,19 +129,25 @@ def _scenarios(station: Station) -> Iterator[Finding]:
             yield _not_checked("horizon_without_year", f"/horizons/{horizon.id}/year", names)
         for demand, words in DEMANDS:
             if not any(scenario.demand == demand and scenario.fire is None for scenario in own):
-                yield _not_checked("scenario_missing", _scenario_field(station, horizon.id, demand),
-                                   (*names, ("demand", words)),
-                                   subject=f"/horizons/{horizon.id}/demand/{demand}")  # fmt: skip
+                yield _not_checked(
+                    "scenario_missing",
+                    _scenario_field(station, horizon.id, demand),
+                    (*names, ("demand", words)),
+                    subject=f"/horizons/{horizon.id}/demand/{demand}",
+                )
         if station.fires and not any(scenario.fire is not None for scenario in own):
-            yield _not_checked("fire_scenario_missing", _scenario_field(station, horizon.id, None), names,
+            yield _not_checked("fire_scenario_missing",
+                               _scenario_field(station, horizon.id, None), names,
                                subject=f"/horizons/{horizon.id}")  # fmt: skip
 
 
 def _scenario_field(station: Station, horizon: str, demand: str | None) -> Path:
     """Return the switch of a scenario that is left out, or the list that wants one."""
     for scenario in station.scenarios:
-        of_kind = scenario.fire is not None if demand is None else (
-            scenario.demand == demand and scenario.fire is None
+        of_kind = (
+            scenario.fire is not None
+            if demand is None
+            else (scenario.demand == demand and scenario.fire is None)
         )
         if scenario.horizon == horizon and of_kind and not scenario.on:
             return f"/scenarios/{scenario.id}/on"
@@ -207,18 +162,23 @@ def _demands(station: Station) -> Iterator[Finding]:
         night = horizon.demand.minimum_night
         if night is not None and night.si == 0:
             yield Finding(
-                code="minimum_night_zero", severity=Severity.CAUTION, subject=f"{base}/minimum_night",
+                code="minimum_night_zero", severity=Severity.CAUTION,
+                subject=f"{base}/minimum_night",
                 pump_set=None, names=names, basis="physics", mend=(f"{base}/minimum_night",),
             )  # fmt: skip
         entered = [(name, words, q.si) for name, words in DEMANDS
                    if (q := getattr(horizon.demand, name)) is not None]  # fmt: skip
-        for (lower, lower_words, below), (_, upper_words, above) in zip(entered, entered[1:], strict=False):
+        for (lower, lower_words, below), (_, upper_words, above) in zip(
+            entered, entered[1:], strict=False
+        ):
             if below > above:
                 yield Finding(
-                    code="demands_out_of_order", severity=Severity.CAUTION, subject=f"{base}/{lower}",
+                    code="demands_out_of_order", severity=Severity.CAUTION,
+                    subject=f"{base}/{lower}",
                     pump_set=None, provided=amount("below", below, D.FLOW),
                     required=amount("above", above, D.FLOW),
-                    names=(*names, ("lower", lower_words), ("upper", upper_words)), basis="physics",
+                    names=(*names, ("lower", lower_words), ("upper", upper_words)),
+                    basis="physics",
                     mend=(f"{base}/{lower}",),
                 )  # fmt: skip
 
@@ -231,7 +191,10 @@ def _points(station: Station) -> Iterator[Finding]:
                    key=lambda p: 0.0 if p.elevation is None else p.elevation.si)  # fmt: skip
     if not station.zone.points:
         return
-    for role, code, place in (("critical", "no_critical_point", -1), ("lowest", "no_lowest_point", 0)):
+    for role, code, place in (
+        ("critical", "no_critical_point", -1),
+        ("lowest", "no_lowest_point", 0),
+    ):
         if role not in roles:
             path = f"/zone/points/{known[place].id}/role" if known else "/zone/points"
             yield _not_checked(code, path, subject="/zone/points")
@@ -250,12 +213,16 @@ def _under_criteria(station: Station, criteria: dict[str, Criterion]) -> Iterato
             typed, limit = getattr(point, field), criteria[key].si
             if typed is None or limit is None:
                 continue
-            weaker = typed.si < limit - 1e-6 * limit if least else typed.si > limit + 1e-6 * limit
+            weaker = (
+                typed.si < limit - 1e-6 * limit if least else typed.si > limit + 1e-6 * limit
+            )
             if weaker:
                 path = f"/zone/points/{point.id}/{field}"
                 yield Finding(
-                    code="point_asks_less", severity=Severity.CAUTION, subject=path, pump_set=None,
-                    criterion=criteria[key].path, provided=amount("typed", typed.si, D.PRESSURE),
+                    code="point_asks_less", severity=Severity.CAUTION, subject=path,
+                    pump_set=None,
+                    criterion=criteria[key].path,
+                    provided=amount("typed", typed.si, D.PRESSURE),
                     required=amount("required", limit, D.PRESSURE),
                     names=(("point", point.title), ("rule", criteria[key].title)), basis=key,
                     mend=(path, f"{criteria[key].path}/limit"),
@@ -269,10 +236,16 @@ def _protections(each: PumpSet) -> Iterator[Finding]:
         ("low_suction_trip", trips.low_suction_trip, True),
         ("low_suction_delay", trips.low_suction_delay, trips.low_suction_trip is not None),
         ("high_discharge_trip", trips.high_discharge_trip, True),
-        ("high_discharge_delay", trips.high_discharge_delay, trips.high_discharge_trip is not None),
+        (
+            "high_discharge_delay",
+            trips.high_discharge_delay,
+            trips.high_discharge_trip is not None,
+        ),
     ):
         if value is None and needed:
-            yield _not_checked("protection_missing", f"{base}/{field}", (("set", each.title),), each.id)
+            yield _not_checked(
+                "protection_missing", f"{base}/{field}", (("set", each.title),), each.id
+            )
 
 
 def _ratings(station: Station, each: PumpSet) -> Iterator[Finding]:
@@ -280,30 +253,39 @@ def _ratings(station: Station, each: PumpSet) -> Iterator[Finding]:
     used = {slot.pump for slot in each.slots}
     for pump in station.pumps:
         if pump.id in used and pump.rating is None:
-            yield _not_checked("rating_missing", f"/pumps/{pump.id}/rating", (("part", pump.title),), each.id)
+            yield _not_checked(
+                "rating_missing", f"/pumps/{pump.id}/rating", (("part", pump.title),), each.id
+            )
     if each.slots and each.flange_rating is None:
         yield _not_checked("rating_missing", f"/sets/{each.id}/flange_rating",
                            (("part", "the manifold"),), each.id)  # fmt: skip
     for reach in station.discharge_main.reaches:
         if reach.rating is None:
             yield _not_checked("rating_missing", f"/discharge_main/reaches/{reach.id}/rating",
-                               (("part", reach.title or "the discharge main"),), each.id)  # fmt: skip
+                               (("part", reach.title or "the discharge main"),),
+                               each.id)  # fmt: skip
 
 
 def _fires(station: Station, criteria: dict[str, Criterion]) -> Iterator[Reading]:
-    """Yield the duration of each fire against the criteria, which grow with the flow in the US."""
+    """Yield the duration of each fire; in the US what is asked grows with the flow."""
     for fire in station.fires:
         if fire.duration is None:
             continue
         key = "fire-duration-min"
         for other, above in (
-            ("fire-duration-above-2500-gpm-min", 2500.0), ("fire-duration-above-3500-gpm-min", 3500.0),
+            ("fire-duration-above-2500-gpm-min", 2500.0),
+            ("fire-duration-above-3500-gpm-min", 3500.0),
         ):  # fmt: skip
             flow = Quantity(value=above, unit="gpm_us").si
-            if criteria[other].si is not None and fire.flow is not None and fire.flow.si > flow * (1 + 1e-9):
+            if (
+                criteria[other].si is not None
+                and fire.flow is not None
+                and fire.flow.si > flow * (1 + 1e-9)
+            ):
                 key = other
         yield Reading(
-            code="fire_duration_short", severity=Severity.FAIL, subject=f"/fires/{fire.id}/duration",
+            code="fire_duration_short", severity=Severity.FAIL,
+            subject=f"/fires/{fire.id}/duration",
             pump_set=None, criterion=criteria[key].path, case=None,
             provided=amount("duration", fire.duration.si, D.TIME, 0),
             required=amount("required", criteria[key].si, D.TIME, 0), sense="at_least",

@@ -10,7 +10,7 @@ from server.studies.findings.reading import Reading
 from server.studies.shapes import Case, Finding, Path, Severity
 from server.units import Dimension as D
 
-# Hazen-Williams is an empirical fit: outside these the loss is not to be trusted (method, section 3)
+# Hazen-Williams is an empirical fit: outside these the loss is not to be trusted
 HAZEN_WILLIAMS_BORE = (0.050, 1.850)  # [m]
 HAZEN_WILLIAMS_VELOCITY = 3.0  # [m/s]
 HAZEN_WILLIAMS_C = 100.0
@@ -43,7 +43,8 @@ def _lines(judged: JudgedSet) -> Iterator[Reading]:
             path = f"/suction_line/reaches/{reach.id}"
             yield _velocity(judged, "suction_line_fast", "suction-line-velocity-max", path,
                             reach.title or "the suction line", judged.case(c),
-                            float(result.suction_line_velocity[c, r]), f"{path}/bore")  # fmt: skip
+                            float(result.suction_line_velocity[c, r]),
+                            f"{path}/bore")  # fmt: skip
         fire = bool(result.is_fire[c])
         for r, reach in enumerate(station.discharge_main.reaches):
             path = f"/discharge_main/reaches/{reach.id}"
@@ -62,7 +63,8 @@ def _branches(judged: JudgedSet) -> Iterator[Reading]:
                 ("suction", result.suction_branch_velocity),
                 ("discharge", result.discharge_branch_velocity),
             ):
-                yield _velocity(judged, f"{side}_branch_fast", f"{side}-branch-velocity-max", leg,
+                yield _velocity(judged, f"{side}_branch_fast", f"{side}-branch-velocity-max",
+                                leg,
                                 title, judged.case(c), float(velocity[c, k, n]),
                                 f"{leg}/{side}_branch/bore")  # fmt: skip
 
@@ -101,7 +103,8 @@ def _hazen_williams(judged: JudgedSet) -> Iterator[Finding]:
                     code="friction_law_out_of_range", severity=Severity.CAUTION, subject=path,
                     pump_set=judged.id, provided=amount("velocity", fastest, D.SPEED),
                     required=amount("bore", reach.bore.si, D.BORE),
-                    names=(("part", reach.title), ("state", why), ("set", judged.title)), basis="physics",
+                    names=(("part", reach.title), ("state", why), ("set", judged.title)),
+                    basis="physics",
                     mend=(f"{path}/roughness/law",),
                 )  # fmt: skip
 
@@ -109,7 +112,8 @@ def _hazen_williams(judged: JudgedSet) -> Iterator[Finding]:
 def _outside_law(reach: Reach, fastest: float) -> str:
     bore = 0.0 if reach.bore is None else reach.bore.si
     lowest_c = min(
-        (c for c in (reach.roughness.coefficient_new, reach.roughness.coefficient_aged) if c is not None),
+        (c for c in (reach.roughness.coefficient_new,
+                     reach.roughness.coefficient_aged) if c is not None),
         default=HAZEN_WILLIAMS_C,
     )  # fmt: skip
     if not HAZEN_WILLIAMS_BORE[0] <= bore <= HAZEN_WILLIAMS_BORE[1]:
@@ -120,7 +124,7 @@ def _outside_law(reach: Reach, fastest: float) -> str:
 
 
 def _check_valves(judged: JudgedSet) -> Iterator[Finding]:
-    """Yield the legs whose check valve is not fully open in some case: its loss is then larger."""
+    """Yield the legs whose check valve is not fully open somewhere: it loses more then."""
     slowest: dict[int, list[tuple[float, int, int]]] = {}
     for c, k in judged.stated:
         for n in judged.running(c, k):
@@ -148,5 +152,6 @@ def _check_valves(judged: JudgedSet) -> Iterator[Finding]:
             required=amount("required", needed, D.SPEED),
             names=(("part", leg.title), ("state", "assumed" if typed is None else ""),
                    ("set", judged.title)), basis="physics",
-            mend=(f"{path}/discharge_branch/full_open_velocity", f"{path}/discharge_branch/bore"),
+            mend=(f"{path}/discharge_branch/full_open_velocity",
+                  f"{path}/discharge_branch/bore"),
         )  # fmt: skip

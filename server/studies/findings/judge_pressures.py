@@ -1,4 +1,4 @@
-"""Pressures at the named points against what is required there, and at shut-off against ratings."""
+"""Pressures at the named points against what is required, at shut-off against ratings."""
 
 from collections.abc import Iterator
 
@@ -43,18 +43,22 @@ def _in_case(judged: JudgedSet, c: int, k: int, p: int, pressure: float) -> Iter
     if result.is_fire[c]:
         if int(result.fire_point[c]) == p:
             yield _reading(judged, "hydrant_residual_low", "hydrant-residual-min", p, pressure,
-                           point.residual_pressure, "at_least", judged.case(c), raising)  # fmt: skip
+                           point.residual_pressure, "at_least", judged.case(c),
+                           raising)  # fmt: skip
         else:
             yield _reading(judged, "fire_pressure_low", "fire-pressure-min", p, pressure,
-                           point.fire_pressure, "at_least", judged.case(c), raising)  # fmt: skip
-        yield _reading(judged, "pressure_high_in_fire", "service-pressure-max-abnormal", p, pressure,
+                           point.fire_pressure, "at_least", judged.case(c),
+                           raising)  # fmt: skip
+        yield _reading(judged, "pressure_high_in_fire", "service-pressure-max-abnormal", p,
+                       pressure,
                        point.highest_pressure_abnormal, "at_most", judged.case(c),
                        (f"{judged.path}/control/pressure",))  # fmt: skip
         return
     if point.role != "hydrant" or point.required_pressure is not None:
         held = p == judged.held_index and bool(result.set_point_held[c, k])
         yield _reading(judged, "pressure_low", "service-pressure-min", p, pressure,
-                       point.required_pressure, "at_least", judged.case(c), raising, held)  # fmt: skip
+                       point.required_pressure, "at_least", judged.case(c), raising,
+                       held)  # fmt: skip
     yield _reading(judged, "pressure_high", "service-pressure-max", p, pressure,
                    point.highest_pressure, "at_most", judged.case(c),
                    (f"{judged.path}/control/pressure",))  # fmt: skip
@@ -102,7 +106,8 @@ def _at_no_flow(judged: JudgedSet) -> Iterator[Reading]:
     for s in range(len(SUPPLY_STATES)):
         for p, point in enumerate(judged.points):
             yield _reading(judged, "pressure_high", "service-pressure-max", p,
-                           float(zero.point_pressure_held[s, p]), point.highest_pressure, "at_most",
+                           float(zero.point_pressure_held[s, p]), point.highest_pressure,
+                           "at_most",
                            judged.made_case("no-flow-held", s),
                            (f"{judged.path}/control/pressure",))  # fmt: skip
             yield _shut_off(judged, s, p, float(largest[s, p]), float(gauge[s]))
@@ -141,7 +146,10 @@ def _shut_off(judged: JudgedSet, s: int, p: int, pressure: float, gauge: float) 
 
 
 def _with_protection(
-    judged: JudgedSet, reading: Reading, gauge: float, protection: tuple[str, float, Path] | None
+    judged: JudgedSet,
+    reading: Reading,
+    gauge: float,
+    protection: tuple[str, float, Path] | None,
 ) -> Reading:
     delay = judged.entered.trips.high_discharge_delay
     others = [amount("gauge", gauge, D.PRESSURE, 0)]
@@ -159,17 +167,22 @@ def _ratings(judged: JudgedSet, s: int, gauge: float) -> Iterator[Reading]:
         if pump.id in used and pump.rating is not None:
             rated.append((f"/pumps/{pump.id}/rating", pump.title, pump.rating.si))
     if judged.entered.flange_rating is not None:
-        rated.append((f"{judged.path}/flange_rating", "the manifold", judged.entered.flange_rating.si))
+        rated.append(
+            (f"{judged.path}/flange_rating", "the manifold", judged.entered.flange_rating.si)
+        )
     for reach in judged.station.discharge_main.reaches:
         if reach.rating is not None:
-            rated.append((f"/discharge_main/reaches/{reach.id}/rating", reach.title, reach.rating.si))
+            rated.append(
+                (f"/discharge_main/reaches/{reach.id}/rating", reach.title, reach.rating.si)
+            )
     for path, title, rating in rated:
         protection = _protection(judged, rating)
         reading = Reading(
             code="rating_exceeded",
             severity=Severity.STOP if protection is None else Severity.CAUTION,
             subject=path, pump_set=judged.id, criterion=judged.criterion("pressure-rating"),
-            case=judged.made_case("shut-off", s), provided=amount("pressure", gauge, D.PRESSURE, 0),
+            case=judged.made_case("shut-off", s),
+            provided=amount("pressure", gauge, D.PRESSURE, 0),
             required=amount("required", rating, D.PRESSURE), sense="at_most",
             mend=(path, f"{judged.path}/control/highest_speed",
                   f"{judged.path}/trips/high_discharge_trip"),

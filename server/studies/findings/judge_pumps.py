@@ -63,7 +63,8 @@ def _shape(judged: JudgedSet, n: int, path: Path) -> Iterator[Reading]:
             ("shutoff_rise_large", "shutoff-rise-max", False),
         ):
             yield _reading(judged, n, code, Severity.CAUTION, key, rise,
-                           amount("required", judged.limit(key), D.RATIO, 0), at_least, table, path)  # fmt: skip
+                           amount("required", judged.limit(key), D.RATIO, 0), at_least, table,
+                           path)  # fmt: skip
     if slot.best_efficiency_flow:
         yield _reading(judged, n, "last_row_short", Severity.CAUTION, "curve-last-row-min",
                        amount("last", slot.last_flow / slot.best_efficiency_flow, D.RATIO, 0),
@@ -79,19 +80,22 @@ def _motor(judged: JudgedSet, n: int) -> Iterator[Reading]:
     share = judged.limit("motor-load-max")
     yield _reading(judged, n, "motor_overloaded", Severity.FAIL, "motor-load-max",
                    amount("power", slot.largest_shaft_power, D.POWER),
-                   amount("motor", slot.motor_power * share, D.POWER), False, (field,), field)  # fmt: skip
+                   amount("motor", slot.motor_power * share, D.POWER), False, (field,),
+                   field)  # fmt: skip
 
 
 def _rows(judged: JudgedSet, n: int, path: Path, curve: Curve) -> Iterator[Reading]:
     table = (f"{path}/table",)
     yield _reading(judged, n, "curve_rows_few", Severity.CAUTION, "curve-rows-min",
                    amount("rows", float(len(curve.table.rows)), D.NUMBER, 0),
-                   amount("required", judged.limit("curve-rows-min"), D.NUMBER, 0), True, table, path)  # fmt: skip
+                   amount("required", judged.limit("curve-rows-min"), D.NUMBER, 0), True,
+                   table, path)  # fmt: skip
     worst = _power_disagreement(curve, judged.result.density)
     if worst is not None:
         yield _reading(judged, n, "power_disagrees", Severity.CAUTION, "power-disagreement-max",
                        amount("difference", worst, D.RATIO),
-                       amount("required", judged.limit("power-disagreement-max"), D.RATIO, 0), False,
+                       amount("required", judged.limit("power-disagreement-max"), D.RATIO, 0),
+                       False,
                        table, path)  # fmt: skip
 
 

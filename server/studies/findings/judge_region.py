@@ -1,4 +1,4 @@
-"""Where each running pump stands on its curve: preferred and allowable region, least flow, its end."""
+"""Where each running pump stands on its curve: its regions, its least flow, its end."""
 
 from collections.abc import Iterator
 
@@ -39,7 +39,8 @@ def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[
                ("side", "left" if share < low else "right")),
     )  # fmt: skip
     yield common
-    yield common.varied(criterion=judged.criterion(judged.preferred_key(n, high=True)), sense="at_most",
+    yield common.varied(criterion=judged.criterion(judged.preferred_key(n, high=True)),
+                        sense="at_most",
         provided=amount("share", share, D.RATIO, _decimals(share, high)),
         required=amount("required", high, D.RATIO, 0), mend=_mend(judged, n, left=False),
     )  # fmt: skip
@@ -49,7 +50,7 @@ def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[
 
 
 def _decimals(share: float, end: float) -> int:
-    """Return the decimals of a share: one more digit where rounding would contradict the verdict."""
+    """Return the decimals of a share: one more where rounding would contradict the verdict."""
     return 0 if abs(share - end) > 0.01 else 1
 
 
@@ -74,7 +75,9 @@ def _edge(judged: JudgedSet, common: Reading, share: float, low: float, high: fl
     )  # fmt: skip
 
 
-def _further_ends(judged: JudgedSet, common: Reading, n: int, share: float) -> Iterator[Reading]:
+def _further_ends(
+    judged: JudgedSet, common: Reading, n: int, share: float
+) -> Iterator[Reading]:
     """Yield the maker's allowable region and the minimum continuous flow."""
     slot = judged.slots[n]
     base = common.varied(severity=Severity.FAIL, provided=amount("share", share, D.RATIO, 0))
@@ -87,7 +90,8 @@ def _further_ends(judged: JudgedSet, common: Reading, n: int, share: float) -> I
             yield base.varied(code="allowable_region_outside", sense=sense,
                 criterion=judged.criterion("allowable-region"),
                 required=amount("required", end, D.RATIO, 0),
-                mend=(f"{judged.pump_path(n)}/allowable_region/{field}", f"{judged.curve_path(n)}/table"),
+                mend=(f"{judged.pump_path(n)}/allowable_region/{field}",
+                      f"{judged.curve_path(n)}/table"),
             )  # fmt: skip
     yield base.varied(code="minimum_flow_broken", criterion=judged.criterion("minimum-flow"),
         required=amount("required", slot.minimum_flow, D.RATIO, 0), sense="at_least",
@@ -120,7 +124,11 @@ def _why(judged: JudgedSet, c: int) -> str:
     states = (
         {State(int(result.state[c, k]))}
         if k >= 0
-        else {State(int(s)) for s, on in zip(result.state[c], result.available[c], strict=True) if on}
+        else {
+            State(int(s))
+            for s, on in zip(result.state[c], result.available[c], strict=True)
+            if on
+        }
     )
     if State.END_OF_CURVE in states:
         return "end_of_curve"

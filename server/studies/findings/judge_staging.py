@@ -70,8 +70,10 @@ def _gap(judged: JudgedSet, handover: Handover, h: int, gap: Floats) -> Finding:
         cases=(*(within if not narrow else ()), case),
         provided=amount("width", float(gap[worst]), D.RATIO, 1),
         required=amount("required", judged.limit("gap-narrow"), D.RATIO, 0),
-        others=(amount("from", float(ends[worst]), D.FLOW), amount("to", float(starts[worst]), D.FLOW)),
-        names=(("fewer", _units(judged, handover.fewer[h])), ("more", _units(judged, handover.more[h])),
+        others=(amount("from", float(ends[worst]), D.FLOW),
+                amount("to", float(starts[worst]), D.FLOW)),
+        names=(("fewer", _units(judged, handover.fewer[h])),
+               ("more", _units(judged, handover.more[h])),
                ("set", judged.title), ("state", "scenario" if within and not narrow else "")),
         basis="gap-narrow", mend=(f"{judged.curve_path(n)}/table", f"{judged.path}/slots"),
     )  # fmt: skip
@@ -83,7 +85,7 @@ def _lies_in(judged: JudgedSet, c: int, ends: Floats, starts: Floats) -> bool:
 
 
 def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
-    """Return that no single flow suits all supply states, although each state has an overlap."""
+    """Return that no single flow suits all supply states, although each has an overlap."""
     ends, starts = handover.fewer_end[h], handover.more_start[h]
     n = _added(judged, handover, h)
     before = int(np.flatnonzero(judged.result.combinations[handover.fewer[h]])[0])
@@ -95,7 +97,8 @@ def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
         provided=amount("ends", float(ends[high]), D.FLOW, 2),
         required=amount("starts", float(starts[low]), D.FLOW, 2),
         others=(amount("overlap", float(np.min(ends - starts)), D.FLOW, 1),),
-        names=(("fewer", _units(judged, handover.fewer[h])), ("more", _units(judged, handover.more[h])),
+        names=(("fewer", _units(judged, handover.fewer[h])),
+               ("more", _units(judged, handover.more[h])),
                ("starts_in", SUPPLY_STATES[low]), ("ends_in", SUPPLY_STATES[high]),
                ("set", judged.title)),
         basis="physics",
@@ -106,15 +109,16 @@ def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
 def _after_trip(judged: JudgedSet, after: AfterTrip) -> Iterator[Finding]:
     """Yield the cases in which the units left pass the end of their curve.
 
-    That they leave their preferred region is no finding: fewest units run, so one less is always to
-    the right of it. How far they go while still on the curve is told beside.
+    That they leave their preferred region is no finding: fewest units run, so one less is
+    always to the right of it. How far they go while still on the curve is told beside.
     """
-    ended = [i for i in range(len(after.cases))
-             if after.running[i] > 0 and State(int(after.state[i])) is State.END_OF_CURVE]  # fmt: skip
+    states = {
+        i: State(int(after.state[i])) for i in range(len(after.cases)) if after.running[i] > 0
+    }
+    ended = [i for i, state in states.items() if state is State.END_OF_CURVE]
     if not ended:
         return
-    on_curve = [i for i in range(len(after.cases))
-                if after.running[i] > 0 and State(int(after.state[i])) in STATED]  # fmt: skip
+    on_curve = [i for i, state in states.items() if state in STATED]
     furthest = max(on_curve, key=lambda i: float(after.best_efficiency_share[i]), default=None)
     worst = max(ended, key=lambda i: _demand(judged, after.cases[i]))
     share = float("nan") if furthest is None else float(after.best_efficiency_share[furthest])
@@ -125,10 +129,12 @@ def _after_trip(judged: JudgedSet, after: AfterTrip) -> Iterator[Finding]:
         names["share_case"] = scenario_title(judged.station, after.cases[furthest])
     yield Finding(
         code="after_trip_end_of_curve", severity=Severity.CAUTION, subject=judged.path,
-        pump_set=judged.id, governing=after.cases[worst], cases=tuple(after.cases[i] for i in ended),
+        pump_set=judged.id, governing=after.cases[worst],
+        cases=tuple(after.cases[i] for i in ended),
         provided=amount("flow_at_end", float(after.flow_at_end[worst]), D.FLOW),
         required=amount("demand", _demand(judged, after.cases[worst]), D.FLOW),
-        others=(amount("share", share, D.RATIO, 0),), names=tuple(names.items()), basis="physics",
+        others=(amount("share", share, D.RATIO, 0),), names=tuple(names.items()),
+        basis="physics",
         mend=(*_tables(judged), f"{judged.path}/slots"),
     )  # fmt: skip
 

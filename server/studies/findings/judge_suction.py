@@ -36,10 +36,13 @@ def _main_and_gauge(judged: JudgedSet) -> Iterator[Reading]:
     """
     firm = suction_capacity(judged)
     for c, _ in judged.stated:
-        main = _suction(judged, c, "suction-main-minimum", float(judged.result.connection_pressure[c]),
+        main = _suction(judged, c, "suction-main-minimum",
+                        float(judged.result.connection_pressure[c]),
                         (_low_state(judged), "/supply/connection_level"))  # fmt: skip
-        gauge = _suction(judged, c, "suction-gauge-minimum", float(judged.result.suction_pressure[c]),
-                         (_low_state(judged), *_suction_bores(judged), "/site/suction_gauge_level"))  # fmt: skip
+        gauge = _suction(judged, c, "suction-gauge-minimum",
+                         float(judged.result.suction_pressure[c]),
+                         (_low_state(judged), *_suction_bores(judged),
+                          "/site/suction_gauge_level"))  # fmt: skip
         beside = _consequences(firm)
         if broken(main):
             yield main.varied(others=(*_gauge_beside(gauge), *beside),
@@ -73,13 +76,16 @@ def _consequences(firm: FirmCapacity | None) -> tuple[Amount, ...]:
     )
 
 
-def _suction(judged: JudgedSet, c: int, key: str, pressure: float, mend: tuple[Path, ...]) -> Reading:
+def _suction(
+    judged: JudgedSet, c: int, key: str, pressure: float, mend: tuple[Path, ...]
+) -> Reading:
     return Reading(
         code="suction_main_low", severity=Severity.FAIL, subject="/supply", pump_set=judged.id,
         criterion=judged.criterion(key), case=judged.case(c),
         provided=amount("pressure", pressure, D.PRESSURE, 1),
         required=amount("required", judged.limit(key), D.PRESSURE), sense="at_least", mend=mend,
-        names=(("supply", judged.station.supply.title or "the supplying main"), ("set", judged.title)),
+        names=(("supply", judged.station.supply.title or "the supplying main"),
+               ("set", judged.title)),
     )  # fmt: skip
 
 
@@ -139,9 +145,11 @@ def _lift(judged: JudgedSet) -> Iterator[Reading]:
         lift = eye.si - float(judged.result.suction_grade[c])
         common = Reading(
             code="suction_lift_long", severity=Severity.FAIL, subject="/site/eye_level",
-            pump_set=judged.id, criterion=judged.criterion("suction-lift-max"), case=judged.case(c),
+            pump_set=judged.id, criterion=judged.criterion("suction-lift-max"),
+            case=judged.case(c),
             provided=amount("lift", lift, D.HEAD),
-            required=amount("required", judged.limit("suction-lift-max"), D.HEAD), sense="at_most",
+            required=amount("required", judged.limit("suction-lift-max"), D.HEAD),
+            sense="at_most",
             mend=("/site/eye_level", _low_state(judged)), names=(("set", judged.title),),
             at_limit_share=0.0,
         )  # fmt: skip
@@ -149,4 +157,3 @@ def _lift(judged: JudgedSet) -> Iterator[Reading]:
         if not broken(common):
             yield common.varied(code="suction_lift", severity=Severity.CAUTION, criterion=None,
                           required=amount("required", 0.0, D.HEAD))  # fmt: skip
-

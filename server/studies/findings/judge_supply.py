@@ -32,11 +32,15 @@ def draws_of(results: list[DutyResult]) -> Draws | None:
     """Return the largest draws of the solved sets, None when no set is solved."""
     if not results:
         return None
-    normal = [float(q) for r in results for q, f in zip(r.demand, r.is_fire, strict=True) if not f]
+    normal = [
+        float(q) for r in results for q, f in zip(r.demand, r.is_fire, strict=True) if not f
+    ]
     fire = [float(q) for r in results for q, f in zip(r.demand, r.is_fire, strict=True) if f]
     largest = max([*normal, *fire], default=0.0)
     cases = tuple(
-        case for case, q in zip(results[0].cases, results[0].demand, strict=True) if q >= largest
+        case
+        for case, q in zip(results[0].cases, results[0].demand, strict=True)
+        if q >= largest
     )
     return Draws(
         max(normal, default=0.0), max(fire, default=None), results[0].density, largest, cases
@@ -75,7 +79,8 @@ def judge_supply(
 
 def _reading(
     criteria: dict[str, Criterion], code: str, key: str, test: FlowTest, provided: Amount,
-    dimension: D, sense: Sense, mend: tuple[Path, ...], *, severity: Severity = Severity.CAUTION,
+    dimension: D, sense: Sense, mend: tuple[Path,
+                                            ...], *, severity: Severity = Severity.CAUTION,
     others: tuple[Amount, ...] = (), case: Case | None = None,
 ) -> Reading:  # fmt: skip
     return Reading(
@@ -95,7 +100,8 @@ def _of_test(
     if test.made_at is not None and year is not None and test.made_at[:4].isdecimal():
         age = float(year - int(test.made_at[:4]))
         yield _reading(criteria, "flow_test_old", "flow-test-age-max", test,
-                       amount("age", age, D.NUMBER, 0), D.NUMBER, "at_most", (f"{path}/made_at",),
+                       amount("age", age, D.NUMBER, 0), D.NUMBER, "at_most",
+                       (f"{path}/made_at",),
                        others=(amount("year", float(year), D.NUMBER, 0),))  # fmt: skip
     if test.static_pressure is None or test.residual_pressure is None:
         return
@@ -106,14 +112,16 @@ def _of_test(
                    (f"{path}/residual_pressure", f"{path}/test_flow"))  # fmt: skip
     if test.use == "basis" and test.test_flow is not None and draws is not None:
         yield _reading(criteria, "flow_test_extrapolated", "flow-test-extrapolation-max", test,
-                       amount("times", draws.largest / test.test_flow.si, D.NUMBER, 2), D.NUMBER,
-                       "at_most", (f"{path}/test_flow",), case=draws.cases[0] if draws.cases else None,
+                       amount("times", draws.largest / test.test_flow.si, D.NUMBER, 2),
+                       D.NUMBER,
+                       "at_most", (f"{path}/test_flow",),
+                       case=draws.cases[0] if draws.cases else None,
                        others=(amount("design", draws.largest, D.FLOW),
                                amount("tested", test.test_flow.si, D.FLOW)))  # fmt: skip
 
 
 def judged_year(station: Station) -> int | None:
-    """Return the year in which a test's age is judged: of the memo, else of the first horizon."""
+    """Return the year in which a test's age is judged: the memo's, else the first horizon's."""
     if station.memo.date[:4].isdecimal():
         return int(station.memo.date[:4])
     years = [horizon.year for horizon in station.horizons if horizon.year is not None]
@@ -177,7 +185,8 @@ def _estimate(station: Station) -> Iterator[Finding]:
         yield Finding(
             code="low_state_estimated", severity=Severity.NOTE, subject="/supply/states/low",
             pump_set=None, provided=amount("shift", low.si, D.PRESSURE),
-            names=(("said", low.source.text), ("supply", station.supply.title or "the supplying main")),
+            names=(("said", low.source.text),
+                   ("supply", station.supply.title or "the supplying main")),
             basis="low-state-shift", mend=("/supply/states/low",),
         )  # fmt: skip
 
@@ -193,12 +202,18 @@ def _order(station: Station) -> Iterator[Finding]:
         values = (line.low, line.normal, line.high)
     else:
         return
-    named = [(n, v.si) for n, v in zip(("low", "normal", "high"), values, strict=True) if v is not None]
+    named = [
+        (n, v.si)
+        for n, v in zip(("low", "normal", "high"), values, strict=True)
+        if v is not None
+    ]
     for (lower, below), (upper, above) in zip(named, named[1:], strict=False):
         if below > above:
             yield Finding(
-                code="supply_states_out_of_order", severity=Severity.FAIL, subject=base, pump_set=None,
-                provided=amount("lower", below, dimension), required=amount("upper", above, dimension),
+                code="supply_states_out_of_order", severity=Severity.FAIL, subject=base,
+                pump_set=None,
+                provided=amount("lower", below, dimension),
+                required=amount("upper", above, dimension),
                 names=(("lower_state", lower), ("upper_state", upper)), basis="physics",
                 mend=(f"{base}/{lower}", f"{base}/{upper}"),
             )  # fmt: skip
@@ -210,7 +225,11 @@ def _zone(station: Station, criteria: dict[str, Criterion], draws: Draws) -> Ite
         station.supply.supplying_zone, station_peak=draws.normal, station_fire=draws.fire,
         density=draws.density,
     ):  # fmt: skip
-        key = "supplying-zone-normal-min" if check.check == "peak_hour" else "supplying-zone-fire-min"
+        key = (
+            "supplying-zone-normal-min"
+            if check.check == "peak_hour"
+            else "supplying-zone-fire-min"
+        )
         yield Reading(
             code="supplying_zone_low", severity=Severity.FAIL, subject=ZONE_PATH, pump_set=None,
             criterion=criteria[key].path,
@@ -219,5 +238,6 @@ def _zone(station: Station, criteria: dict[str, Criterion], draws: Draws) -> Ite
             required=amount("required", criteria[key].si, D.PRESSURE), sense="at_least",
             others=(amount("flow", check.flow, D.FLOW),),
             mend=(f"{ZONE_PATH}/loss", f"{ZONE_PATH}/source_grade"),
-            names=(("check", check.check), ("supply", station.supply.title or "the supplying main")),
+            names=(("check", check.check), ("supply",
+                                            station.supply.title or "the supplying main")),
         )  # fmt: skip

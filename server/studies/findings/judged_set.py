@@ -15,7 +15,11 @@ from server.studies.shapes import Amount, Case, Path, Region
 from server.units import Dimension
 
 MADE = "made:"  # scenario ids of cases that are always made
-STATED = (State.SOLVED, State.TOP_SPEED, State.LOW_SPEED)  # states in which numbers have meaning
+STATED = (
+    State.SOLVED,
+    State.TOP_SPEED,
+    State.LOW_SPEED,
+)  # states in which numbers have meaning
 
 
 @dataclass(frozen=True, eq=False)
@@ -96,7 +100,7 @@ class JudgedSet:
 
     @property
     def lowest_pressure(self) -> float:
-        """Gauge pressure below which there is no water [Pa]; -inf while the altitude is absent."""
+        """Gauge pressure below which there is no water [Pa]; -inf without an altitude."""
         lowest = self.result.lowest_pressure
         return -float("inf") if lowest is None else lowest
 
@@ -151,9 +155,9 @@ class JudgedSet:
 
     @cached_property
     def unstated(self) -> tuple[int, ...]:
-        """Cases with no duty: no combination, or one past its curve or under the static head."""
+        """Cases with no duty: no combination, or one past the end of its curve."""
         with_duty = {c for c, _ in self.stated}
-        # a case whose supply or demand is not entered is no failure: the absent field is named instead
+        # a case whose supply is not entered is no failure: the absent field is named instead
         return tuple(
             c
             for c in range(len(self.result.cases))
@@ -177,7 +181,12 @@ class JudgedSet:
         for n in self.running(c, k):
             slot = self.result.slots[n]
             share = float(shares[n])
-            key = (slot.pump, slot.curve, self.leg_of_slot[n], round(share, 6) if share == share else None)
+            key = (
+                slot.pump,
+                slot.curve,
+                self.leg_of_slot[n],
+                round(share, 6) if share == share else None,
+            )
             alike.setdefault(key, []).append(n)
         for slots in alike.values():
             titles = [self.slot_title(n) for n in slots]
@@ -202,7 +211,7 @@ class JudgedSet:
         return {scenario.id: scenario.demand for scenario in self.station.scenarios}
 
     def made_case(self, name: str, supply: int) -> Case:
-        """Return the case of an always-made state at a supply state (0 low, 1 normal, 2 high)."""
+        """Return the case of an always-made state; supply is 0 low, 1 normal, 2 high."""
         states = ("low", "normal", "high")
         return Case(f"{MADE}{name}", self.id, "", states[supply], "aged", None)  # type: ignore[arg-type]
 

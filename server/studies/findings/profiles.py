@@ -1,4 +1,4 @@
-"""The two profiles of criteria: every rule with its SI and its US limit, in the order of the sheet.
+"""The two profiles of criteria: every rule with its SI and US limit, in sheet order.
 
 US limits are the customary numbers, not conversions of the SI ones.
 """

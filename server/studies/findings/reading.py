@@ -1,4 +1,4 @@
-"""A reading: one result against one limit, met or not. Findings and tables are made of readings."""
+"""A reading: one result against one limit. Findings and tables are made of readings."""
 
 from collections.abc import Iterable
 from dataclasses import dataclass, field
@@ -7,7 +7,9 @@ from typing import Literal
 from server.studies.shapes import SEVERITY_ORDER, Amount, Case, Finding, Path, Severity, Verdict
 
 AT_LIMIT_SHARE = 0.02  # of the limit: a margin under it is said to be at the limit
-TOLD_ELSEWHERE = "told_elsewhere"  # code of a reading whose finding stands under another reading
+TOLD_ELSEWHERE = (
+    "told_elsewhere"  # code of a reading whose finding stands under another reading
+)
 ROUNDING = 1e-9  # relative: a held value is the limit itself but for the solver's last digits
 Sense = Literal["at_least", "at_most"]
 Names = tuple[tuple[str, str], ...]
@@ -17,8 +19,8 @@ Names = tuple[tuple[str, str], ...]
 class Reading:
     """One comparison; `severity` is how it weighs when the limit is not met.
 
-    Never changed after it is made. It is not frozen because a judgement makes a thousand of them
-    between an edit and its answer, and a frozen one takes three times as long to make.
+    Never changed after it is made. It is not frozen because a judgement makes a thousand of
+    them between an edit and its answer, and a frozen one takes three times as long to make.
     """
 
     code: str

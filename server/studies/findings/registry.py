@@ -9,7 +9,8 @@ _ORDER = {code: index for index, code in enumerate(CODES)}
 
 # what a memo must not leave unsaid: nothing in these words is computed, in any station
 NOT_COMPUTED: tuple[str, ...] = (
-    "Transients: power failure, starting and valve closure (surge). A closed zone, and any main with "
+    "Transients: power failure, starting and valve closure (surge). A closed zone, and any "
+    "main with "
     "high points, needs a specialist's study.",
     "Energy, hours outside the preferred region and cost over the life.",
     "Vessels and starts an hour.",

@@ -40,7 +40,11 @@ def requirement_title(row: RequirementRow, view: View) -> str:
 
 def verdict_words(cell: RequirementCell) -> str:
     """Return the verdict of a cell; of the region its share and word: "33 %, outside"."""
-    if cell.region is not None and cell.region is not Region.NOT_CHECKED and cell.provided is not None:
+    if (
+        cell.region is not None
+        and cell.region is not Region.NOT_CHECKED
+        and cell.provided is not None
+    ):
         return f"{amount_words(cell.provided, 'si')}, {REGION_WORDS[cell.region]}"
     return VERDICT_WORDS[cell.verdict]
 
@@ -72,7 +76,7 @@ def pair_words(provided: Amount, required: Amount, view: View) -> str:
 
 
 def runs_out_words(row: RequirementRow, station: Station) -> str:
-    """Return when a requirement is no longer met: "2039, supplying main", "after 2047", or nothing."""
+    """Return when a requirement is no longer met: "2039, supplying main", "after 2047"."""
     if not row.grows:
         return ""
     years = [horizon.year for horizon in station.horizons if horizon.year is not None]
@@ -86,11 +90,15 @@ def limit_title(limit: str, station: Station) -> str:
     """Return in few words what limits a firm capacity."""
     if limit.startswith("point:"):
         point = limit.removeprefix("point:")
-        return next((p.title for p in station.zone.points if p.id == point and p.title), "a point")
+        return next(
+            (p.title for p in station.zone.points if p.id == point and p.title), "a point"
+        )
     return _LIMITS.get(limit, limit.replace("_", " "))
 
 
-def compliance_words(row: ComplianceRow, station: Station, view: View) -> tuple[str, str, str, str]:
+def compliance_words(
+    row: ComplianceRow, station: Station, view: View
+) -> tuple[str, str, str, str]:
     """Return required, provided, verdict and case or reason of a compliance row."""
     required = "" if row.required is None else amount_words(row.required, view)
     provided = "" if row.provided is None else amount_words(row.provided, view)
@@ -99,7 +107,11 @@ def compliance_words(row: ComplianceRow, station: Station, view: View) -> tuple[
 
 
 def lead(
-    station: Station, set_id: str | None, holds: bool | None, findings: Iterable[Finding], view: View
+    station: Station,
+    set_id: str | None,
+    holds: bool | None,
+    findings: Iterable[Finding],
+    view: View,
 ) -> str:
     """Return whether the proposed set holds, and why not, in one or two sentences."""
     title = next((each.title for each in station.sets if each.id == set_id), "")
@@ -121,5 +133,9 @@ def lead(
     worst = [f for f in own if f.severity in (Severity.STOP, Severity.FAIL)]
     reasons = " ".join(sentence(f, station, view) for f in worst[:MOST_REASONS])
     more = len(worst) - MOST_REASONS
-    rest = f" {more} more {'finding does' if more == 1 else 'findings do'} not meet." if more > 0 else ""
+    rest = (
+        f" {more} more {'finding does' if more == 1 else 'findings do'} not meet."
+        if more > 0
+        else ""
+    )
     return f"{name} does not hold, because: {reasons}{rest}"

@@ -42,7 +42,10 @@ Keep = Callable[[Reading], bool]
 
 
 def requirement_rows(
-    station: Station, result: DutyResult, readings: Iterable[Reading], criteria: dict[str, Criterion]
+    station: Station,
+    result: DutyResult,
+    readings: Iterable[Reading],
+    criteria: dict[str, Criterion],
 ) -> tuple[RequirementRow, ...]:
     """Return the rows for one set.
 
@@ -63,7 +66,9 @@ def requirement_rows(
 
     def of_demand(kind: str) -> Keep:
         return lambda r: (
-            r.case is not None and demand.get(r.case.scenario) == kind and r.case.scenario not in fires
+            r.case is not None
+            and demand.get(r.case.scenario) == kind
+            and r.case.scenario not in fires
         )
 
     def in_fire(r: Reading) -> bool:
@@ -71,10 +76,13 @@ def requirement_rows(
 
     critical = _point(station, "critical")
     table = _Table(station, own)
-    firm = {f.requirement: [g for g in result.made.firm_capacity if g.requirement == f.requirement]
-            for f in result.made.firm_capacity}  # fmt: skip
-    service = amount("service", _typed(station, "critical", "required_pressure")
-                     or criteria["service-pressure-min"].si, D.PRESSURE)  # fmt: skip
+    firm: dict[str, list[FirmCapacity]] = {}
+    for capacity in result.made.firm_capacity:
+        firm.setdefault(capacity.requirement, []).append(capacity)
+    least = _asked(station, criteria, "critical", "required_pressure", "service-pressure-min")
+    most = _asked(station, criteria, "lowest", "highest_pressure", "service-pressure-max")
+    service = amount("service", least, D.PRESSURE)
+    highest = amount("limit", most, D.PRESSURE)
     return (
         table.firm("peak_hour", (service,), (("point", critical),), firm.get("peak_hour", []),
                    ("pressure_low",), of_demand("peak_hour")),
@@ -87,12 +95,12 @@ def requirement_rows(
         table.plain("npsh", (amount("ratio", criteria["npsh-ratio-min"].si, D.NUMBER, 1),
                               amount("margin", criteria["npsh-margin-min"].si, D.HEAD)), (),
                     ("npsh_broken", "npsh_short"), lambda r: True),
-        table.plain("suction_main", (amount("limit", criteria["suction-main-minimum"].si, D.PRESSURE),),
+        table.plain("suction_main", (amount("limit", criteria["suction-main-minimum"].si,
+                                            D.PRESSURE),),
                     (("supply", station.supply.title or "Supplying main"),), (),
                     lambda r: _of(r, "suction-main-minimum")),
-        table.plain("highest_pressure", (amount("limit", _typed(station, "lowest", "highest_pressure")
-                                                or criteria["service-pressure-max"].si, D.PRESSURE),),
-                    (("point", _point(station, "lowest")),), ("pressure_high",), lambda r: True),
+        table.plain("highest_pressure", (highest,), (("point", _point(station, "lowest")),),
+                    ("pressure_high",), lambda r: True),
         table.plain("supplying_zone", (), (), ("supplying_zone_low",), lambda r: True),
     )  # fmt: skip
 
@@ -105,15 +113,19 @@ def _point(station: Station, role: str) -> str:
     return next((p.title for p in station.zone.points if p.role == role and p.title), "")
 
 
-def _typed(station: Station, role: str, field: str) -> float | None:
+def _asked(
+    station: Station, criteria: dict[str, Criterion], role: str, field: str, key: str
+) -> float | None:
+    """Return the limit typed at the first point of a role, else the criterion's."""
     for point in station.zone.points:
         if point.role == role and (typed := getattr(point, field)) is not None:
             return float(typed.si)
-    return None
+    return criteria[key].si
 
 
 def _fire_limits(station: Station, criteria: dict[str, Criterion]) -> tuple[Amount, ...]:
-    residual = _typed(station, "hydrant", "residual_pressure") or criteria["hydrant-residual-min"].si
+    key = "hydrant-residual-min"
+    residual = _asked(station, criteria, "hydrant", "residual_pressure", key)
     return (
         amount("residual", residual, D.PRESSURE),
         amount("fire", criteria["fire-pressure-min"].si, D.PRESSURE),
@@ -131,7 +143,7 @@ class _Table:
     readings: list[Reading]
 
     def _kept(self, codes: tuple[str, ...], keep: Keep, horizon: str) -> list[Reading]:
-        """Return the readings of a row at a horizon; a made case without a horizon counts at each."""
+        """Return a row's readings at a horizon; a made case without one counts at each."""
         return [
             r
             for r in self.readings
@@ -145,7 +157,9 @@ class _Table:
         if not kept:
             return RequirementCell(horizon, Verdict.NOT_CHECKED, because=because)
         worst = _worst(kept)
-        return RequirementCell(horizon, worst.verdict, worst.provided, worst.required, None, worst.case)
+        return RequirementCell(
+            horizon, worst.verdict, worst.provided, worst.required, None, worst.case
+        )
 
     def plain(
         self, key: str, limits: tuple[Amount, ...], names: tuple[tuple[str, str], ...],
@@ -153,7 +167,8 @@ class _Table:
     ) -> RequirementRow:  # fmt: skip
         """Return a row of the worst reading at each horizon."""
         cells = tuple(
-            self._cell(h.id, self._kept(codes, keep, h.id), _BECAUSE[key]) for h in self.station.horizons
+            self._cell(h.id, self._kept(codes, keep, h.id), _BECAUSE[key])
+            for h in self.station.horizons
         )
         return RequirementRow(key, limits, names, cells)
 
@@ -179,7 +194,8 @@ class _Table:
         first = min(years, key=lambda f: f.runs_out or 0, default=None)
         return RequirementRow(
             key, limits, names, tuple(cells),
-            None if first is None else first.runs_out, "" if first is None else first.by_all_limit,
+            None if first is None else first.runs_out,
+            "" if first is None else first.by_all_limit,
             grows=bool(firm),
         )  # fmt: skip
 
@@ -189,16 +205,19 @@ class _Table:
         for horizon in self.station.horizons:
             kept = self._kept(("region_outside",), keep, horizon.id)
             if not kept:
-                cells.append(RequirementCell(horizon.id, Verdict.NOT_CHECKED, region=Region.NOT_CHECKED,
+                cells.append(RequirementCell(horizon.id, Verdict.NOT_CHECKED,
+                                             region=Region.NOT_CHECKED,
                                              because=_BECAUSE["minimum_night"]))  # fmt: skip
                 continue
             worst = _worst(kept)
             edge = self._kept(("region_edge",), keep, horizon.id)
             region = Region.OUTSIDE if broken(worst) else Region.EDGE if edge else Region.INSIDE
-            verdict = {Region.OUTSIDE: Verdict.DOES_NOT_MEET, Region.EDGE: Verdict.AT_LIMIT}.get(
-                region, Verdict.MEETS
-            )
-            cells.append(RequirementCell(horizon.id, verdict, worst.provided, worst.required, region,
+            verdict = {
+                Region.OUTSIDE: Verdict.DOES_NOT_MEET,
+                Region.EDGE: Verdict.AT_LIMIT,
+            }.get(region, Verdict.MEETS)
+            cells.append(RequirementCell(horizon.id, verdict, worst.provided, worst.required,
+                                         region,
                                          worst.case))  # fmt: skip
         return RequirementRow("minimum_night", (), (), tuple(cells))
 

@@ -17,7 +17,7 @@ BASIS_WORDS: dict[Basis, str] = {
 
 @dataclass(frozen=True, slots=True)
 class Rule:
-    """One criterion with its limit in each profile; `stated` rules carry words and no number."""
+    """One criterion with its limit in each profile; `stated` rules carry words only."""
 
     key: str
     title: str

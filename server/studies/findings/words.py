@@ -1,4 +1,4 @@
-"""Findings, cases and verdicts in words, in the reader's units: the only place that spells them."""
+"""Findings, cases and verdicts in words, in the reader's units: spelled here only."""
 
 from server.station import paths
 from server.station.station import Station
@@ -39,7 +39,8 @@ _REASONS = {
     "absent": "it is not given",
     "no_npsh_rows": "its rows have no NPSH required",
     "no_efficiency_rows": "its rows have neither efficiency nor shaft power",
-    "best_efficiency_unknown": "the best-efficiency flow is not bracketed by its rows, so the preferred "
+    "best_efficiency_unknown": "the best-efficiency flow is not bracketed by its rows, so the "
+                               "preferred "
     "region cannot be judged",
     "no_shutoff_row": "it has no row at zero flow, so shut-off head is not given",
     "outside_friction_law": "the roughness is too large for the bore",
@@ -67,7 +68,7 @@ def short(finding: Finding) -> str:
 
 
 def basis(finding: Finding, station: Station | None = None) -> str:
-    """Return on what the finding rests: source of the limit, common practice, or the physics."""
+    """Return on what a finding rests: source of the limit, common practice, or the physics."""
     if finding.basis in RULES:
         if station is not None:
             return criteria_of(station)[finding.basis].source
@@ -99,7 +100,7 @@ def amount_words(amount: Amount, view: View, more: int = 0) -> str:
 
 
 def _pair(finding: Finding, view: View) -> dict[str, str]:
-    """Return provided and required, with digits enough that they do not read as the same number."""
+    """Return provided and required, with digits enough that they do not read the same."""
     provided, required = finding.provided, finding.required
     if provided is None or required is None:
         return {
@@ -170,7 +171,8 @@ def _derived(
         else "what hangs on it is not checked",
         "said_words": f" ({names['said']})" if names.get("said") else "",
         "horizon": names.get("horizon")
-        or ("" if finding.governing is None else horizon_title(station, finding.governing.horizon)),
+        or ("" if finding.governing is None else horizon_title(station,
+                                                               finding.governing.horizon)),
     }  # fmt: skip
 
 
@@ -181,11 +183,16 @@ def _reason(reason: str) -> str:
 def _water(finding: Finding, names: dict[str, str], view: View) -> str:
     """Return what the zone has with the station off; never a figure below a vacuum."""
     bound = " at most" if names.get("path") == "through_pumps" else ""
-    if names.get("water") == "none" or finding.provided is None or finding.provided.value is None:
+    if (
+        names.get("water") == "none"
+        or finding.provided is None
+        or finding.provided.value is None
+    ):
         return "there is no water: the main drains"
     pressure = amount_words(finding.provided, view)
     if names.get("water") == "below":
-        return f"the pressure falls to {pressure}{bound}, below atmosphere, where dirty water is drawn in,"
+        below = "below atmosphere, where dirty water is drawn in,"
+        return f"the pressure falls to {pressure}{bound}, {below}"
     return f"the pressure falls to {pressure}{bound}"
 
 
@@ -193,7 +200,11 @@ def _standby(finding: Finding, names: dict[str, str], view: View) -> str:
     transfer = next((each for each in finding.others if each.name == "transfer"), None)
     if names.get("kind", "") == "":
         return "standby power is not given"
-    engine = "the automatic generator" if names["kind"] == "automatic" else "a generator started by hand"
+    engine = (
+        "the automatic generator"
+        if names["kind"] == "automatic"
+        else "a generator started by hand"
+    )
     if transfer is None or transfer.value is None:
         return f"the time to transfer to {engine} is not given"
     carries = f" and its carrying {names['carries']}" if names.get("carries") else ""
@@ -201,7 +212,7 @@ def _standby(finding: Finding, names: dict[str, str], view: View) -> str:
 
 
 def _absent(station: Station, finding: Finding) -> str:
-    """Return the absent fields in words: "loss in the supplying zone and 6 more are not given"."""
+    """Return the absent fields: "loss in the supplying zone and 6 more are not given"."""
     if not finding.mend:
         return ""
     first = field_words(station, finding.mend[0]).rsplit(", ", 1)[-1]

@@ -72,8 +72,10 @@ def assessed(station: Station) -> Assessment:
     return assess(station)
 
 
-def table(of: str, *, flow: float = 1.0, head: float = 1.0, steep: float = 1.0) -> dict[str, object]:
-    """Return a curve of the demo with flows and heads scaled, or its fall about the seventh row."""
+def table(
+    of: str, *, flow: float = 1.0, head: float = 1.0, steep: float = 1.0
+) -> dict[str, object]:
+    """Return a curve of the demo with flows, heads or its fall about the sixth row scaled."""
     given = paths.get_json(demo(), of)
     rows = [list(row) for row in given["rows"]]  # type: ignore[index, call-overload, union-attr, arg-type]
     pivot = float(rows[5][1])  # type: ignore[arg-type]
@@ -83,7 +85,9 @@ def table(of: str, *, flow: float = 1.0, head: float = 1.0, steep: float = 1.0) 
     return {**given, "rows": rows}  # type: ignore[dict-item]
 
 
-def rows_of(of: str, change: Callable[[list[list[float | None]]], list[list[float | None]]]) -> dict[str, object]:
+def rows_of(
+    of: str, change: Callable[[list[list[float | None]]], list[list[float | None]]]
+) -> dict[str, object]:
     """Return a curve of the demo with its rows changed."""
     given = paths.get_json(demo(), of)
     return {**given, "rows": change([list(row) for row in given["rows"]])}  # type: ignore

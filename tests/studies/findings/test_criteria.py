@@ -1,7 +1,8 @@
 """Criteria: both profiles, departures, and the limits that the studies read.
 
 Sources of the limits tested: WAC 246-290-230(6) and 30 TAC 290.45(a)(2), 20 psi in a fire; Utah
-R309-540-6(3)(b), 20 psi at a booster's intake; UPC 608.2, 80 psi; ANSI/HI 9.6.3 as quoted, 70 to 120 %;
+R309-540-6(3)(b), 20 psi at a booster's intake; UPC 608.2, 80 psi; ANSI/HI 9.6.3 as quoted, 70 '
+                                     'to 120 %;
 the others common practice.
 """
 
@@ -89,5 +90,7 @@ def test_limit_typed_as_the_profile_has_it_does_not_depart() -> None:
 def test_criterion_path_can_be_set_and_read() -> None:
     for key, rule in RULES.items():
         if rule.si is not None:
-            station = paths.put(demo(), f"/criteria/rows/{key}/limit", q(rule.si.value, rule.si.unit))  # type: ignore[arg-type]
+            station = paths.put(
+                demo(), f"/criteria/rows/{key}/limit", q(rule.si.value, rule.si.unit)
+            )  # type: ignore[arg-type]
             assert criteria_of(station)[key].quantity == rule.si

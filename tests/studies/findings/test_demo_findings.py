@@ -1,6 +1,7 @@
 """The demo of a closed zone shows its two faults and its listed true warnings, and no other.
 
-Source of the list and the figures: the station's own description, computed beside the program with a
+Source of the list and the figures: the station's own description, computed beside the program '
+                                               'with a
 scalar calculator (one root at a time), not with this program.
 """
 
@@ -43,8 +44,8 @@ WARNINGS = {
     ("pressure_by_speed", NOTE, f"{SET}/control"),
     ("low_state_estimated", NOTE, LOW),
 }
-# facts that any station of this kind shows: valves under their full-open velocity, a slow main in the
-# first years, and the defaults that stand in
+# facts that any station of this kind shows: valves under their full-open velocity, a slow main
+# in the first years, and the defaults that stand in
 PLAIN_FACTS = {
     ("main_slow", NOTE, "/discharge_main/reaches/rc-d1f5my"),
     *(("check_valve_not_fully_open", NOTE, leg) for leg in VALVES),
@@ -94,7 +95,8 @@ def test_suction_fault_is_one_finding_with_main_gauge_and_firm_capacity() -> Non
 def test_suction_fault_reads_as_one_sentence() -> None:
     said = words.sentence(_one("suction_main_low"), demo(), "si")
     assert said.startswith("Mill Lane street main falls to 119.")
-    for part in ("at the connection in maximum day and fire, design, low supply", "128.9\u00a0kPa",
+    for part in ("at the connection in maximum day and fire, design, low supply",
+                 "128.9\u00a0kPa",
                  "at least 140\u00a0kPa", "firm capacity ends at 56.4\u00a0L/s",
                  "3.6\u00a0L/s short of 60.0\u00a0L/s"):  # fmt: skip
         assert part in said

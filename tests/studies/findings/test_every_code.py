@@ -1,4 +1,4 @@
-"""Every finding code appears by an edit of the demo and goes by the field that it says would mend it."""
+"""Every finding code appears by an edit of the demo and goes by the field said to mend it."""
 
 import re
 from functools import cache
@@ -44,7 +44,9 @@ def test_code_appears_and_names_its_mend_first(given: CodeCase) -> None:
 @pytest.mark.parametrize("given", CASES, ids=IDS)
 def test_code_goes_by_changing_only_the_field_that_mends_it(given: CodeCase) -> None:
     before = [finding for finding in _of(given) if finding.mend[0] == given.mend]
-    after = {finding.key for finding in assessed(mended(given, _start(given.code).station)).findings}
+    after = {
+        finding.key for finding in assessed(mended(given, _start(given.code).station)).findings
+    }
     assert before
     assert not {finding.key for finding in before} & after
 

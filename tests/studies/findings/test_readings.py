@@ -1,4 +1,4 @@
-"""A reading compares one number with one limit; findings gather the readings that are not met."""
+"""A reading compares one number with one limit; findings gather those not met."""
 
 from dataclasses import replace
 
@@ -71,19 +71,24 @@ def test_one_finding_a_key_with_the_worst_case_first(pressures: list[float]) -> 
 @pytest.mark.parametrize(
     ("share", "region"),
     [
-        (0.699, Region.OUTSIDE), (0.70, Region.EDGE), (0.719, Region.EDGE), (0.721, Region.INSIDE),
+        (0.699, Region.OUTSIDE), (0.70, Region.EDGE), (0.719, Region.EDGE),
+        (0.721, Region.INSIDE),
         (1.0, Region.INSIDE), (1.179, Region.INSIDE), (1.185, Region.EDGE), (1.20, Region.EDGE),
         (1.201, Region.OUTSIDE), (float("nan"), Region.NOT_CHECKED),
     ],
 )  # fmt: skip
-def test_region_has_its_ends_inside_and_an_edge_of_two_points(share: float, region: Region) -> None:
+def test_region_has_its_ends_inside_and_an_edge_of_two_points(
+    share: float, region: Region
+) -> None:
     assert _judged().region(0, share) is region
 
 
 def test_region_of_a_pump_of_high_specific_speed_is_narrower() -> None:
     judged = _judged()
     slots = (replace(judged.result.slots[0], specific_speed=100.0), *judged.result.slots[1:])
-    fast = JudgedSet(judged.station, judged.criteria, judged.entered, replace(judged.result, slots=slots))
+    fast = JudgedSet(
+        judged.station, judged.criteria, judged.entered, replace(judged.result, slots=slots)
+    )
     assert fast.region(0, 0.75) is Region.OUTSIDE
     assert fast.region(0, 1.17) is Region.OUTSIDE
     assert fast.region(1, 0.75) is Region.INSIDE

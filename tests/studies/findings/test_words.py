@@ -41,7 +41,8 @@ def test_sentence_reads_in_us_units() -> None:
 
 def test_digits_are_added_until_provided_and_required_differ() -> None:
     finding = Finding(
-        code="pressure_low", severity=Severity.FAIL, subject="/zone/points/pt-t3r8nw", pump_set=None,
+        code="pressure_low", severity=Severity.FAIL, subject="/zone/points/pt-t3r8nw",
+        pump_set=None,
         governing=Case("sc-p2kh2h", "st-v3a7pe", "hz-d8gn4k", "low", "aged", None),
         provided=amount("pressure", 249_970.0, Dimension.PRESSURE, 0),
         required=amount("required", 250_000.0, Dimension.PRESSURE),
