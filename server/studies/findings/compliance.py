@@ -62,7 +62,7 @@ def _row(
         limit = Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals)
     if criterion.sense in ("setting", "stated") and not readings:
         return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit,
-                             because="a setting, judged elsewhere"
+                             because="a setting"
                              if criterion.sense == "setting" else criterion.source)  # fmt: skip
     if criterion.key in BY_FINDING:
         return _by_finding(criterion, limit, findings, pump_set)

@@ -3,6 +3,10 @@
 from server.studies.findings.rule import Rule, rule
 from server.units import Dimension as D
 
+CYCLES = (
+    "EI 11C201 table 7-1, least cycle time by motor; US: 6 at most, IDAPA 58.01.08.547.01.c; "
+    "NEMA MG 10 has fewer for large motors"
+)
 PUMP_RULES: tuple[Rule, ...] = (
     rule("units-least", "Least number of pumps", D.NUMBER, "at_least", (2, "1"), (2, "1"),
          "published",
@@ -80,20 +84,20 @@ PUMP_RULES: tuple[Rule, ...] = (
          "pumps", 0),
     rule("starts-small-max", "Starts an hour, direct on line, motor under 15 kW", D.NUMBER,
          "at_most",
-         (6, "1"), (6, "1"), "published", "waterworks guides; US: NEMA MG 10 table, 6 at most",
+         (6, "1"), (6, "1"), "published", CYCLES,
          "sets", 0),
     rule("starts-15-kw-max", "Starts an hour, motor 15 to 75 kW", D.NUMBER, "at_most",
-         (5, "1"), (6, "1"), "published", "waterworks guides; US: NEMA MG 10 table, 6 at most",
+         (5, "1"), (6, "1"), "published", CYCLES,
          "sets", 0),
     rule("starts-75-kw-max", "Starts an hour, motor 75 to 185 kW", D.NUMBER, "at_most",
-         (4, "1"), (6, "1"), "published", "waterworks guides; US: NEMA MG 10 table, 6 at most",
+         (4, "1"), (6, "1"), "published", CYCLES,
          "sets", 0),
     rule("starts-185-kw-max", "Starts an hour, motor above 185 kW", D.NUMBER, "at_most",
-         (3, "1"), (6, "1"), "published", "waterworks guides; US: NEMA MG 10 table, 6 at most",
+         (3, "1"), (6, "1"), "published", CYCLES,
          "sets", 0),
     rule("temperature-rise-max", "Water temperature rise at no flow, kelvin", D.NUMBER,
          "at_most",
-         (8, "1"), (8.33, "1"), "published", "pump texts, 15 °F", "pumps", 1),
+         (8, "1"), (8.33, "1"), "common_practice", "15 °F in pump texts", "pumps", 1),
     rule("curve-rows-min", "Rows of a tested curve", D.NUMBER, "at_least", (5, "1"), (5, "1"),
          "common_practice", "", "pumps", 0),
     rule("curve-last-row-min", "Last row of a tested curve, of best-efficiency flow", D.RATIO,

@@ -101,8 +101,10 @@ def compliance_words(
 ) -> tuple[str, str, str, str]:
     """Return required, provided, verdict and case or reason of a compliance row."""
     required = "" if row.required is None else amount_words(row.required, view)
-    provided = "" if row.provided is None else amount_words(row.provided, view)
-    said = row.because if row.case is None else scenario_title(station, row.case)
+    known = row.provided is not None and row.provided.value is not None
+    provided = amount_words(row.provided, view) if known and row.provided else ""
+    case = "" if row.case is None else scenario_title(station, row.case)
+    said = ", ".join(part for part in (case, row.because) if part)
     return required, provided, VERDICT_WORDS[row.verdict], said
 
 
