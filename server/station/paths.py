@@ -165,15 +165,13 @@ def _rebuild(way: list[tuple[object, str]], value: object) -> Station:
     return value
 
 
-def _without_empty_criteria(station: Station, path: str) -> Station:
-    """Drop a criterion that an edit has emptied: it is its profile's again."""
-    if not path.startswith(_CRITERIA + "/"):
+def without_empty_criteria(station: Station) -> Station:
+    """Return the document without criteria that say nothing: they are their profile's."""
+    rows = station.criteria.rows
+    if all(row != CriteriaRow(id=row.id) for row in rows):
         return station
-    key = path.split("/")[3]
-    row = next((row for row in station.criteria.rows if row.id == key), None)
-    if row is None or row != CriteriaRow(id=key):
-        return station
-    return remove(station, f"{_CRITERIA}/{key}")
+    kept = tuple(row for row in rows if row != CriteriaRow(id=row.id))
+    return _rebuild(_descend(station, _CRITERIA), kept)
 
 
 def put(station: Station, path: str, value: JsonValue) -> Station:
@@ -197,7 +195,8 @@ def put(station: Station, path: str, value: JsonValue) -> Station:
     old = way[-1][0]
     if new is old or (type(new) is type(old) and new == old):
         return station
-    return _without_empty_criteria(_rebuild(way, new), path)
+    changed = _rebuild(way, new)
+    return without_empty_criteria(changed) if path.startswith(_CRITERIA) else changed
 
 
 def all_ids(station: Station) -> set[str]:

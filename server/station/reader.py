@@ -12,6 +12,7 @@ from pydantic import JsonValue, ValidationError
 from server.station.canonical import nfc
 from server.station.faults import BadStation, Fault, quoted
 from server.station.fields import find
+from server.station.paths import without_empty_criteria
 from server.station.refusals import faults_of, path_of_loc
 from server.station.station import FORMAT, VERSION, Station
 from server.station.upgrades import Tree, upgraded
@@ -40,7 +41,7 @@ def read_station(data: bytes) -> Station:
     tree = upgraded(tree, _version(tree))
     found: list[Fault] = []
     try:
-        station = Station.model_validate_json(json.dumps(tree))
+        station = without_empty_criteria(Station.model_validate_json(json.dumps(tree)))
     except ValidationError as error:
         found += faults_of(error, tree)
         found += _faults_of_the_rest(tree, error)

@@ -69,7 +69,7 @@ class Answer(Record):
     """The engineer's answer to a finding; it never hides the finding."""
 
     id: str
-    finding: Annotated[str, Entry("Finding answered", "summary")]
+    finding: Annotated[str, Entry("Finding answered", "summary")] = ""
     text: Annotated[str, Entry("Answer", "summary", "", long=True)] = ""
 
 
@@ -77,7 +77,7 @@ class MemoNote(Record):
     """A paragraph of the engineer's in a section of the memo."""
 
     id: str
-    section: Annotated[str, Entry("Section of the memo", "memo")]
+    section: Annotated[str, Entry("Section of the memo", "memo")] = ""
     text: Annotated[str, Entry("Note", "memo", "", long=True)] = ""
 
 

@@ -216,9 +216,8 @@ class _Check:
             return
         for hour, factor in enumerate(value):
             if not 0 <= factor <= _LARGEST_FACTOR:
-                self.add(node, path, number(factor), "0 to 20",
-                         f"must be between 0 and 20; {number(factor)} was given for hour {hour}.",
-                )  # fmt: skip
+                tail = f"must be between 0 and 20; {number(factor)} was given for hour {hour}."
+                self.add(node, path, number(factor), "0 to 20", tail)
 
     def reference(self, node: Node, path: str, value: object) -> None:
         if isinstance(value, str):
