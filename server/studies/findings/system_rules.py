@@ -59,7 +59,7 @@ SYSTEM_RULES: tuple[Rule, ...] = (
          (5, "1"), (5, "1"), "common_practice", "", "supply", 0),
     rule("flow-test-drop-min", "Pressure drop of a flow test, of its static pressure", D.RATIO,
          "at_least",
-         (25, "%"), (25, "%"), "published", "NFPA 291", "supply", 0),
+         (25, "%"), (25, "%"), "published", "NFPA 291-2010 4.3.6 as quoted", "supply", 0),
     rule("flow-test-extrapolation-max", "Design flow over test flow", D.NUMBER, "at_most",
          (1.25, "1"), (1.25, "1"), "common_practice", "", "supply", 2),
     rule("flow-test-scatter-max", "Distance of a compared flow test from the basis",
