@@ -141,10 +141,10 @@ def hold_head(
         return np.where(masked, np.nan, values).reshape(shape)
 
     def slots(values: BoolArray) -> BoolArray:
-        return values[:, kind_of].reshape(*shape, -1) & mask
+        return values[:, kind_of].reshape(*shape, kind_of.size) & mask
 
     stuck = np.stack([k.cannot_start(root.u) for k in kinds], axis=1) & (kind_flow > 0)
-    leg_flow = np.where(mask, kind_flow[:, kind_of].reshape(*shape, -1), 0.0)
+    leg_flow = np.where(mask, kind_flow[:, kind_of].reshape(*shape, kind_of.size), 0.0)
     return HoldResult(
         state=state.reshape(shape),
         speed_limit=limit.reshape(shape),

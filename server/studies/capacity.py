@@ -1,8 +1,8 @@
 """The largest flow of some units at top speed that still meets a requirement.
 
-Read along y = head/speed^2, in which the flow of the set is explicit: as y rises the flow falls and
-every pressure rises, so each limit is one root, and the smallest flow over the limits governs.
-Nameplates are never added.
+Read along y = head/speed^2, in which the flow of the set is explicit: as y rises the flow falls
+and every pressure rises, so each limit is one root, and the smallest flow over the limits
+governs. Nameplates are never added.
 """
 
 from collections.abc import Sequence
@@ -56,12 +56,12 @@ def capacities(
     shape = (units.count.shape[0], len(names))
 
     def short(y: Floats) -> Floats:
-        """Return what is asked less what is had, falling with y; a limit not known never binds."""
+        """Return what is asked less what is had; a limit not known never binds."""
         return -np.nan_to_num(_excess(of, limits, units, asked, y), nan=LARGE, posinf=LARGE)
 
     low = np.array(np.broadcast_to(units.last_head[:, None], shape))
     high = np.array(np.broadcast_to(units.peak_head[:, None], shape))
-    # where no root lies between, the limit binds at once (y at the peak) or never (at the last row)
+    # without a root between, the limit binds at once (y at the peak) or never (at the last row)
     found = falling_root(short, low, high)
     is_asked = np.isfinite(np.pad(asked.least, ((0, 0), (0, len(SUCTION_LIMITS)))))
     unknown = is_asked & (found.at_low <= -LARGE)
@@ -138,7 +138,7 @@ def _npsh_excess(
 def _least(
     end: float, flow: Floats, free: Flags, names: Sequence[str]
 ) -> tuple[float, str, int | None]:
-    """Return the smallest limit, its name and place; the end of the curve where none is before."""
+    """Return the smallest limit, its name and place; the end of the curve if none is before."""
     before = np.where(free, np.inf, flow)
     at = int(np.argmin(before))
     return (

@@ -1,8 +1,8 @@
 """Cases: every scenario in use at low, normal and high supply, as arrays.
 
 "The largest unit" is the one with the largest best-efficiency flow (last-row flow where a
-best-efficiency flow is not known for all); among equals the last in slot order, so that a standby
-itself counts as the missing one and the duty units keep their places.
+best-efficiency flow is not known for all); among equals the last in slot order, so that a
+standby itself counts as the missing one and the duty units keep their places.
 """
 
 from collections.abc import Sequence
@@ -101,7 +101,7 @@ def may_run(
 ) -> tuple[tuple[int, ...], tuple[int, ...]]:
     """Return the main units and the jockeys that may run, with one unit out or none.
 
-    A standby never adds to the duty units: the first one left takes the place of a duty unit out.
+    A standby never adds to the duty units: the first one left takes the place of one out.
     """
     left = [i for i in installed if i != out]
     mains = [i for i in left if slots[i].facts.role == "duty"]

@@ -1,12 +1,12 @@
-"""Which combination runs: the rule "fewest units", one answer for all supply states of a scenario.
+"""Which combination runs: the rule "fewest units", one answer for all states of a scenario.
 
 Decision. Combinations are looked at by number of units, then jockeys before main units, then
 slot order. The first that
- 0 holds the set point with every unit inside its preferred region, at low, normal and high supply;
+ 0 holds the set point with every unit inside its preferred region, at all three supply states;
  1 else holds it with every unit inside the maker's allowable region at all three;
  2 else holds it at all three, before the end of the curve and within the speed limits;
- 3 else comes nearest: fewest supply states past the end of a curve, least pressure missing at the
-   worst state, least pressure in excess, largest flow at the end of the curve.
+ 3 else comes nearest: fewest supply states past the end of a curve, least pressure missing at
+   the worst state, least pressure in excess, largest flow at the end of the curve.
 A combination with a unit held shut in any state is never chosen, nor one whose state cannot be
 told. Supply states that are not stated are left out of "all". One set for all states, because
 the operator switches by flow and does not know the state of the supply.
@@ -97,7 +97,7 @@ def choose(
 
 
 def _all_inside(share: Floats, limits: Floats, combinations: Flags) -> Flags:
-    """Return where every running unit lies inside its limits, ends inside; unknown is not inside."""
+    """Return where every running unit lies inside its limits; unknown is not inside."""
     within = (share >= limits[:, 0]) & (share <= limits[:, 1])
     return np.asarray(np.all(within | ~combinations, axis=2), dtype=np.bool_)
 

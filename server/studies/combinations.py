@@ -1,8 +1,8 @@
 """Running combinations: the distinct on/off masks of the slots that may run together.
 
 Identical slots (same pump, curve and leg) are counted once: n of them are the first n in slot
-order. A jockey never runs with a main unit. The order is by number of units, then jockeys before
-main units, then slot order: the order in which "fewest units" looks at them.
+order. A jockey never runs with a main unit. The order is by number of units, then jockeys
+before main units, then slot order: the order in which "fewest units" looks at them.
 """
 
 from collections.abc import Iterable, Sequence

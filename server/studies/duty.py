@@ -1,6 +1,7 @@
 """The duty of one set in all its cases: what runs, at which speed, flow, pressure and power."""
 
 from dataclasses import fields, is_dataclass
+from hashlib import sha256
 
 import numpy as np
 
@@ -21,6 +22,19 @@ from server.studies.shapes import Stamp
 from server.studies.system_heads import SystemHeads, point_pressures, system_heads
 
 NAME, VERSION = "duty", 1
+READ = (
+    "site",
+    "supply",
+    "suction_line",
+    "legs",
+    "discharge_main",
+    "zone",
+    "horizons",
+    "fires",
+    "scenarios",
+    "pumps",
+    "sets",
+)
 
 
 def duty(
@@ -47,13 +61,24 @@ def duty(
     lowered = lower(station, pump_set_id, limits)
     if isinstance(lowered, NotSolved):
         return lowered
-    stamp = Stamp(study=NAME, study_version=VERSION, program=__version__, document=document_hash,
-                  inputs="")  # fmt: skip
+    stamp = Stamp(
+        study=NAME,
+        study_version=VERSION,
+        program=__version__,
+        document=document_hash,
+        inputs=_inputs_hash(station, limits),
+    )
     return duty_of(lowered, limits, stamp)
 
 
+def _inputs_hash(station: Station, limits: StudyLimits) -> str:
+    """Return the hash of the parts of the document that the study reads, and of its limits."""
+    read = station.model_dump_json(include=set(READ))
+    return sha256(f"{read}{limits}".encode()).hexdigest()
+
+
 def duty_of(of: LoweredSet, limits: StudyLimits, stamp: Stamp) -> DutyResult:
-    """Return the duty of a lowered set: every scenario, supply state and combination in one pass."""
+    """Return the duty of a lowered set: every case and combination in one pass."""
     cases = cases_of(of)
     heads = system_heads(of, cases.draw)
     masks, available = combinations_of(of.slots, cases.running, cases.jockeys)
@@ -78,10 +103,16 @@ def _only_available(states: SetStates, available: Flags) -> SetStates:
 
 
 def _result(
-    of: LoweredSet, limits: StudyLimits, stamp: Stamp, cases: Cases, heads: SystemHeads,
-    masks: tuple[Mask, ...], available: Flags, combinations: Flags,
+    of: LoweredSet,
+    limits: StudyLimits,
+    stamp: Stamp,
+    cases: Cases,
+    heads: SystemHeads,
+    masks: tuple[Mask, ...],
+    available: Flags,
+    combinations: Flags,
     states: SetStates,
-) -> DutyResult:  # fmt: skip
+) -> DutyResult:
     """Put the result together: pressures follow from grades, the choice from all of it."""
     water, levels = of.water, of.control
     flow = cases.draw.flow
@@ -94,10 +125,16 @@ def _result(
     end = flow_at_end(of, units)
     slot = states.slot
     chosen, choice_class = choose(
-        of.slots, available=available, known=np.isfinite(heads.required_head), state=states.state,
-        share=slot["best_efficiency_share"], combinations=combinations, held_pressure=held,
-        set_point=levels.pressure, flow_at_end=end,
-    )  # fmt: skip
+        of.slots,
+        available=available,
+        known=np.isfinite(heads.required_head),
+        state=states.state,
+        share=slot["best_efficiency_share"],
+        combinations=combinations,
+        held_pressure=held,
+        set_point=levels.pressure,
+        flow_at_end=end,
+    )
     velocity = of.route.velocities(flow)
     vapour = (water.atmosphere - water.vapour_pressure) / water.weight
     available_head = (

@@ -1,7 +1,8 @@
 """The duty study's result: every case, every running combination, every slot.
 
-Axes: C cases, K running combinations, N slots, P named points. Arrays are read-only SI floats; a number
-without meaning is NaN and masked by `state` (never shown; null with a reason at every edge).
+Axes: C cases, K running combinations, N slots, P named points. Arrays are read-only SI floats;
+a number without meaning is NaN and masked by `state` (never shown; null with a reason at every
+edge).
 """
 
 from dataclasses import dataclass, field
@@ -74,7 +75,7 @@ class PointFacts:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class GradeLine:
-    """Grade line at stations along the way of one (case, combination): for the strip and the memo."""
+    """Grade line at stations along the way of one (case, combination)."""
 
     label: tuple[str, ...]
     elevation: tuple[float | None, ...]
@@ -84,7 +85,7 @@ class GradeLine:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class DutyResult:
-    """Duty of one set in all its cases. The scenario cases come first, three supply states each."""
+    """Duty of one set in all its cases: three supply states of each scenario."""
 
     stamp: Stamp
     pump_set: str
@@ -95,7 +96,8 @@ class DutyResult:
     lowest_speed: float
     highest_speed: float
     density: float
-    lowest_pressure: float | None  # [Pa] gauge, -(p_atm - p_v): below it no water; None without an altitude
+    # [Pa] gauge, -(p_atm - p_v), below which there is no water; None without an altitude
+    lowest_pressure: float | None
     cases: tuple[Case, ...]  # C
     shown: NDArray[np.bool_]  # (C,) the scenario's own supply state
     is_fire: NDArray[np.bool_]  # (C,) judged by the fire requirements
@@ -105,7 +107,7 @@ class DutyResult:
     combinations: NDArray[np.bool_]  # (K, N)
     available: NDArray[np.bool_]  # (C, K) installed by the horizon, not out, allowed by role
     chosen: NDArray[np.intp]  # (C,) index into K, -1 none
-    choice_class: NDArray[np.int8]  # (C,) 0 inside POR in all states, 1 AOR, 2 holds, 3 at limit, 4 none
+    choice_class: NDArray[np.int8]  # (C,) 0 inside POR, 1 AOR, 2 holds, 3 at limit, 4 none
     state: NDArray[np.int8]  # (C, K) server.hydraulics.states.State
     flow: Floats  # (C, K) [m3/s]
     station_head: Floats  # (C, K) manifold to manifold [m]
@@ -114,7 +116,7 @@ class DutyResult:
     held_pressure: Floats  # (C, K) at the held point or gauge [Pa]
     speed: Floats  # (C, K, N) ratio
     leg_flow: Floats  # (C, K, N) [m3/s]
-    best_efficiency_share: Floats  # (C, K, N) flow over best-efficiency flow at the running speed
+    best_efficiency_share: Floats  # (C, K, N) of best-efficiency flow at the running speed
     efficiency: Floats  # (C, K, N) ratio
     npsh_available: Floats  # (C, K, N) [m]
     npsh_required: Floats  # (C, K, N) [m]
@@ -135,7 +137,7 @@ class DutyResult:
     discharge_branch_velocity: Floats  # (C, K, N) [m/s]
     pressure_per_speed: Floats  # (C, K) change of the held pressure for 1 % of speed [Pa]
     zero_flow_speed: Floats  # (C, K) speed that holds the set point at no flow, ratio
-    flow_at_end: Floats  # (C, K) flow at which the first pump reaches its last row, top speed [m3/s]
+    flow_at_end: Floats  # (C, K) first pump at its last row, top speed [m3/s]
     energy_residual: Floats  # (C, K) [m]
     mass_residual: Floats  # (C, K) [m3/s]
     made: "MadeCases"
@@ -159,16 +161,17 @@ class StationOff:
     """No pump running: the supply alone, per scenario and supply state."""
 
     cases: tuple[Case, ...]
-    arithmetic_pressure: Floats  # (C, P) [Pa] may be below a vacuum: never shown as a pressure then
+    arithmetic_pressure: Floats  # (C, P) [Pa] below a vacuum never shown as a pressure
     drains: NDArray[np.bool_]  # (C, P) below -(p_atm - p_v): no water
     path: str  # "bypass", or "through_pumps": none is entered, the figure is an upper bound
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class AfterTrip:
-    """One running unit lost before the standby has started, the rest as the control drives them.
+    """One running unit lost before the standby has started.
 
-    They stand at top speed wherever the set point cannot be held without the lost unit.
+    The rest stand as the control drives them: at top speed wherever the set point cannot be
+    held without the lost unit.
     """
 
     cases: tuple[Case, ...]
@@ -188,7 +191,7 @@ class Handover:
     more: tuple[int, ...]  # combination index after
     fewer_end: Floats  # (H, 3) flow at which the fewer leave their preferred region [m3/s]
     more_start: Floats  # (H, 3) flow at which the more enter theirs [m3/s]
-    preferred_start: Floats  # (K, 3) flow at which all units of a combination are inside theirs [m3/s]
+    preferred_start: Floats  # (K, 3) all units of a combination inside theirs from [m3/s]
     preferred_end: Floats  # (K, 3) flow at which the first of them leaves it again [m3/s]
 
 
@@ -203,11 +206,12 @@ class FirmCapacity:
     by_head: float  # [m3/s] limited by head, curve end
     by_head_limit: str  # "point:<id>", "curve_end", "no_unit"
     by_all: float  # [m3/s] also by suction limits and NPSH margin
-    by_all_limit: str  # "connection", "suction_gauge", "npsh", "point:<id>", "curve_end", "no_unit"
+    by_all_limit: str  # as above, and "connection", "suction_gauge", "npsh"
     unit_out: str  # slot id
     all_running: float  # [m3/s] no unit out, limited by head
     best_efficiency_share: float  # largest of the units left, at by_head
-    runs_out: int | None  # year in which the growing demand passes by_all, linear between horizons; None: not within them
+    # year in which the demand, linear between horizons, passes by_all; None: not within them
+    runs_out: int | None
     not_counted: tuple[str, ...] = ()  # limits, named as above, for which a figure is absent
 
 

@@ -39,7 +39,7 @@ class Requirement:
 
 
 def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ...]:
-    """Return the firm capacity of each horizon for peak hour and for each fire with its demand."""
+    """Return the firm capacity of each horizon for peak hour and for each fire."""
     if not of.route.knows("aged"):
         return ()
     asked = [one for one in requirements(of, limits) if not np.isnan(one.shift)]
@@ -59,14 +59,21 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
         by_head = min((pair[0] for pair in without), key=lambda capacity: capacity.by_head)
         found.append(
             FirmCapacity(
-                requirement=one.name, fire=one.fire, horizon=one.horizon.id,
-                required_flow=one.required_flow, by_head=by_head.by_head,
-                by_head_limit=by_head.by_head_limit, by_all=worst.by_all,
-                by_all_limit=worst.by_all_limit, unit_out=of.slots[out].facts.id,
-                all_running=left(installed).by_head, best_efficiency_share=by_head.share,
-                runs_out=_runs_out(of, one, worst.by_all), not_counted=worst.not_counted,
+                requirement=one.name,
+                fire=one.fire,
+                horizon=one.horizon.id,
+                required_flow=one.required_flow,
+                by_head=by_head.by_head,
+                by_head_limit=by_head.by_head_limit,
+                by_all=worst.by_all,
+                by_all_limit=worst.by_all_limit,
+                unit_out=of.slots[out].facts.id,
+                all_running=left(installed).by_head,
+                best_efficiency_share=by_head.share,
+                runs_out=_runs_out(of, one, worst.by_all),
+                not_counted=worst.not_counted,
             )
-        )  # fmt: skip
+        )
     return tuple(found)
 
 
@@ -110,16 +117,30 @@ def requirements(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]
         shift = float(shifts(of, horizon.low_shift)[0])
         if horizon.peak_hour is not None:
             rows.append(
-                Requirement(name=PEAK_HOUR, fire=None, horizon=horizon,
-                            required_flow=horizon.peak_hour, fire_flow=0.0, fire_point=-1,
-                            shift=shift, least=normal)
-            )  # fmt: skip
+                Requirement(
+                    name=PEAK_HOUR,
+                    fire=None,
+                    horizon=horizon,
+                    required_flow=horizon.peak_hour,
+                    fire_flow=0.0,
+                    fire_point=-1,
+                    shift=shift,
+                    least=normal,
+                )
+            )
         for fire, domestic, flow, point in horizon.fires:
             rows.append(
-                Requirement(name=FIRE, fire=fire, horizon=horizon, required_flow=domestic + flow,
-                            fire_flow=flow, fire_point=point, shift=shift,
-                            least=_fire_pressures(of, limits, point))
-            )  # fmt: skip
+                Requirement(
+                    name=FIRE,
+                    fire=fire,
+                    horizon=horizon,
+                    required_flow=domestic + flow,
+                    fire_flow=flow,
+                    fire_point=point,
+                    shift=shift,
+                    least=_fire_pressures(of, limits, point),
+                )
+            )
     return tuple(rows)
 
 
@@ -143,7 +164,7 @@ def _fire_pressures(of: LoweredSet, limits: StudyLimits, flowing: int) -> Floats
 
 
 def _runs_out(of: LoweredSet, requirement: Requirement, capacity: float) -> int | None:
-    """Return the year in which the demand passes a capacity, growing linearly between horizons."""
+    """Return the year in which the demand, linear between horizons, passes a capacity."""
     path = []
     for horizon in of.growth:
         asked = horizon.peak_hour

@@ -1,4 +1,4 @@
-"""The cases that are always made besides the scenarios: shut zone, station off, trip, hand-over."""
+"""Cases always made besides the scenarios: shut zone, station off, trip, hand-over."""
 
 from collections.abc import Sequence
 
@@ -144,7 +144,7 @@ def handover(of: LoweredSet, units: CommonSpeed, masks: Sequence[Mask]) -> Hando
 
 
 def steps(of: LoweredSet, masks: Sequence[Mask]) -> tuple[int, ...]:
-    """Return the combinations passed through as the flow grows: jockeys, then 1, 2, ... mains."""
+    """Return the combinations passed through as the flow grows: jockeys, then mains."""
     first: dict[tuple[bool, int], int] = {}
     for k, mask in enumerate(masks):
         is_main = of.slots[mask[0]].facts.role != "jockey"

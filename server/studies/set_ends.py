@@ -1,7 +1,7 @@
 """Where the states of a set end: the last row, no flow, the ends of the preferred region.
 
-Units at one common speed share y = head/speed^2; a set's flow over speed, X(y), is explicit in it
-(see `server.hydraulics.leg_curve`). Every end is a y, or a speed at a known y and X.
+Units at one common speed share y = head/speed^2; a set's flow over speed, X(y), is explicit in
+it (see `server.hydraulics.leg_curve`). Every end is a y, or a speed at a known y and X.
 """
 
 from collections.abc import Sequence
@@ -23,7 +23,7 @@ class CommonSpeed:
     count: Floats  # (M, T) how many of each
 
     def kind_flows(self, y: Floats) -> tuple[Floats, ...]:
-        """Return the flow over speed of one leg of each kind, shape of y; 0 of a kind not there."""
+        """Return the flow over speed of one leg of each kind; 0 of a kind not there."""
         there = [bool(np.any(self.count[:, t])) for t in range(len(self.legs))]
         return tuple(
             leg.largest_flow(y) if runs else np.zeros(y.shape)
@@ -69,7 +69,7 @@ def at_common_speed(of: LoweredSet, combinations: Flags) -> CommonSpeed:
 
 
 def flow_at_end(of: LoweredSet, units: CommonSpeed) -> Floats:
-    """Return the flow at top speed at which the first unit reaches its last row, (M,) [m3/s]."""
+    """Return the flow at top speed with the first unit at its last row, (M,) [m3/s]."""
     return of.control.highest_speed * units.total(units.last_head)
 
 
@@ -136,7 +136,7 @@ def preferred_flows(
 
 
 def _region_heads(of: LoweredSet, units: CommonSpeed) -> Floats:
-    """Return y where the last unit enters its preferred region and where the first leaves it."""
+    """Return y where the last unit enters its preferred region and the first leaves."""
     enters, leaves = [], []
     for t, leg in enumerate(units.legs):
         low, high = next(

@@ -59,6 +59,8 @@ def solve_states(
     state[_valve_stays_shut(of, combinations, held.speed, held.head, held.leg_flow)] = (
         State.HELD_SHUT
     )
+    # held only because it already runs: it could not be started into that state
+    state[held.cannot_start.any(axis=2) & (flow > 0)[:, None]] = State.HELD_SHUT
     state[unknown] = State.NOT_AVAILABLE
     blank = np.where(unknown, np.nan, 1.0)[:, None]
     speed = held.speed * blank
@@ -115,7 +117,7 @@ def _readings(
 
 
 def unit_readings(of: LoweredSet, unit: int, flow: Floats, speed: Floats) -> dict[str, Floats]:
-    """Return what a unit does at a flow and a speed: the quantities of PER_SLOT, shape (...)."""
+    """Return the quantities of PER_SLOT of a unit at a flow and a speed, shape (...)."""
     one = of.units[unit]
     best = one.curve.best
     shaft = affinity.shaft_power(one.curve, flow, speed=speed, density=of.water.density)

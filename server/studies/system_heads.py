@@ -1,4 +1,4 @@
-"""Grades along the way from the supply to the customer, and the head that the control asks for."""
+"""Grades from the supply to the customer, and the head that the control asks for."""
 
 from dataclasses import dataclass
 
@@ -39,7 +39,7 @@ class SystemHeads:
 
 
 def system_heads(of: LoweredSet, draw: Draw) -> SystemHeads:
-    """Return the grades on the way and the head, manifold to manifold, that holds the set point.
+    """Return the grades on the way and the head that holds the set point.
 
     In a closed zone the flow is imposed, so all of this is known before any pump is.
     """

@@ -1,9 +1,10 @@
 """The demo station of the closed zone is reproduced, cell by cell.
 
-Sources: `closed_zone_expected.csv` is the table of expected results of the demo's page, "computed"
-there by an independent scalar calculator. A cell is met within 0.5 % (per cent of best-efficiency
-flow within 1 point), its own printed rounding on top; `scalar_calculator.py`, a calculator of the
-same kind written again here, gives the figures unrounded and is met within 0.5 % without allowance.
+Sources: `closed_zone_expected.csv` is the table of expected results of the demo's page,
+"computed" there by an independent scalar calculator. A cell is met within 0.5 % (per cent of
+best-efficiency flow within 1 point), its own printed rounding on top; `scalar_calculator.py`, a
+calculator of the same kind written again here, gives the figures unrounded and is met within
+0.5 % without allowance.
 """
 
 import csv
@@ -107,7 +108,9 @@ def test_hydrant_and_street_main_in_the_fires_are_the_demos() -> None:
     opening = [case_index(result, "sc-f1re9j", supply) for supply in SUPPLIES]
     hydrant = [result.point_pressure[c, result.chosen[c], 1] / 1e3 for c in opening]
     assert hydrant == pytest.approx([301, 301, 301], rel=0.005)
-    assert result.connection_pressure[opening] / 1e3 == pytest.approx([174, 214, 254], rel=0.005)
+    assert result.connection_pressure[opening] / 1e3 == pytest.approx(
+        [174, 214, 254], rel=0.005
+    )
 
 
 def test_net_suction_head_in_the_design_fire_is_the_demos() -> None:

@@ -94,9 +94,11 @@ NOT_YET = [
     (f"{SLOT}/drive", "fixed"),
     (f"{CURVE}/fit", "smoothed"),
     (f"{CONTROL}/running_rule", "least_power"),
-    *[(f"{CONTROL}/kind", kind) for kind in
-      ("flow_compensated", "fixed_speed", "reducing_valve", "levels", "held_flow")],
-]  # fmt: skip
+    *[
+        (f"{CONTROL}/kind", kind)
+        for kind in ("flow_compensated", "fixed_speed", "reducing_valve", "levels", "held_flow")
+    ],
+]
 
 
 def absent(result: DutyResult) -> dict[str, str]:
@@ -163,18 +165,38 @@ def test_a_set_that_is_not_there_is_an_error_of_the_caller() -> None:
 @pytest.mark.parametrize(
     ("path", "value", "field", "reason"),
     [
-        (f"{TEST}/residual_pressure", quantity(360, "kPa"), f"{TEST}/residual_pressure",
-         "residual_not_below_static"),
-        (f"{CURVE}/table", {"units": {"flow": "L/s", "head": "m"},
-                            "rows": [[0, 50], [5, 45], [5, 40]]}, f"{CURVE}/table", "flows_equal"),
-        (f"{CURVE}/best_efficiency_flow", quantity(40, "L/s"), f"{CURVE}/best_efficiency_flow",
-         "bep_outside_rows"),
-        ("/discharge_main/reaches/rc-d2g7pz/roughness/aged", quantity(19, "mm"),
-         "/discharge_main/reaches/rc-d2g7pz/roughness/aged", "outside_friction_law"),
-        (f"{CONTROL}/lowest_speed", quantity(110, "%"), f"{CONTROL}/lowest_speed",
-         "lowest_speed_above_highest"),
+        (
+            f"{TEST}/residual_pressure",
+            quantity(360, "kPa"),
+            f"{TEST}/residual_pressure",
+            "residual_not_below_static",
+        ),
+        (
+            f"{CURVE}/table",
+            {"units": {"flow": "L/s", "head": "m"}, "rows": [[0, 50], [5, 45], [5, 40]]},
+            f"{CURVE}/table",
+            "flows_equal",
+        ),
+        (
+            f"{CURVE}/best_efficiency_flow",
+            quantity(40, "L/s"),
+            f"{CURVE}/best_efficiency_flow",
+            "bep_outside_rows",
+        ),
+        (
+            "/discharge_main/reaches/rc-d2g7pz/roughness/aged",
+            quantity(19, "mm"),
+            "/discharge_main/reaches/rc-d2g7pz/roughness/aged",
+            "outside_friction_law",
+        ),
+        (
+            f"{CONTROL}/lowest_speed",
+            quantity(110, "%"),
+            f"{CONTROL}/lowest_speed",
+            "lowest_speed_above_highest",
+        ),
     ],
-)  # fmt: skip
+)
 def test_what_the_physics_refuses_is_named_at_its_field(
     path: str, value: Any, field: str, reason: str
 ) -> None:

@@ -1,4 +1,4 @@
-"""From the document to SI arrays and hydraulics objects: the only place that reads entered units."""
+"""From the document to SI arrays and physics: the only place that reads entered units."""
 
 from collections.abc import Iterable
 
@@ -6,6 +6,7 @@ from server.station.station import Station
 from server.studies.duty_result import Missing, NotSolved
 from server.studies.limits import StudyLimits
 from server.studies.lowering import pumps, supply, zone
+from server.studies.lowering.control import control as control_of
 from server.studies.lowering.lowered import LoweredSet, Scenario
 from server.studies.lowering.needs import Needs
 from server.studies.lowering.pipes import route
@@ -39,7 +40,7 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     points = zone.points(station, needs)
     scenarios = zone.scenarios(station, needs)
     way = route(station, _ages(scenarios), needs)
-    control = pumps.control(station, pump_set, points.facts, limits, needs)
+    control = control_of(station, pump_set, points.facts, limits, needs)
     units, slots = pumps.units_and_slots(
         station, pump_set, limits, control.highest_speed, of_water.density, needs
     )
@@ -48,11 +49,21 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     if needs.stops or of_supply is None:
         return NotSolved(pump_set_id, tuple(needs.stops))
     return LoweredSet(
-        pump_set=pump_set_id, water=of_water, supply=of_supply, route=way,
-        suction_reaches=len(station.suction_line.reaches), points=points, units=units, slots=slots, control=control, eye_level=eye,
-        scenarios=scenarios, growth=growth, bypass=of_bypass,
+        pump_set=pump_set_id,
+        water=of_water,
+        supply=of_supply,
+        route=way,
+        suction_reaches=len(station.suction_line.reaches),
+        points=points,
+        units=units,
+        slots=slots,
+        control=control,
+        eye_level=eye,
+        scenarios=scenarios,
+        growth=growth,
+        bypass=of_bypass,
         needs_missing=_pairs(needs.leaves_out),
-    )  # fmt: skip
+    )
 
 
 def _ages(scenarios: Iterable[Scenario]) -> set[PipeAge]:

@@ -51,7 +51,7 @@ class Supply:
     suction_gauge_level: float  # nan when absent [m]
 
     def grade(self, draw: ArrayLike, shift: ArrayLike) -> Floats:
-        """Return the grade at the connection for a draw and a state's shift, nan without one."""
+        """Return the grade at the connection for a draw and a state's shift."""
         moved = np.asarray(shift, dtype=np.float64)
         known = np.isfinite(moved)
         grade = self.source.grade(
@@ -73,7 +73,7 @@ class Line:
         """Return the head lost in each reach at the age that each flow asks for, (..., R)."""
         old = np.asarray(aged, dtype=np.bool_)
         at = np.asarray(flow, dtype=np.float64)
-        # with one age only the caller has asked `knows`, or the flow is zero and nothing is lost
+        # with one age only, the caller has asked `knows`, or nothing flows and nothing is lost
         if not self.new or (self.aged and bool(old.all())):
             return _lost(self.aged, at, viscosity)
         if not self.aged or not bool(old.any()):

@@ -1,4 +1,4 @@
-"""What a study needs of the document: the fields that are absent are gathered, never guessed."""
+"""What a study needs of the document: absent fields are gathered, never guessed."""
 
 from dataclasses import dataclass, field
 
@@ -13,7 +13,7 @@ NAN = float("nan")
 
 @dataclass(slots=True)
 class Needs:
-    """Gathers absent fields: those that stop the study, and those that only leave a part out."""
+    """Gathers absent fields: those that stop the study, those that leave a part out."""
 
     stops: list[Missing] = field(default_factory=list)
     leaves_out: list[Missing] = field(default_factory=list)

@@ -46,7 +46,7 @@ def route(station: Station, ages: Iterable[PipeAge], needs: Needs) -> Line:
     shapes = [_shape(path, reach, needs) for path, reach in reaches]
     walls: dict[PipeAge, tuple[Conduit, ...]] = {"new": (), "aged": ()}
     for age in walls:
-        # the made cases stand on aged pipes: without them they are left out, the scenarios are not
+        # firm capacity stands on aged pipes: without them it is left out, the scenarios are not
         say = needs.stop if age in used else needs.leave_out if age == "aged" else _nothing
         resistances = [_wall(path, reach, age, say) for path, reach in reaches]
         columns = np.array([[*s, w] for s, w in zip(shapes, resistances, strict=True)])
@@ -120,7 +120,7 @@ def _nothing(path: str) -> None:
 
 
 def _wall(path: str, reach: Reach, age: PipeAge, say: Callable[[str], None]) -> float:
-    """Return roughness [m] or C of a reach at an age, nan when absent, which is said if aged."""
+    """Return roughness [m] or C of a reach at an age, nan and said when absent."""
     wall = reach.roughness
     if wall.law == "hazen_williams":
         coefficient = wall.coefficient_aged if age == "aged" else wall.coefficient_new

@@ -1,4 +1,4 @@
-"""Slots, their pumps and legs, and the control of a set from the document."""
+"""Slots of a set with their pumps and legs, from the document."""
 
 import math
 from functools import lru_cache
@@ -9,21 +9,19 @@ from server.hydraulics.errors import CurveRefused
 from server.hydraulics.leg_curve import LegCurve, leg_curve
 from server.hydraulics.pump_curve import PumpCurve, pump_curve
 from server.station.conduit import Leg
-from server.station.entry import Quantity
 from server.station.pump import Curve, CurveTable, Pump
 from server.station.pump_set import PumpSet
 from server.station.pump_set import Slot as EnteredSlot
 from server.station.station import Station
-from server.studies.duty_result import PointFacts, SlotFacts
+from server.studies.duty_result import SlotFacts
 from server.studies.limits import StudyLimits
-from server.studies.lowering.lowered import Control, Slot, Unit
-from server.studies.lowering.needs import NAN, NOT_IN_THIS_VERSION, Needs, si_or_none
+from server.studies.lowering.lowered import Slot, Unit
+from server.studies.lowering.needs import NOT_IN_THIS_VERSION, Needs, si_or_none
 from server.studies.lowering.pipes import branches
 from server.units import to_si
 
 DRIVE_EFFICIENCY = 0.97  # default where none is entered, criteria.md [-]
 NPSH_EXPONENT = 2.0
-HELD_KINDS = ("zone_point_pressure", "discharge_pressure")
 COLUMNS = ("flow", "head", "efficiency", "shaft_power", "npsh_required")
 MOST_COMBINATIONS = 512  # numbers running that are looked at
 KEPT = 64  # curves of pumps kept between lowerings
@@ -31,9 +29,13 @@ POWER_READINGS = 241  # readings of a curve for its largest power
 
 
 def units_and_slots(
-    station: Station, pump_set: PumpSet, limits: StudyLimits, highest_speed: float, density: float,
+    station: Station,
+    pump_set: PumpSet,
+    limits: StudyLimits,
+    highest_speed: float,
+    density: float,
     needs: Needs,
-) -> tuple[tuple[Unit, ...], tuple[Slot, ...]]:  # fmt: skip
+) -> tuple[tuple[Unit, ...], tuple[Slot, ...]]:
     """Return the units that stand in the set and its slots, in slot order."""
     base = f"/sets/{pump_set.id}/slots"
     if not pump_set.slots:
@@ -105,12 +107,19 @@ def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
     if lowered is None or not math.isfinite(suction + discharge):
         return None
     return Unit(
-        curve=lowered, leg=_leg(lowered, suction + discharge), suction_coefficient=suction, discharge_coefficient=discharge,
-        suction_bore=suction_bore, discharge_bore=discharge_bore, cracking_head=cracking,
-        full_open_velocity=open_at, full_open_assumed=assumed,
+        curve=lowered,
+        leg=_leg(lowered, suction + discharge),
+        suction_coefficient=suction,
+        discharge_coefficient=discharge,
+        suction_bore=suction_bore,
+        discharge_bore=discharge_bore,
+        cracking_head=cracking,
+        full_open_velocity=open_at,
+        full_open_assumed=assumed,
         npsh_exponent=NPSH_EXPONENT if pump.npsh_exponent is None else pump.npsh_exponent,
-        motor_efficiency=motor, drive_efficiency=drive,
-    )  # fmt: skip
+        motor_efficiency=motor,
+        drive_efficiency=drive,
+    )
 
 
 def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
@@ -140,7 +149,7 @@ def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
 def _fitted(
     table: CurveTable, best_flow: float | None, speed: float, stages: int, eyes: int
 ) -> PumpCurve:
-    """Return the curve through a table; kept, because most edits leave the pumps as they are."""
+    """Return the curve through a table; kept, as most edits leave the pumps alone."""
     columns = _columns(table)
     return pump_curve(
         columns["flow"] or [],
@@ -183,14 +192,23 @@ def _columns(table: CurveTable) -> dict[str, list[float | None] | None]:
 
 
 def _facts(
-    slot: EnteredSlot, pump: Pump, curve: Curve, unit: Unit, limits: StudyLimits,
-    highest_speed: float, density: float,
-) -> SlotFacts:  # fmt: skip
+    slot: EnteredSlot,
+    pump: Pump,
+    curve: Curve,
+    unit: Unit,
+    limits: StudyLimits,
+    highest_speed: float,
+    density: float,
+) -> SlotFacts:
     of = unit.curve
     region = pump.allowable_region
     minimum = si_or_none(pump.minimum_flow)
     return SlotFacts(
-        id=slot.id, title=slot.title, role=slot.role, pump=pump.id, curve=curve.id,
+        id=slot.id,
+        title=slot.title,
+        role=slot.role,
+        pump=pump.id,
+        curve=curve.id,
         best_efficiency_flow=None if of.best is None else of.best.flow,
         best_efficiency=None if of.best is None else of.best.efficiency,
         shutoff_head=of.shutoff_head,
@@ -207,7 +225,7 @@ def _facts(
         rise_to_shutoff=of.rise_to_shutoff,
         suction_bore=unit.suction_bore,
         discharge_bore=unit.discharge_bore,
-    )  # fmt: skip
+    )
 
 
 @lru_cache(maxsize=KEPT)
@@ -218,60 +236,3 @@ def _largest_power(curve: PumpCurve, speed: float, density: float) -> float | No
     if not np.any(np.isfinite(power)):
         return None
     return float(np.nanmax(power)) * speed**3
-
-
-def control(
-    station: Station, pump_set: PumpSet, points: tuple[PointFacts, ...], limits: StudyLimits,
-    needs: Needs,
-) -> Control:  # fmt: skip
-    """Return what the set holds and between which speeds."""
-    path, entered = f"/sets/{pump_set.id}/control", pump_set.control
-    at = -1
-    if entered.kind is None:
-        needs.stop(f"{path}/kind")
-    elif entered.kind not in HELD_KINDS:
-        needs.stop(f"{path}/kind", NOT_IN_THIS_VERSION)
-    if entered.running_rule != "fewest_units":
-        needs.stop(f"{path}/running_rule", NOT_IN_THIS_VERSION)
-    level_path, level = "/site/discharge_gauge_level", station.site.discharge_gauge_level
-    if entered.kind == "discharge_pressure":
-        gauge = needs.must(level_path, level)
-    else:
-        gauge = needs.part(level_path, level)
-        at = _held_point(path, entered.kind, entered.point, points, needs)
-    pressure = (
-        needs.must(f"{path}/pressure", entered.pressure) if entered.kind in HELD_KINDS else NAN
-    )
-    lowest = _speed(entered.lowest_speed, limits.speed_lowest)
-    highest = _speed(entered.highest_speed, limits.speed_highest)
-    if lowest > highest:
-        needs.stop(f"{path}/lowest_speed", "lowest_speed_above_highest")
-    return Control(
-        point=at, pressure=pressure, discharge_gauge_level=gauge,
-        lowest_speed=lowest, highest_speed=highest,
-    )  # fmt: skip
-
-
-def _speed(entered: Quantity | None, criterion: float) -> float:
-    return criterion if entered is None else entered.si
-
-
-def _held_point(
-    path: str,
-    kind: str | None,
-    entered: str | None,
-    points: tuple[PointFacts, ...],
-    needs: Needs,
-) -> int:
-    """Return the index of the point that is held; its elevation and loss must be known."""
-    if kind != "zone_point_pressure":
-        return -1
-    at = next((i for i, point in enumerate(points) if point.id == entered), -1)
-    if at < 0:
-        needs.stop(f"{path}/point")
-        return -1
-    held = f"/zone/points/{points[at].id}/"
-    for missing in tuple(needs.leaves_out):
-        if missing.path.startswith(held) and "/branch/" not in missing.path:
-            needs.stop(missing.path, missing.reason)
-    return at

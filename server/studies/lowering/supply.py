@@ -72,7 +72,7 @@ def supply(station: Station, of: Water, needs: Needs) -> Supply | None:
 def _tested_main(
     tests: tuple[FlowTest, ...], needs: Needs
 ) -> tuple[FlowTestSupply | None, float]:
-    """Return the main by its basis test, or by the fit of several, and the station's own draw."""
+    """Return the main by its basis test or the fit of several, and the station's draw."""
     basis = [test for test in tests if test.use == "basis"]
     if not basis:
         needs.stop("/supply/flow_tests")
@@ -108,7 +108,7 @@ def _tested_main(
 def _grade_line(
     entered: GradeLine, of: Water, needs: Needs
 ) -> tuple[FixedGradeSupply | None, Floats]:
-    """Return the line at its normal level, or the first stated, and the states as shifts of it."""
+    """Return the line at its normal level or the first stated, and the states as shifts."""
     path = "/supply/grade_line"
     levels = np.array([
         needs.part(f"{path}/low", entered.low),

@@ -16,7 +16,7 @@ DemandName = Literal["average_day", "maximum_day", "peak_hour", "minimum_night",
 
 
 def points(station: Station, needs: Needs) -> ZonePoints:
-    """Return the named points; one without elevation or loss stays, with nan for its figures."""
+    """Return the named points; one without elevation or loss stays, with nan."""
     zone = station.zone
     if zone.kind is None:
         needs.stop("/zone/kind")
