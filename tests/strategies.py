@@ -185,3 +185,22 @@ def station_trees(draw: st.DrawFn, items: int = 2) -> Item:
 def stations(items: int = 2) -> st.SearchStrategy[Station]:
     """Well-formed stations."""
     return station_trees(items).map(lambda tree: read_station(json.dumps(tree).encode()))
+
+
+def field_paths(station: Station) -> list[str]:
+    """Return the path of every field of every item that a station has."""
+    found: list[str] = []
+
+    def walk(node: Node, path: str, holder: object) -> None:
+        for name, child in node.children.items():
+            value = getattr(holder, name)
+            if child.kind == "group":
+                walk(child, f"{path}/{name}", value)
+            elif child.kind == "list":
+                for item in value:
+                    walk(child.item, f"{path}/{name}/{item.id}", item)
+            else:
+                found.append(f"{path}/{name}")
+
+    walk(fields.root(), "", station)
+    return found

@@ -26,7 +26,7 @@ from server.station.paths import (
     words,
 )
 from server.station.station import Station
-from tests.strategies import stations, whole_stations
+from tests.strategies import field_paths, stations, whole_stations
 
 ELEVATION = "/zone/points/pt-t3r8nw/elevation"
 MARGIN = "/criteria/rows/npsh-margin"
@@ -242,29 +242,11 @@ def test_an_html_id_leads_back_to_its_path():
 @whole_stations
 @given(stations())
 def test_every_field_can_be_read_as_json_emptied_and_set_again(station):
-    for path in _paths_of_fields(station):
+    for path in field_paths(station):
         value = get_json(station, path)
         emptied = put(station, path, None)
         if fields.kind_of(path) not in ("choice", "flag", "integer"):
             assert put(emptied, path, value) == station
-
-
-def _paths_of_fields(station: Station) -> list[str]:
-    found: list[str] = []
-
-    def walk(node: fields.Node, path: str, holder: object) -> None:
-        for name, child in node.children.items():
-            value = getattr(holder, name)
-            if child.kind == "group":
-                walk(child, f"{path}/{name}", value)
-            elif child.kind == "list":
-                for item in value:
-                    walk(child.item, f"{path}/{name}/{item.id}", item)
-            else:
-                found.append(f"{path}/{name}")
-
-    walk(fields.root(), "", station)
-    return found
 
 
 @whole_stations
