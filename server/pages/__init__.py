@@ -10,6 +10,21 @@ PAGES: tuple[str, ...] = (
     "server.pages.health",
     "server.pages.api",
     "server.pages.api_solve",
+    "server.pages.stations",
+    "server.pages.edits",
+    "server.pages.sources",
+    "server.pages.summary",
+    "server.pages.supply",
+    "server.pages.main_and_zone",
+    "server.pages.demand",
+    "server.pages.pumps",
+    "server.pages.sets",
+    "server.pages.duty",
+    "server.pages.criteria",
+    "server.pages.memo",
+    "server.pages.history",
+    "server.pages.charts",
+    "server.pages.tables",
 )
 
 
