@@ -51,6 +51,20 @@
     }
   }
 
+  // back to what is stored: nothing to send, and nothing refused any more
+  function settle(form) {
+    const line = form.querySelector(".refusal");
+    if (!line || line.querySelector(".hidden")) return;
+    const control = controlOf(form);
+    line.remove();
+    form.closest(".field").classList.remove("refused");
+    control.removeAttribute("aria-invalid");
+    const left = (control.getAttribute("aria-describedby") || "").split(" ").filter((id) => id && id !== `${control.id}--error`);
+    if (left.length) control.setAttribute("aria-describedby", left.join(" "));
+    else control.removeAttribute("aria-describedby");
+    forget(pathOf(form));
+  }
+
   // ---- sending
   document.addEventListener("htmx:configRequest", (event) => {
     const form = event.target.closest("form.edit, form.act");
@@ -66,7 +80,9 @@
     const button = event.detail.requestConfig.triggeringEvent?.submitter;
     const another = button && (button.name !== "op" || button.value !== "set");
     // Enter fires change and submit; the second has nothing new to say
-    if (!another && !isDirty(control)) event.preventDefault();
+    if (another || isDirty(control)) return;
+    event.preventDefault();
+    settle(form);
   });
 
   // ---- receiving

@@ -52,7 +52,7 @@
     form.querySelector("[name=item]").value = row.dataset.item;
     form.querySelector("[name=columns]").value = table.dataset.columns.split(" ").slice(column).join(" ");
     form.querySelector("[name=rows]").value = text;
-    htmx.trigger(form, "submit");
+    form.requestSubmit();
     return true;
   }
 

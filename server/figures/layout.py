@@ -11,9 +11,9 @@ from server.units import View, display_unit
 
 MARGIN_LEFT = 54.0
 MARGIN_RIGHT = 14.0
-MARGIN_TOP = 22.0
+MARGIN_TOP = 26.0
 MARGIN_BOTTOM = 42.0
-PANEL_GAP = 26.0
+PANEL_GAP = 32.0
 PANEL_HEIGHT = 340.0  # of a panel whose share is 1
 
 

@@ -119,7 +119,7 @@ def _place(
                     continue
                 if any(box.meets(other, 1.0) for other in standing):
                     continue
-                cost = step + (0.3 if side < 0 else 0.0) + abs(shift) + 0.15 * which
+                cost = step + (0.3 if side < 0 else 0.0) + 1.6 * abs(shift) + 0.15 * which
                 if best is not None and cost >= best[0]:
                     continue
                 cost += _crowding(box, lines, name.line)

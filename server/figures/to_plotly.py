@@ -186,6 +186,10 @@ def _layout(chart: Chart, layout: Layout, names: Sequence[Name], view: View) -> 
             "anchor": "x",
             "nticks": max(3, int((place.box.bottom - place.box.top) / 38)),
             **_axis_look(),
+            # the base of each panel: the flow axis itself stands only under the last
+            "zeroline": True,
+            "zerolinecolor": "var(--ink)",
+            "zerolinewidth": 1.3,
         }
     return figure
 
@@ -205,7 +209,7 @@ def _axis_titles(chart: Chart, layout: Layout, view: View) -> list[dict[str, Jso
     titles: list[dict[str, Json]] = [
         {
             **still, "text": escape(axis_title(panel.axis, view)), "x": 0, "xshift": -MARGIN_LEFT + 8,
-            "xanchor": "left", "y": 1 - (place.box.top - MARGIN_TOP) / whole, "yanchor": "bottom",
+            "xanchor": "left", "y": 1 - (place.box.top - MARGIN_TOP) / whole, "yanchor": "bottom", "yshift": 5,
         }
         for panel, place in zip(chart.panels, layout.panels, strict=True)
     ]  # fmt: skip

@@ -128,7 +128,7 @@ def _grid(chart: Chart, panel: Panel, place: PanelPlace, view: View, palette: Pa
         f' stroke="{palette["ink"]}" stroke-width="1.3"/>'
     )
     parts.append(
-        f'<text x="{_n(box.left - 46)}" y="{_n(box.top - 8)}" font-size="{LETTERS}" font-weight="650"'
+        f'<text x="{_n(box.left - 46)}" y="{_n(box.top - 12)}" font-size="{LETTERS}" font-weight="650"'
         f' fill="{palette["ink"]}">{escape(axis_title(panel.axis, view))}</text>'
     )
     return "".join(parts)

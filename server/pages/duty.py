@@ -97,11 +97,12 @@ class DutyPage:
 
 
 GROUPS = (
-    GroupView("heads", "required head and set point", 880),
-    GroupView("suction", "suction and NPSH", 700),
-    GroupView("points", "pressures at points", 1080),
-    GroupView("power", "power and energy", 1240),
-    GroupView("findings", "findings", 1400),
+    GroupView("running", "running and speed", 540),
+    GroupView("heads", "head asked and set point", 1000),
+    GroupView("suction", "suction and NPSH", 760),
+    GroupView("points", "pressures at points", 1200),
+    GroupView("power", "power and energy", 1380),
+    GroupView("findings", "findings", 1600),
 )
 
 
@@ -167,8 +168,8 @@ def _columns(sheet: SheetView, judged: JudgedSet) -> tuple[ColumnView, ...]:
         ColumnView("flow", "Flow", unit(D.FLOW), "", True),
         ColumnView("required", "Head asked", head, "heads", True),
         ColumnView("head", "Head given", head, "", True),
-        ColumnView("running", "Running", "", "", False),
-        ColumnView("speed", "Speed", "%", "", True),
+        ColumnView("running", "Running", "", "running", False),
+        ColumnView("speed", "Speed", "%", "running", True),
         ColumnView("held", "Set point held", "", "heads", False),
         ColumnView("region", "Of best-efficiency flow", _preferred_words(judged), "", False),
         ColumnView("npsh", "NPSH margin", head, "suction", True),
@@ -295,6 +296,8 @@ def _failing(sheet: SheetView, judged: JudgedSet, row: DutyRow) -> set[str]:
             key = finding.criterion.rsplit("/", 1)[-1]
             if key in CRITERION_COLUMNS:
                 columns.add(CRITERION_COLUMNS[key])
+        if finding.code == "suction_main_low" and any(a.name == "gauge" for a in finding.others):
+            columns.add("suction")  # one finding tells of both
         for p in range(len(judged.points)):
             if finding.subject.startswith(judged.point_path(p)):
                 columns.add(f"point-{p}")

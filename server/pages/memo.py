@@ -15,7 +15,6 @@ from server.pages.links import link
 from server.pages.rendering import render
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
-from server.pages.strip_view import FindingLine, findings_list
 from server.pages.summary import stressed
 from server.studies.shapes import Severity
 
@@ -39,7 +38,6 @@ class MemoPage:
 
     lead: tuple[str, str, str]
     holds: bool | None
-    against: tuple[FindingLine, ...]
     unchecked: int
     fields: tuple[FieldView, ...]
     paper: FieldView
@@ -63,11 +61,9 @@ class PaperPage:
 def build(sheet: SheetView) -> MemoPage:
     """Return the content of the sheet."""
     found = sheet.assessment.findings_for(sheet.assessment.proposed)
-    against = [f for f in found if f.severity in (Severity.STOP, Severity.FAIL)]
     return MemoPage(
         lead=stressed(sheet.assessment.lead(sheet.view)),
         holds=sheet.assessment.holds,
-        against=findings_list(sheet, against),
         unchecked=sum(f.severity is Severity.NOT_CHECKED for f in found),
         fields=field_views(sheet, "/memo", FIELDS),
         paper=field_view(sheet, "/display/paper", "choice"),

@@ -13,6 +13,7 @@ from server.pages.frame import SheetPage, register, show
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
 from server.pages.strip_view import FindingLine, findings_list
+from server.studies.findings import words
 from server.studies.findings.answers import answer_key
 from server.studies.findings.requirement_words import (
     cell_words,
@@ -53,6 +54,7 @@ class Standing:
 
     title: str
     bad: bool
+    words: str
     lines: tuple[FindingLine, ...]
 
 
@@ -153,7 +155,8 @@ def _standing(sheet: SheetView) -> tuple[Standing, ...]:
         if kept:
             noun = "thing" if len(kept) == 1 else "things"
             title = f"{len(kept)} {noun} {one if len(kept) == 1 else many}"
-            standing.append(Standing(title, bad, findings_list(sheet, kept)))
+            shorts = dict.fromkeys(words.short(f) for f in kept if not _is_default(f))
+            standing.append(Standing(title, bad, "; ".join(shorts), findings_list(sheet, kept)))
     return tuple(standing)
 
 
@@ -168,7 +171,7 @@ def _names(sheet: SheetView) -> tuple[tuple[str, str], ...]:
     paths = {"issue": "issue", "date of issue": "date", "prepared by": "prepared", "checked by": "checked",
              "approved by": "approved"}  # fmt: skip
     return tuple(
-        (words, sheet.field_href(f"/memo/{paths[words]}")) for words, value in wanted if not value
+        (name, sheet.field_href(f"/memo/{paths[name]}")) for name, value in wanted if not value
     )
 
 
