@@ -14,7 +14,7 @@ KEPT = ("case", "set", "units")
 
 @dataclass(frozen=True, slots=True)
 class CameFrom:
-    """A sheet and what its address had chosen; an old revision is never edited, so `at` is dropped."""
+    """A sheet and what its address chose, but for `at`: an old revision is never edited."""
 
     sheet: Sheet
     query: Mapping[str, str]
@@ -23,10 +23,12 @@ class CameFrom:
 def came_from(request: Request, station_id: str, path: str = "") -> CameFrom:
     """Return the sheet a form of this station was sent from.
 
-    htmx names it in `HX-Current-URL`, a plain form in `Referer`. An address that is not a sheet of
-    this station counts for nothing: then it is the sheet that shows the field at `path`.
+    htmx names it in `HX-Current-URL`, a plain form in `Referer`. An address that is not a sheet
+    of this station counts for nothing: then it is the sheet that shows the field at `path`.
     """
-    address = urlsplit(request.headers.get("hx-current-url") or request.headers.get("referer") or "")
+    address = urlsplit(
+        request.headers.get("hx-current-url") or request.headers.get("referer") or ""
+    )
     before, _, name = address.path.rpartition("/")
     query = {key: value for key, value in parse_qsl(address.query) if key in KEPT}
     for sheet in fields.SHEET_TITLES:

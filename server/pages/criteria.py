@@ -1,4 +1,4 @@
-"""Sheet 8, Criteria: every limit with its source; a departure stands beside the profile's value."""
+"""Sheet 8, Criteria: every limit with its source; a departure stands beside the profile."""
 
 from dataclasses import dataclass
 
@@ -18,8 +18,11 @@ from server.units import UNITS
 router = APIRouter()
 
 SENSE_WORDS: dict[Sense, str] = {
-    "at_least": "at least", "at_most": "at most", "setting": "set to", "stated": "",
-}  # fmt: skip
+    "at_least": "at least",
+    "at_most": "at most",
+    "setting": "set to",
+    "stated": "",
+}
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,4 +1,4 @@
-"""The grid of a pump's tested rows: the document's table on the page, and the page's cells read back."""
+"""The grid of a pump's tested rows: the table on the page, and the page's cells read back."""
 
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -73,7 +73,11 @@ def curve_grid(sheet: SheetView, path: str, caption: str) -> CurveGrid:
     texts = [(row + empty)[: len(COLUMNS)] for row in texts] + [empty] * spare
     rows = tuple(
         tuple(
-            GridCell(text, f"{columns[c].title}, row {r + 1}", bool(refusal and (r, c) in refusal.cells))
+            GridCell(
+                text,
+                f"{columns[c].title}, row {r + 1}",
+                bool(refusal and (r, c) in refusal.cells),
+            )
             for c, text in enumerate(row)
         )
         for r, row in enumerate(texts)
@@ -124,14 +128,26 @@ def table_from_cells(
             except EntryRefused as refused:
                 row.append(None)
                 faults.append(
-                    Fault(path, "pumps", refused.given, refused.allowed,
-                          f"Row {number + 1}, {title.lower()}: {refused.sentence}", (number, column))
-                )  # fmt: skip
+                    Fault(
+                        path,
+                        "pumps",
+                        refused.given,
+                        refused.allowed,
+                        f"Row {number + 1}, {title.lower()}: {refused.sentence}",
+                        (number, column),
+                    )
+                )
             if not text and column < 2:
                 faults.append(
-                    Fault(path, "pumps", "", "a number",
-                          f"Row {number + 1} has no {title.lower()}.", (number, column))
-                )  # fmt: skip
+                    Fault(
+                        path,
+                        "pumps",
+                        "",
+                        "a number",
+                        f"Row {number + 1} has no {title.lower()}.",
+                        (number, column),
+                    )
+                )
         read.append(row)
     if faults:
         raise BadStation(faults)

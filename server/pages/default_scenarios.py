@@ -1,10 +1,12 @@
 """The scenarios a closed zone is usually judged in, made from the horizons and fires entered.
 
-Minimum night at low and at high supply, new pipes; average day at normal supply; maximum day and peak hour at
-low supply with the largest unit out; maximum day and fire the same, a scenario a fire; shut-off
-at high supply. Else the opening
-year has new pipes, later years aged ones, unless a horizon says otherwise.
+Minimum night at low and at high supply, new pipes; average day at normal supply; maximum day
+and peak hour at low supply with the largest unit out; maximum day and fire the same, a scenario
+a fire; shut-off at high supply. Else the opening year has new pipes, later years aged ones,
+unless a horizon says otherwise.
 """
+
+from pydantic import JsonValue
 
 from server.station.edits import Edit, apply_edits
 from server.station.faults import BadStation, Fault
@@ -32,25 +34,36 @@ def default_scenarios(station: Station) -> tuple[Edit, ...]:
         When there is no horizon to make them for, or all of them are there.
     """
     if not station.horizons:
-        raise BadStation([_fault("Add a horizon with its demand first; scenarios are made for each.")])
+        raise _refused("Add a horizon with its demand first; scenarios are made for each.")
     there = {(s.horizon, s.demand, s.supply, s.fire) for s in station.scenarios}
     edits: list[Edit] = []
     for place, horizon in enumerate(station.horizons):
         pipes = horizon.pipes or ("new" if place == 0 and len(station.horizons) > 1 else "aged")
-        name = horizon.title.lower() or (str(horizon.year) if horizon.year else f"horizon {place + 1}")
-        wanted: list[dict[str, object]] = [
-            {"title": f"{title}, {name}", "demand": demand, "supply": supply, "out": out,
-             "pipes": age or pipes}
+        name = horizon.title.lower() or (
+            str(horizon.year) if horizon.year else f"horizon {place + 1}"
+        )
+        wanted: list[dict[str, JsonValue]] = [
+            {
+                "title": f"{title}, {name}",
+                "demand": demand,
+                "supply": supply,
+                "out": out,
+                "pipes": age or pipes,
+            }
             for title, demand, supply, out, age in _USUAL
         ]
         wanted += [
             {
                 "title": f"{_demand_words(fire.beside)} and fire, {name}"
                 + (f", {fire.title}" if len(station.fires) > 1 and fire.title else ""),
-                "demand": fire.beside, "supply": "low", "out": "largest", "fire": fire.id, "pipes": pipes,
+                "demand": fire.beside,
+                "supply": "low",
+                "out": "largest",
+                "fire": fire.id,
+                "pipes": pipes,
             }
             for fire in station.fires
-        ]  # fmt: skip
+        ]
         for scenario in wanted:
             key = (horizon.id, scenario["demand"], scenario["supply"], scenario.get("fire"))
             if key in there:
@@ -60,7 +73,7 @@ def default_scenarios(station: Station) -> tuple[Edit, ...]:
             station = apply_edits(station, [edit])
             edits.append(edit)
     if not edits:
-        raise BadStation([_fault("Every usual scenario is there already.")])
+        raise _refused("Every usual scenario is there already.")
     return tuple(edits)
 
 
@@ -68,5 +81,5 @@ def _demand_words(demand: str) -> str:
     return demand.replace("_", " ").capitalize()
 
 
-def _fault(sentence: str) -> Fault:
-    return Fault(LIST, "demand", "", "", sentence)
+def _refused(sentence: str) -> BadStation:
+    return BadStation([Fault(LIST, "demand", "", "", sentence)])

@@ -1,10 +1,12 @@
 """Values that may be taken without a source of their own, each only by an action the user sees.
 
-A default is written with its source ("default", common practice) and so is listed in the memo. What
-has no entry here is never defaulted.
+A default is written with its source ("default", common practice) and so is listed in the memo.
+What has no entry here is never defaulted.
 """
 
 from dataclasses import dataclass
+
+from pydantic import JsonValue
 
 from server.station import fields
 from server.units import UNITS, View
@@ -18,10 +20,14 @@ class Default:
     us: tuple[float, str]
     reason: str
 
-    def quantity(self, view: View) -> dict[str, object]:
+    def quantity(self, view: View) -> JsonValue:
         """Return the value as a document holds it, with its source."""
         value, unit = self.us if view == "us" else self.si
-        return {"value": value, "unit": unit, "source": {"kind": "default", "text": self.reason}}
+        return {
+            "value": value,
+            "unit": unit,
+            "source": {"kind": "default", "text": self.reason},
+        }
 
 
 def _same(value: float, unit: str, reason: str) -> Default:

@@ -1,4 +1,4 @@
-"""Sheet 4, Demand and scenarios: horizons with their demand, fires, and the scenarios to be judged."""
+"""Sheet 4, Demand and scenarios: horizons with their demand, fires, scenarios to be judged."""
 
 from dataclasses import dataclass
 
@@ -14,9 +14,16 @@ from server.pages.sheet import SheetView, open_sheet
 router = APIRouter()
 
 HORIZON = (
-    "title", "year", "people", "demand/average_day", "demand/maximum_day", "demand/peak_hour",
-    "demand/minimum_night", "pipes", "low_state",
-)  # fmt: skip
+    "title",
+    "year",
+    "people",
+    "demand/average_day",
+    "demand/maximum_day",
+    "demand/peak_hour",
+    "demand/minimum_night",
+    "pipes",
+    "low_state",
+)
 FIRE = ("title", "point", "flow", "duration", "beside", "carried_by")
 SCENARIO = ("title", "on", "horizon", "demand", "fire", "supply", "pipes", "out")
 
@@ -41,24 +48,33 @@ def build(sheet: SheetView) -> DemandPage:
         basis=field_view(sheet, "/demands/basis"),
         pattern=field_view(sheet, "/demands/daily_pattern/values"),
         horizons=item_table(
-            sheet, "/horizons", HORIZON, "Horizons and their demand",
+            sheet,
+            "/horizons",
+            HORIZON,
+            "Horizons and their demand",
             note="The year of opening, the design year, and any year between.",
             empty="No horizon yet. Add the opening year and the design year.",
         ),
         fires=item_table(
-            sheet, "/fires", FIRE, "Fires",
+            sheet,
+            "/fires",
+            FIRE,
+            "Fires",
             note="The flow comes on top of the demand it stands beside.",
             empty="No fire yet. Without one, fire is not checked.",
         ),
         scenarios=item_table(
-            sheet, "/scenarios", SCENARIO, "Scenarios",
+            sheet,
+            "/scenarios",
+            SCENARIO,
+            "Scenarios",
             note="Each is solved at the low, normal and high supply; the row shows its own.",
-            empty="No scenario yet. The usual ones can be made from the horizons and fires above.",
+            empty="No scenario yet. The usual ones can be made from horizons and fires.",
         ),
         can_add_usual=not sheet.read_only and bool(sheet.station.horizons),
         action=sheet.action("edits"),
         base=sheet.loaded.number,
-    )  # fmt: skip
+    )
 
 
 register(SheetPage("demand", build))

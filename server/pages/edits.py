@@ -1,11 +1,12 @@
-"""Edits of a station from its pages: one field, one item or one table at a time, with their answers.
+"""Edits of a station from its pages: one field, one item or one table, and the answers.
 
-A form sent by htmx is answered with out-of-band fragments, each named as the place it fills; a plain
-form that stores ends in 303, a plain form that is refused shows its sheet again with what was typed.
+A form sent by htmx is answered with out-of-band fragments, each named as the place it fills; a
+plain form that stores ends in 303, one that is refused shows its sheet again as typed.
 """
 
 import json
 from collections.abc import Callable
+from dataclasses import dataclass
 from typing import Annotated
 
 from fastapi import APIRouter, Depends, Header, HTTPException, Request
@@ -27,7 +28,10 @@ from server.store.store import Loaded
 
 router = APIRouter()
 
-NO_BASE = "The form did not say which revision it was made from. Load the page again; what you typed stays in it."
+NO_BASE = (
+    "The form did not say which revision it was made from. Load the page again; what you typed "
+    "stays in it."
+)
 
 
 @router.post("/stations/{station_id}/edits", name="edits", dependencies=[needs("edit")])
@@ -37,7 +41,7 @@ def save_edit(
     posted: Annotated[Posted, Depends(posted_form)],
     hx_request: Annotated[bool, Header()] = False,
 ) -> Response:
-    """Store one edit: 200 with fragments (303 without script), 409, 422 or 428 with the reason."""
+    """Store one edit: 200 with fragments (303 without script), else 409, 422 or 428 and why."""
     store = store_of(request)
     place = came_from(request, station_id, posted.path)
     try:
@@ -59,10 +63,18 @@ def save_edit(
     except BadStation as bad:
         sentence = " ".join(dict.fromkeys(fault.sentence for fault in bad.faults))
         cells = frozenset(fault.cell for fault in bad.faults if fault.cell is not None)
-        return _refused(sheet, posted, Refusal(_typed(posted), sentence, cells=cells), 422, hx_request)
+        return _refused(
+            sheet, posted, Refusal(_typed(posted), sentence, cells=cells), 422, hx_request
+        )
     except Conflict as conflict:
         return _refused(sheet, posted, _conflict(posted, conflict, newest), 409, hx_request)
-    return _stored(view_of(request, loaded, place.sheet, place.query, None), posted, wanted, base, hx_request)
+    return _stored(
+        view_of(request, loaded, place.sheet, place.query, None),
+        posted,
+        wanted,
+        base,
+        hx_request,
+    )
 
 
 @router.post("/stations/{station_id}/undo", name="undo", dependencies=[needs("edit")])
@@ -92,7 +104,9 @@ def _step_back(request: Request, station_id: str, step: str) -> Response:
         return show(sheet.with_refusal(conflict.path, _conflict_of(before, conflict)), 409)
     except BadStation as bad:
         sheet = view_of(request, before, place.sheet, place.query, None)
-        return show(sheet.with_refusal("", Refusal("", " ".join(f.sentence for f in bad.faults))), 409)
+        return show(
+            sheet.with_refusal("", Refusal("", " ".join(f.sentence for f in bad.faults))), 409
+        )
     sheet = view_of(request, loaded, place.sheet, place.query, None)
     changed = paths.diff(before.station, loaded.station)
     if changed and fields.find(changed[0].path) is not None:
@@ -118,21 +132,33 @@ def _base(newest: Loaded, load: Callable[[int], Loaded], posted: Posted) -> Load
 
 def _stale(posted: Posted, base: Loaded, newest: Loaded) -> Refusal | None:
     """Return a refusal when the field no longer shows what the form says it had shown."""
-    if posted.was is None or posted.keep or posted.op != "set" or posted.source or posted.look == "grid":
+    if (
+        posted.was is None
+        or posted.keep
+        or posted.op != "set"
+        or posted.source
+        or posted.look == "grid"
+    ):
         return None
     if not paths.has(base.station, posted.path):
         return None
     shown, _ = text_of(base.station, posted.path)
     if shown == posted.was.replace("\r\n", "\n"):
         return None
-    theirs = text_of(newest.station, posted.path)[0] if paths.has(newest.station, posted.path) else ""
+    theirs = (
+        text_of(newest.station, posted.path)[0]
+        if paths.has(newest.station, posted.path)
+        else ""
+    )
     if theirs == posted.text.strip():
         return None
-    return Refusal(posted.text, "This field was changed elsewhere since the page was drawn.", theirs)
+    return Refusal(
+        posted.text, "This field was changed elsewhere since the page was drawn.", theirs
+    )
 
 
 def _conflict(posted: Posted, conflict: Conflict, newest: Loaded) -> Refusal:
-    """Return the refusal of an edit that meets another one, with both values if they are one field's."""
+    """Return the refusal of an edit that meets another; both values if of one field."""
     own = _conflict_of(newest, conflict)
     theirs = own.theirs if conflict.path == posted.path and posted.op == "set" else None
     return Refusal(_typed(posted), own.sentence, theirs)
@@ -141,7 +167,12 @@ def _conflict(posted: Posted, conflict: Conflict, newest: Loaded) -> Refusal:
 def _conflict_of(newest: Loaded, conflict: Conflict) -> Refusal:
     theirs = None
     node = fields.find(conflict.path)
-    if node is not None and node.is_field and node.kind != "table" and paths.has(newest.station, conflict.path):
+    if (
+        node is not None
+        and node.is_field
+        and node.kind != "table"
+        and paths.has(newest.station, conflict.path)
+    ):
         text, symbol = text_of(newest.station, conflict.path)
         theirs = f"{text} {symbol}" if symbol and text else text
     return Refusal("", conflict.sentence, theirs)
@@ -166,7 +197,11 @@ def _refused(
     """Answer that nothing was stored; what was typed stays in its place."""
     refused = sheet.with_refusal(posted.path, refusal)
     if not fragments:
-        return show(refused, status) if page_of(sheet.sheet) else HTMLResponse(refusal.sentence, status)
+        return (
+            show(refused, status)
+            if page_of(sheet.sheet)
+            else HTMLResponse(refusal.sentence, status)
+        )
     answer = _Answer(refused, posted)
     node = fields.find(posted.path)
     if posted.look == "grid":
@@ -190,8 +225,10 @@ def _stored(
     answer.saved = posted.path
     answer.frame = posted.look != "source"
     answer.focus = wanted.focus
-    if any(change.op != "set" or change.path not in own or pattern_of(change.path) in GOVERNING
-           for change in changed):  # fmt: skip
+    if posted.op == "sort" or any(
+        change.op != "set" or change.path not in own or pattern_of(change.path) in GOVERNING
+        for change in changed
+    ):
         answer.content = True
     elif posted.look == "grid":
         answer.grid(None)
@@ -200,6 +237,15 @@ def _stored(
     if sheet.loaded.number > base.number + 1:
         answer.merged = "Merged with what was changed elsewhere."
     return answer.response(200)
+
+
+@dataclass(frozen=True, slots=True)
+class Said:
+    """What is said beside a grid, a paste box or a row of sources, and where."""
+
+    place: str
+    sentence: str
+    refused: bool
 
 
 class _Answer:
@@ -213,7 +259,7 @@ class _Answer:
         self.events: dict[str, object] = {}
 
     def grid(self, refusal: Refusal | None) -> None:
-        """Say beside a grid what became of it, and mark its bad cells; its inputs are left alone."""
+        """Say beside a grid what became of it, mark its bad cells, leave its inputs alone."""
         self.events["firmhead:cells"] = {
             "id": paths.html_id(self.posted.path),
             "cells": sorted(refusal.cells) if refusal else [],
@@ -226,33 +272,40 @@ class _Answer:
         page = page_of(sheet.sheet)
         if self.saved:
             self.events["firmhead:saved"] = {"path": self.saved}
-        context = {
+        said = self._said()
+        context: dict[str, object] = {
             "sheet": sheet,
             "frame": frame_of(sheet, self.merged) if self.frame else None,
             "page": page.build(sheet) if page and (self.content or page.results) else None,
             "content": f"{page.folder}/content.html" if page and self.content else None,
             "results": page.results if page and self.frame else None,
             "fields": tuple(field_view(sheet, path, posted.shape) for path in self.fields),
-            "said": self._said(),
+            "said": said,
             "number": sheet.loaded.number if self.saved else None,
-            "message": self.message,
+            "message": "" if said else self.message,
             "saved": self.saved,
         }
         answer = render(sheet.request, "parts/answer.html", context, status=status)
         if self.events:
             answer.headers["HX-Trigger"] = json.dumps(self.events)
         if self.focus:
-            answer.headers["HX-Trigger-After-Settle"] = json.dumps({"firmhead:focus": {"id": self.focus}})
+            answer.headers["HX-Trigger-After-Settle"] = json.dumps(
+                {"firmhead:focus": {"id": self.focus}}
+            )
         answer.headers["Vary"] = "HX-Request"
         return answer
 
-    def _said(self) -> tuple[str, str] | None:
-        """Return place and sentence of the line beside a grid, a paste box or a row of sources."""
+    def _said(self) -> Said | None:
+        """Return what is said beside a grid, a paste box or a row of sources."""
         posted = self.posted
         refusal = self.sheet.refused.get(posted.path)
         name = paths.html_id(posted.path)
-        if posted.op == "paste" and not self.content:
-            return f"{name}--rows-said", refusal.sentence if refusal else ""
-        if posted.look in ("grid", "source") and not self.content:
-            return f"{name}--said", refusal.sentence if refusal else "Saved."
-        return None
+        if self.content or (posted.op != "paste" and posted.look not in ("grid", "source")):
+            return None
+        if posted.op == "paste":
+            return Said(
+                f"{name}--rows-said", refusal.sentence if refusal else "", refusal is not None
+            )
+        return Said(
+            f"{name}--said", refusal.sentence if refusal else "Saved.", refusal is not None
+        )

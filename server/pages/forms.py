@@ -1,4 +1,4 @@
-"""Fields as a page shows them: label, text as entered, unit, what was understood, what is missing."""
+"""Fields as a page shows them: label, text as entered, unit, what was understood, missing."""
 
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
@@ -14,14 +14,27 @@ from server.units import UNITS, Dimension, View, display_decimals, display_unit,
 
 Look = Literal["line", "cell", "choice"]
 # what decides which other fields are asked for, or how other fields of the same sheet read
-GOVERNING = frozenset({
-    "/supply/kind", "/supply/bypass/fitted", "/zone/kind", "/zone/points/*/role",
-    "/sets/*/control/kind", "/sets/*/slots/*/pump", "/sets/*/title", "/legs/*/title",
-    "/horizons/*/title", "/fires/*/title", "/display/units",
-    "/suction_line/reaches/*/roughness/law", "/discharge_main/reaches/*/roughness/law",
-    "/suction_line/reaches/*/fittings/*/loss/by", "/discharge_main/reaches/*/fittings/*/loss/by",
-    "/criteria/profile", "/criteria/rows/*/limit",
-})  # fmt: skip
+GOVERNING = frozenset(
+    {
+        "/supply/kind",
+        "/supply/bypass/fitted",
+        "/zone/kind",
+        "/zone/points/*/role",
+        "/sets/*/control/kind",
+        "/sets/*/slots/*/pump",
+        "/sets/*/title",
+        "/legs/*/title",
+        "/horizons/*/title",
+        "/fires/*/title",
+        "/display/units",
+        "/suction_line/reaches/*/roughness/law",
+        "/discharge_main/reaches/*/roughness/law",
+        "/suction_line/reaches/*/fittings/*/loss/by",
+        "/discharge_main/reaches/*/fittings/*/loss/by",
+        "/criteria/profile",
+        "/criteria/rows/*/limit",
+    }
+)
 # what an empty choice means, where it means something
 EMPTY_WORDS = {
     "/sets/*/slots/*/curve": "its first curve",
@@ -31,9 +44,14 @@ EMPTY_WORDS = {
 }
 SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
 SOURCE_WORDS = {
-    "survey": "survey", "test": "test", "code": "code", "standard": "standard", "maker": "maker",
-    "office": "office", "default": "a default, listed in the memo",
-}  # fmt: skip
+    "survey": "survey",
+    "test": "test",
+    "code": "code",
+    "standard": "standard",
+    "maker": "maker",
+    "office": "office",
+    "default": "a default, listed in the memo",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -91,12 +109,16 @@ class FieldView:
 
 
 def entry_at(path: str) -> Entry:
-    """Return what a field says about itself; a criterion's limit is measured as its rule says."""
+    """Return what a field says about itself; a criterion's limit as its rule measures it."""
     entry = fields.entry_for(path)
     if fields.node_at(path).pattern != "/criteria/rows/*/limit":
         return entry
     rule = RULES.get(path.split("/")[3])
-    return entry if rule is None else replace(entry, dimension=rule.dimension, decimals=rule.decimals)
+    return (
+        entry
+        if rule is None
+        else replace(entry, dimension=rule.dimension, decimals=rule.decimals)
+    )
 
 
 def pattern_of(path: str) -> str:
@@ -105,7 +127,7 @@ def pattern_of(path: str) -> str:
 
 
 def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
-    """Return the field at `path` of an opened sheet, as a line, a table's cell or a row of choices."""
+    """Return the field at `path`, as a line, a table's cell or a row of choices."""
     node = fields.node_at(path)
     entry = entry_at(path)
     stored, symbol = text_of(sheet.station, path, sheet.view)
@@ -159,15 +181,20 @@ def choices_of(sheet: SheetView, path: str) -> tuple[tuple[str, str], ...]:
     node = fields.node_at(path)
     entry = fields.entry_for(path)
     if node.kind == "reference":
-        return (("", EMPTY_WORDS.get(node.pattern, "none chosen")), *_items_referred(sheet, path, entry))
+        return (
+            ("", EMPTY_WORDS.get(node.pattern, "none chosen")),
+            *_items_referred(sheet, path, entry),
+        )
     if not entry.choices:
         return ()
-    return (("", EMPTY_WORDS.get(node.pattern, "not chosen")), *entry.choices) if node.default is None else entry.choices
+    return (
+        (("", EMPTY_WORDS.get(node.pattern, "not chosen")), *entry.choices)
+        if node.default is None
+        else entry.choices
+    )
 
 
-def _items_referred(
-    sheet: SheetView, path: str, entry: Entry
-) -> tuple[tuple[str, str], ...]:
+def _items_referred(sheet: SheetView, path: str, entry: Entry) -> tuple[tuple[str, str], ...]:
     station = sheet.station
     lists = [entry.refers_to or ""]
     if lists == ["/pumps/*/curves"]:
@@ -200,7 +227,7 @@ def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) 
 
 
 def _said(sheet: SheetView, entry: Entry, value: object, *, missing: bool, cell: bool) -> str:
-    """Return what was understood: the reading in the other unit, and where the value is from."""
+    """Return what was understood: the reading in the other unit, and the source."""
     if missing:
         return "missing" if cell else "Missing: what needs it is not checked."
     if not isinstance(value, Quantity):
@@ -213,7 +240,7 @@ def _said(sheet: SheetView, entry: Entry, value: object, *, missing: bool, cell:
 
 
 def reading(entry: Entry, value: Quantity, view: View) -> str:
-    """Return "= 20.3 psi" for a value entered in kPa; the reader's own unit first, if it differs."""
+    """Return "= 20.3 psi" for an entry in kPa; the reader's own unit first, if it differs."""
     dimension = _dimension(entry)
     other: View = "si" if view == "us" else "us"
     for reader in (view, other):
@@ -233,4 +260,6 @@ def source_words(source: Source | None) -> str:
     """Return where a value comes from, as it stands under its field."""
     if source is None:
         return ""
-    return ", ".join(part for part in (SOURCE_WORDS[source.kind], source.text, source.date) if part)
+    return ", ".join(
+        part for part in (SOURCE_WORDS[source.kind], source.text, source.date) if part
+    )

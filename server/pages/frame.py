@@ -1,4 +1,4 @@
-"""What stands round a sheet: spine, strip, scenario row, findings margin, the way on; and its answers."""
+"""What stands round a sheet: spine, strip, scenario row, findings margin, the way on."""
 
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -9,9 +9,14 @@ from fastapi.responses import HTMLResponse
 
 from server.pages.rendering import render
 from server.pages.sheet import OPEN, SHEET_NUMBERS, SHEETS, SheetView
-from server.pages.strip_view import FindingLine, ScenarioTab, StripView
+from server.pages.strip_view import (
+    FindingLine,
+    ScenarioTab,
+    StripView,
+    scenario_row,
+    strip_view,
+)
 from server.pages.strip_view import findings_list as lines_of
-from server.pages.strip_view import scenario_row, strip_view
 from server.station import fields, paths
 from server.station.entry import Sheet
 from server.studies.shapes import Severity
@@ -71,7 +76,7 @@ class Frame:
 
 @dataclass(frozen=True, slots=True)
 class SheetPage:
-    """What a sheet shows inside its frame; `results` names a template of fragments that follow an edit."""
+    """What a sheet shows in its frame; `results` names a template of fragments for edits."""
 
     sheet: Sheet
     build: Callable[[SheetView], object]
@@ -115,22 +120,32 @@ def frame_of(sheet: SheetView, merged: str = "") -> Frame:
         edited=when(sheet.loaded.edited_at),
         merged=merged,
         under_title=", ".join(
-            part for part in (sheet.station.identity.client, sheet.station.identity.place) if part
+            part
+            for part in (sheet.station.identity.client, sheet.station.identity.place)
+            if part
         ),
         sources_sheet=sheet.sheet,
         refusals=tuple(
-            (f"#{paths.html_id(path)}", refusal.sentence) for path, refusal in sheet.refused.items()
+            (f"#{paths.html_id(path)}", refusal.sentence)
+            for path, refusal in sheet.refused.items()
         ),
     )
 
 
-def show(sheet: SheetView, status: int = 200, *, context: dict[str, object] | None = None) -> HTMLResponse:
+def show(
+    sheet: SheetView, status: int = 200, *, context: dict[str, object] | None = None
+) -> HTMLResponse:
     """Return the whole page of a registered sheet."""
     page = _PAGES[sheet.sheet]
     return render(
         sheet.request,
         f"{page.folder}/page.html",
-        {"sheet": sheet, "frame": frame_of(sheet), "page": page.build(sheet), **(context or {})},
+        {
+            "sheet": sheet,
+            "frame": frame_of(sheet),
+            "page": page.build(sheet),
+            **(context or {}),
+        },
         status=status,
     )
 
@@ -141,7 +156,9 @@ def spine(sheet: SheetView) -> tuple[SpineEntry, ...]:
     for name, title in SHEETS:
         state, css = state_of(sheet, name)
         entries.append(
-            SpineEntry(SHEET_NUMBERS[name], title, sheet.href(name), name == sheet.sheet, state, css)
+            SpineEntry(
+                SHEET_NUMBERS[name], title, sheet.href(name), name == sheet.sheet, state, css
+            )
         )
     return tuple(entries)
 
@@ -163,7 +180,7 @@ def state_of(sheet: SheetView, name: Sheet) -> tuple[str, str]:
 
 
 def missing_on(sheet: SheetView, name: Sheet) -> tuple[str, ...]:
-    """Return the empty fields and lists of a sheet that a study waits for, in the sheet's order."""
+    """Return the empty fields and lists of a sheet that a study waits for, in order."""
     found = []
     for path in sheet.missing:
         node = fields.find(path)
@@ -178,12 +195,12 @@ def _order() -> dict[str, int]:
 
 
 def _is_empty(sheet: SheetView, path: str) -> bool:
-    """Whether nothing stands at a path; a field that is filled in but wrong is no missing field."""
+    """Whether nothing stands at a path; a field that is filled in is not missing."""
     return paths.has(sheet.station, path) and paths.get(sheet.station, path) in (None, "", ())
 
 
 def next_of(sheet: SheetView) -> Next | None:
-    """Return what this sheet still waits for, or the next sheet that waits; nothing once it is solved."""
+    """Return what this sheet or the next one waits for; None once it is solved."""
     if sheet.read_only or sheet.result is not None:
         return None
     here = missing_on(sheet, sheet.sheet)
@@ -212,5 +229,3 @@ def when(moment: datetime) -> str:
     """Return a moment as a person reads it, to the minute: "14 May 2026, 07:30"."""
     local = moment.astimezone()
     return f"{local.day} {local:%b %Y, %H:%M}"
-
-

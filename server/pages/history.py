@@ -1,4 +1,4 @@
-"""Sheet 10, History: what was changed, when and by whom; old revisions to see, compare and restore."""
+"""Sheet 10, History: what changed, when and by whom; old revisions to see, compare, restore."""
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
@@ -26,10 +26,17 @@ router = APIRouter()
 TOGETHER = timedelta(minutes=10)
 CHANGES_SHOWN = 6
 KIND_WORDS = {
-    "new": "Made", "copy": "Made as a copy", "demo": "Made as the demo", "import": "Brought in from a file",
-    "edit": "", "merge": "Merged with changes made elsewhere", "undo": "Undone", "redo": "Made again",
-    "restore": "Restored", "upgrade": "Brought to the newer form of the file",
-}  # fmt: skip
+    "new": "Made",
+    "copy": "Made as a copy",
+    "demo": "Made as the demo",
+    "import": "Brought in from a file",
+    "edit": "",
+    "merge": "Merged with changes made elsewhere",
+    "undo": "Undone",
+    "redo": "Made again",
+    "restore": "Restored",
+    "upgrade": "Brought to the newer form of the file",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,7 +114,9 @@ def grouped(rows: Sequence[RevisionRow]) -> Iterable[tuple[RevisionRow, ...]]:
     """Yield the revisions, newest first, those of one author within ten minutes together."""
     group: list[RevisionRow] = []
     for row in rows:
-        if group and (row.author != group[0].author or group[0].made_at - row.made_at > TOGETHER):
+        if group and (
+            row.author != group[0].author or group[0].made_at - row.made_at > TOGETHER
+        ):
             yield tuple(group)
             group = []
         group.append(row)
@@ -129,9 +138,9 @@ def _group(sheet: SheetView, rows: Sequence[RevisionRow]) -> RevisionGroup:
 
 def _summary(lines: Sequence[RevisionLine]) -> str:
     """Return the first words of a group: the fields changed, in short."""
-    told = list(dict.fromkeys(
-        change.words for line in lines for change in line.changes
-    )) or [line.kind for line in lines if line.kind]  # fmt: skip
+    told = list(dict.fromkeys(change.words for line in lines for change in line.changes)) or [
+        line.kind for line in lines if line.kind
+    ]
     left = len(told) - 3
     return "; ".join(told[:3]) + (f"; and {left} more" if left > 0 else "")
 
@@ -141,10 +150,13 @@ def _line(sheet: SheetView, row: RevisionRow) -> RevisionLine:
     if row.of is not None:
         kind = f"{kind}: revision {row.of}"
     return RevisionLine(
-        row.number, when(row.made_at), kind,
+        row.number,
+        when(row.made_at),
+        kind,
         tuple(_change(sheet, sheet.station, change) for change in row.changes[:CHANGES_SHOWN]),
-        sheet.href("summary", at=f"r{row.number}"), row.number == sheet.loaded.newest,
-    )  # fmt: skip
+        sheet.href("summary", at=f"r{row.number}"),
+        row.number == sheet.loaded.newest,
+    )
 
 
 def _change(sheet: SheetView, station: Station, change: Change) -> ChangeLine:
@@ -152,14 +164,19 @@ def _change(sheet: SheetView, station: Station, change: Change) -> ChangeLine:
     match change.op:
         case "insert":
             title = _title(change.value)
-            return ChangeLine(f"{words if not title else _place(change.path, title)}: added", "", "", "")
+            return ChangeLine(
+                f"{words if not title else _place(change.path, title)}: added", "", "", ""
+            )
         case "remove":
             return ChangeLine(f"{_place(change.path, _title(change.was))}: removed", "", "", "")
         case "move":
             return ChangeLine(f"{words}: moved", "", "", "")
     href = sheet.field_href(change.path) if paths.has(sheet.station, change.path) else ""
     return ChangeLine(
-        words, shown_value(station, change.path, change.was), shown_value(station, change.path, change.value), href
+        words,
+        shown_value(station, change.path, change.was),
+        shown_value(station, change.path, change.value),
+        href,
     )
 
 
@@ -225,7 +242,9 @@ def history(request: Request, station_id: str) -> HTMLResponse:
 
 
 @router.get("/stations/{station_id}/compare", name="compare_form", dependencies=[needs("read")])
-def compare_form(request: Request, station_id: str, left: str = "", right: str = "") -> Response:
+def compare_form(
+    request: Request, station_id: str, left: str = "", right: str = ""
+) -> Response:
     """Lead from the two numbers of the form to their comparison."""
     if not (left.isdecimal() and right.isdecimal()):
         raise HTTPException(404, "Enter the numbers of two revisions, as 3 and 17.")
@@ -233,7 +252,11 @@ def compare_form(request: Request, station_id: str, left: str = "", right: str =
     return RedirectResponse(view.action("compare", left=left, right=right), 303)
 
 
-@router.get("/stations/{station_id}/history/{left}..{right}", name="compare", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/history/{left}..{right}",
+    name="compare",
+    dependencies=[needs("read")],
+)
 def compare(request: Request, station_id: str, left: int, right: int) -> HTMLResponse:
     """Show what differs between two revisions."""
     sheet = open_sheet(request, station_id, "history")
@@ -243,11 +266,17 @@ def compare(request: Request, station_id: str, left: int, right: int) -> HTMLRes
     except KeyError as missing:
         raise HTTPException(404, "There is no such revision of this station.") from missing
     page = ComparePage(
-        left, right, when(older.edited_at), when(newer.edited_at),
-        tuple(_change(sheet, newer.station if change.op != "remove" else older.station, change)
-              for change in paths.diff(older.station, newer.station)),
-        sheet.href("summary", at=f"r{left}"), sheet.href("summary", at=f"r{right}"),
-    )  # fmt: skip
+        left,
+        right,
+        when(older.edited_at),
+        when(newer.edited_at),
+        tuple(
+            _change(sheet, newer.station if change.op != "remove" else older.station, change)
+            for change in paths.diff(older.station, newer.station)
+        ),
+        sheet.href("summary", at=f"r{left}"),
+        sheet.href("summary", at=f"r{right}"),
+    )
     return render(request, "history/compare.html", {"sheet": sheet, "page": page})
 
 

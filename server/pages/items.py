@@ -105,9 +105,13 @@ def adding(sheet: SheetView, list_path: str, label: str = "", *, main: bool = Fa
     """Return the button that adds an item to the list at `list_path`."""
     word = fields.part_for(list_path).item.lower()
     return Adding(
-        list_path, label or f"Add {_article(word)} {word}", sheet.action("edits"),
-        sheet.loaded.number, sheet.read_only, main,
-    )  # fmt: skip
+        list_path,
+        label or f"Add {_article(word)} {word}",
+        sheet.action("edits"),
+        sheet.loaded.number,
+        sheet.read_only,
+        main,
+    )
 
 
 def item_table(

@@ -62,14 +62,17 @@ def build(sheet: SheetView) -> MainAndZonePage:
         chosen=sheet.station.zone.kind or "",
         title=field_view(sheet, "/zone/title"),
         points=item_table(
-            sheet, POINTS, OVERVIEW, "Named points of the zone",
-            note="The critical customer, the lowest customer and every hydrant that a fire uses.",
+            sheet,
+            POINTS,
+            OVERVIEW,
+            "Named points of the zone",
+            note="The critical customer, the lowest customer, every hydrant that a fire uses.",
             empty="No point yet: the set is judged by the pressure at named points.",
         ),
         cards=tuple(_card(sheet, path) for path in items_of(sheet, POINTS)),
         tank=field_views(sheet, "/zone/tank", TANK),
         add_point=adding(sheet, POINTS),
-    )  # fmt: skip
+    )
 
 
 def _card(sheet: SheetView, path: str) -> PointCard:
@@ -86,7 +89,9 @@ def _card(sheet: SheetView, path: str) -> PointCard:
 register(SheetPage("main-and-zone", build))
 
 
-@router.get("/stations/{station_id}/main-and-zone", name="main-and-zone", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/main-and-zone", name="main-and-zone", dependencies=[needs("read")]
+)
 def main_and_zone(request: Request, station_id: str) -> HTMLResponse:
     """Show the sheet."""
     return show(open_sheet(request, station_id, "main-and-zone"))

@@ -1,6 +1,5 @@
 """What a form of a sheet asked for, turned into edits of the document."""
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Annotated
 
@@ -10,16 +9,14 @@ from pydantic import JsonValue
 from server.pages.curve_grid import table_from_cells
 from server.pages.default_scenarios import default_scenarios
 from server.pages.defaults import default_of
-from server.pages.forms import Look, entry_at
+from server.pages.forms import Look
+from server.pages.pasted_rows import ids_of, pasted_rows, typed_value
 from server.station import fields, paths
-from server.station.edits import Edit, apply_edits
+from server.station.edits import Edit
 from server.station.faults import BadStation, Fault, quoted
 from server.station.fresh import copy_item, new_item
 from server.station.station import Station
-from server.station.typed_text import value_from_text
-from server.units import UNITS, View, display_unit
-
-LONGEST_PASTE = 500
+from server.units import View
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,9 +77,23 @@ def posted_form(
     """Return the form as posted; whatever is absent is empty."""
     source = None if source_kind is None else (source_kind, source_text, source_date)
     return Posted(
-        path, op, text, base, was, unit, look, before, keep, grid, tuple(cell or ()),
-        tuple(units or ()), item, columns, rows, source,
-    )  # fmt: skip
+        path,
+        op,
+        text,
+        base,
+        was,
+        unit,
+        look,
+        before,
+        keep,
+        grid,
+        tuple(cell or ()),
+        tuple(units or ()),
+        item,
+        columns,
+        rows,
+        source,
+    )
 
 
 def asked(posted: Posted, station: Station, view: View) -> Asked:
@@ -94,8 +105,13 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
         If the address is not one, or what was typed is not a value of the field.
     """
     if fields.find(posted.path) is None or not posted.path:
-        raise BadStation([_fault(posted.path, posted.path, "a field of a station",
-                                 f"A station has no field {quoted(posted.path)}.")])  # fmt: skip
+        raise _refused(
+            posted.path,
+            posted.path,
+            "a field of a station",
+            f"A station has no field {quoted(posted.path)}.",
+        )
+    _expect_place(posted, station)
     match posted.op:
         case "insert":
             new = new_item(station, posted.path)
@@ -104,16 +120,19 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
             list_path, _, own = posted.path.rpartition("/")
             new = copy_item(station, posted.path)
             after = _after(station, list_path, own)
-            return Asked((Edit("insert", list_path, new, before=after),), _focus(list_path, new))
+            return Asked(
+                (Edit("insert", list_path, new, before=after),), _focus(list_path, new)
+            )
         case "remove":
             return Asked((Edit("remove", posted.path),))
         case "move":
             return Asked((Edit("move", posted.path, before=posted.before or None),))
         case "scenarios":
-            edits = default_scenarios(station)
-            return Asked(edits)
+            return Asked(default_scenarios(station))
         case "paste":
-            return _pasted(posted, station, view)
+            columns = posted.columns.split()
+            edits = pasted_rows(station, posted.path, posted.item, columns, posted.rows, view)
+            return Asked(edits)
         case "default":
             return Asked((_default_edit(posted.path, view),))
         case "sort":
@@ -122,40 +141,62 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
         return Asked((_source_edit(posted, station),))
     if posted.look == "grid":
         return Asked((_grid_edit(posted, station, sort=False),))
-    return Asked((Edit("set", posted.path, typed_value(station, posted.path, posted.text, view=view, unit=posted.unit)),))
+    return Asked(
+        (
+            Edit(
+                "set",
+                posted.path,
+                typed_value(station, posted.path, posted.text, view=view, unit=posted.unit),
+            ),
+        )
+    )
 
 
-def typed_value(
-    station: Station, path: str, text: str, *, view: View, unit: str = ""
-) -> JsonValue:
-    """Return the JSON value of a text typed in the field at `path`; `unit` when it names none."""
-    node = fields.node_at(path)
-    known = unit if node.kind == "quantity" and unit in UNITS else None
-    dimension = entry_at(path).dimension
-    return value_from_text(station, path, text, view=view, unit=known, dimension=dimension)
+def _expect_place(posted: Posted, station: Station) -> None:
+    """Refuse an operation that does not go with what stands at its path."""
+    node = fields.node_at(posted.path)
+    kinds = {
+        "insert": node.kind == "list",
+        "paste": node.kind == "list",
+        "scenarios": posted.path == "/scenarios",
+        "copy": node.name == "*",
+        "remove": node.name == "*",
+        "move": node.name == "*",
+        "default": node.is_field,
+        "sort": node.kind == "table",
+        "set": node.is_field,
+    }
+    if not kinds.get(posted.op, False):
+        sentence = f"{paths.subject(station, posted.path)} cannot be changed in this way."
+        raise _refused(posted.path, posted.op, "another operation", sentence)
 
 
 def _default_edit(path: str, view: View) -> Edit:
     default = default_of(path)
     if default is None:
-        raise BadStation([_fault(path, "", "a value", "This value is never assumed; enter it.")])
-    quantity: dict[str, JsonValue] = dict(default.quantity(view))
-    return Edit("set", path, quantity)
+        raise _refused(path, "", "a value", "This value is never assumed; enter it.")
+    return Edit("set", path, default.quantity(view))
 
 
 def _source_edit(posted: Posted, station: Station) -> Edit:
     """Set or drop the source of a quantity that stands there already."""
     value = paths.get_json(station, posted.path)
     if not isinstance(value, dict) or posted.source is None:
-        raise BadStation([_fault(posted.path, "", "a value with a unit",
-                                 "Enter the value first, then where it comes from.")])  # fmt: skip
+        raise _refused(
+            posted.path,
+            "",
+            "a value with a unit",
+            "Enter the value first, then where it comes from.",
+        )
     kind, text, date = (part.strip() for part in posted.source)
-    new = {key: member for key, member in value.items() if key != "source"}
+    new: dict[str, JsonValue] = {key: value[key] for key in value if key != "source"}
     if kind:
-        new["source"] = {"kind": kind, "text": text} | ({"date": date} if date else {})
+        source: dict[str, JsonValue] = {"kind": kind, "text": text}
+        new["source"] = source | {"date": date} if date else source
     elif text or date:
-        raise BadStation([_fault(posted.path, text or date, "a kind of source",
-                                 "Choose what kind of source this is.")])  # fmt: skip
+        raise _refused(
+            posted.path, text or date, "a kind of source", "Choose what kind of source this is."
+        )
     return Edit("set", posted.path, new)
 
 
@@ -164,71 +205,19 @@ def _grid_edit(posted: Posted, station: Station, *, sort: bool) -> Edit:
         rows = [line.split("\t") for line in posted.grid.split("\n")]
     else:
         width = max(1, len(posted.units))
-        rows = [list(posted.cells[at : at + width]) for at in range(0, len(posted.cells), width)]
-    return Edit("set", posted.path, table_from_cells(station, posted.path, rows, posted.units, sort=sort))
-
-
-def _pasted(posted: Posted, station: Station, view: View) -> Asked:
-    """Fill cells from pasted rows, from the item named on and then into new items; all or none."""
-    names = posted.columns.split()
-    lines = [line.split("\t") for line in posted.rows.replace("\r\n", "\n").split("\n") if line.strip()]
-    if not lines or not names:
-        raise BadStation([_fault(posted.path, "", "rows", "There are no rows to store.")])
-    if len(lines) > LONGEST_PASTE:
-        raise BadStation([_fault(posted.path, str(len(lines)), f"{LONGEST_PASTE} rows",
-                                 f"More than {LONGEST_PASTE} rows cannot be pasted at once.")])  # fmt: skip
-    if _is_head(posted.path, names, lines[0]):
-        lines = lines[1:]
-    items = [f"{posted.path}/{i}" for i in _ids(station, posted.path)]
-    at = items.index(posted.item) if posted.item in items else len(items)
-    edits: list[Edit] = []
-    faults: list[Fault] = []
-    for number, cells in enumerate(lines):
-        if at + number >= len(items):
-            new = new_item(station, posted.path)
-            edits.append(Edit("insert", posted.path, new))
-            station = apply_edits(station, edits[-1:])
-            items.append(f"{posted.path}/{new['id']}")
-        for column, (name, cell) in enumerate(zip(names, cells, strict=False)):
-            path = f"{items[at + number]}/{name}"
-            try:
-                edit = Edit("set", path, typed_value(station, path, cell, view=view, unit=_column_unit(path, view)))
-                station = apply_edits(station, [edit])
-                edits.append(edit)
-            except BadStation as bad:
-                title = fields.label(path)
-                faults.extend(
-                    _fault(path, cell, fault.allowed, f"Row {number + 1}, {title}: {fault.sentence}",
-                           (number, column))
-                    for fault in bad.faults
-                )  # fmt: skip
-    if faults:
-        raise BadStation(faults)
-    return Asked(tuple(edits))
-
-
-def _column_unit(path: str, view: View) -> str:
-    """Return the unit that stands in the head of a column, for a pasted number without its own."""
-    entry = fields.entry_for(path)
-    if fields.kind_of(path) != "quantity" or entry.dimension is None:
-        return ""
-    return display_unit(entry.dimension, view).symbol
-
-
-def _is_head(list_path: str, names: Sequence[str], cells: Sequence[str]) -> bool:
-    """Whether a pasted line is the head of the table: each cell begins with its column's title."""
-    titles = [fields.label(f"{list_path}/*/{name}").lower() for name in names]
-    return all(cell.strip().lower().startswith(title) for title, cell in zip(titles, cells, strict=False))
-
-
-def _ids(station: Station, list_path: str) -> list[str]:
-    items = paths.get(station, list_path)
-    return [str(item.id) for item in items] if isinstance(items, tuple) else []
+        rows = [
+            list(posted.cells[at : at + width]) for at in range(0, len(posted.cells), width)
+        ]
+    return Edit(
+        "set",
+        posted.path,
+        table_from_cells(station, posted.path, rows, posted.units, sort=sort),
+    )
 
 
 def _after(station: Station, list_path: str, own: str) -> str | None:
     """Return the id of the item behind `own`, None when it is the last."""
-    ids = _ids(station, list_path)
+    ids = ids_of(station, list_path)
     at = ids.index(own) + 1 if own in ids else len(ids)
     return ids[at] if at < len(ids) else None
 
@@ -237,8 +226,7 @@ def _focus(list_path: str, item: JsonValue) -> str:
     return paths.html_id(f"{list_path}/{item['id']}") if isinstance(item, dict) else ""
 
 
-def _fault(
-    path: str, given: str, allowed: str, sentence: str, cell: tuple[int, int] | None = None
-) -> Fault:
+def _refused(path: str, given: str, allowed: str, sentence: str) -> BadStation:
     node = fields.find(path)
-    return Fault(path, node.sheet if node is not None else "", quoted(given), allowed, sentence, cell)
+    sheet = node.sheet if node is not None and path else ""
+    return BadStation([Fault(path, sheet, quoted(given), allowed, sentence)])

@@ -16,9 +16,19 @@ from server.station import paths
 router = APIRouter()
 
 PUMP = (
-    "title", "kind", "stages", "speed", "motor_power", "allowable_region/low", "allowable_region/high", "minimum_flow", "npsh_exponent",
-    "motor_efficiency", "drive_efficiency", "rating",
-)  # fmt: skip
+    "title",
+    "kind",
+    "stages",
+    "speed",
+    "motor_power",
+    "allowable_region/low",
+    "allowable_region/high",
+    "minimum_flow",
+    "npsh_exponent",
+    "motor_efficiency",
+    "drive_efficiency",
+    "rating",
+)
 CURVE = ("diameter", "fit", "best_efficiency_flow")
 
 

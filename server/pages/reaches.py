@@ -1,4 +1,4 @@
-"""Reaches in series: a table of what every reach has, and a card a reach for wall and fittings."""
+"""Reaches in series: a table of what each has, and a card for its wall and fittings."""
 
 from dataclasses import dataclass
 
@@ -36,7 +36,11 @@ def reaches_view(sheet: SheetView, list_path: str, caption: str) -> ReachesView:
     """Return the reaches of the conduit's list at `list_path`."""
     return ReachesView(
         item_table(
-            sheet, list_path, COLUMNS, caption, note="Reaches in series, in the direction of flow."
+            sheet,
+            list_path,
+            COLUMNS,
+            caption,
+            note="Reaches in series, in the direction of flow.",
         ),
         tuple(_card(sheet, item) for item in items_of(sheet, list_path)),
     )
@@ -53,7 +57,10 @@ def _card(sheet: SheetView, item: str) -> ReachCard:
         field_views(sheet, item, LAW + first),
         field_views(sheet, item, second),
         item_table(
-            sheet, f"{item}/fittings", FITTING, f"Fittings of {title}",
+            sheet,
+            f"{item}/fittings",
+            FITTING,
+            f"Fittings of {title}",
             empty="No fittings listed singly; the sum of K above holds them all.",
         ),
-    )  # fmt: skip
+    )

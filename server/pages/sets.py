@@ -15,9 +15,14 @@ from server.station import paths
 router = APIRouter()
 
 LEG = (
-    "title", "suction_branch/bore", "suction_branch/k", "discharge_branch/bore",
-    "discharge_branch/k", "discharge_branch/full_open_velocity", "discharge_branch/cracking_head",
-)  # fmt: skip
+    "title",
+    "suction_branch/bore",
+    "suction_branch/k",
+    "discharge_branch/bore",
+    "discharge_branch/k",
+    "discharge_branch/full_open_velocity",
+    "discharge_branch/cracking_head",
+)
 SLOT = ("title", "role", "pump", "curve", "leg", "drive", "from_horizon")
 STAGE = ("start", "stop")
 SPEEDS = ("lowest_speed", "highest_speed", "running_rule")
@@ -31,9 +36,14 @@ BY_CONTROL: dict[str, tuple[str, ...]] = {
     "held_flow": ("flow",),
 }
 TRIPS = (
-    "low_suction_alarm", "low_suction_slow_down", "low_suction_trip", "low_suction_delay",
-    "high_discharge_trip", "high_discharge_delay", "relief_pressure",
-)  # fmt: skip
+    "low_suction_alarm",
+    "low_suction_slow_down",
+    "low_suction_trip",
+    "low_suction_delay",
+    "high_discharge_trip",
+    "high_discharge_delay",
+    "relief_pressure",
+)
 STANDBY = ("kind", "transfer_time", "carries")
 
 
@@ -71,14 +81,17 @@ def build(sheet: SheetView) -> SetsPage:
     sets = tuple(_set(sheet, path) for path in items_of(sheet, "/sets"))
     return SetsPage(
         legs=item_table(
-            sheet, "/legs", LEG, "Legs: the pipe round a pump",
-            note="Slots of the same leg share its bores and losses; the check valve is in the discharge branch.",
+            sheet,
+            "/legs",
+            LEG,
+            "Legs: the pipe round a pump",
+            note="One leg serves many slots; its check valve is in the discharge branch.",
             empty="No leg yet. A slot without one loses nothing round its pump.",
         ),
         proposed=field_view(sheet, "/proposed_set"),
         sets=sets,
         add_set=adding(sheet, "/sets", main=not sets),
-    )  # fmt: skip
+    )
 
 
 def _set(sheet: SheetView, path: str) -> SetCard:
@@ -94,17 +107,22 @@ def _set(sheet: SheetView, path: str) -> SetCard:
         href=sheet.set_href(own),
         title=field_views(sheet, path, ("title", "flange_rating")),
         slots=item_table(
-            sheet, f"{path}/slots", SLOT, f"Slots of {title}",
+            sheet,
+            f"{path}/slots",
+            SLOT,
+            f"Slots of {title}",
             note="Standby counts as installed; a jockey runs alone at small flow.",
         ),
         control=field_view(sheet, f"{control}/kind"),
         settings=field_views(sheet, control, held + SPEEDS),
-        other_settings=field_views(sheet, control, [name for name in SETTINGS if name not in held]),
+        other_settings=field_views(
+            sheet, control, [name for name in SETTINGS if name not in held]
+        ),
         stages=item_table(sheet, f"{control}/stages", STAGE, f"Level stages of {title}"),
         by_level=kind == "levels",
         trips=field_views(sheet, f"{path}/trips", TRIPS),
         standby=field_views(sheet, f"{path}/standby_power", STANDBY),
-    )  # fmt: skip
+    )
 
 
 register(SheetPage("sets", build))

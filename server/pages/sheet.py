@@ -1,4 +1,4 @@
-"""One opened sheet of a station: the document at a revision, its assessment, what the address chose."""
+"""One opened sheet of a station: document, assessment, and what the address chose."""
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
@@ -25,7 +25,7 @@ OPEN = (Severity.STOP, Severity.FAIL, Severity.CAUTION)
 
 @dataclass(frozen=True, slots=True)
 class Refusal:
-    """A value that was not stored: as typed, why not; `theirs` when somebody else's stands there."""
+    """A value that was not stored: as typed, why not; `theirs` when another's stands there."""
 
     text: str
     sentence: str
@@ -87,7 +87,7 @@ class SheetView:
         return tuple(f for f in found if f.pump_set in (None, self.set_id))
 
     def href(self, sheet: Sheet | None = None, anchor: str = "", **changes: str | None) -> str:
-        """Return the address of a sheet with what is chosen now, some of it changed (None: dropped)."""
+        """Return a sheet's address with what is chosen now; `changes` of None are dropped."""
         name = sheet or self.sheet
         kept: dict[str, str | None] = {**self.chosen, **changes}
         query = urlencode({key: value for key, value in kept.items() if value is not None})
@@ -119,7 +119,7 @@ class SheetView:
         return self.href(sheet, anchor=paths.html_id(path))
 
     def field_words(self, path: str) -> str:
-        """Return the field at a path in words, without the name of the sheet when it is this one."""
+        """Return a field in words, without the name of the sheet when it is this one."""
         told = paths.words(self.station, path)
         short = told.removeprefix(f"{fields.SHEET_TITLES[self.sheet]}, ")
         return short[:1].upper() + short[1:]
@@ -137,8 +137,11 @@ def open_sheet(request: Request, station_id: str, sheet: Sheet) -> SheetView:
     HTTPException
         404 when there is no such station or revision.
     """
-    query = {key: request.query_params[key] for key in ("case", "set", "units", "at")
-             if request.query_params.get(key)}  # fmt: skip
+    query = {
+        key: request.query_params[key]
+        for key in ("case", "set", "units", "at")
+        if request.query_params.get(key)
+    }
     return opened(request, station_id, sheet, query)
 
 
@@ -150,7 +153,9 @@ def opened(
     try:
         loaded = store_of(request).load(station_id, at)
     except KeyError as missing:
-        raise HTTPException(404, "There is no such station, or no such revision of it.") from missing
+        raise HTTPException(
+            404, "There is no such station, or no such revision of it."
+        ) from missing
     return view_of(request, loaded, sheet, query, at)
 
 
@@ -188,5 +193,7 @@ def _revision_number(text: str | None) -> int | None:
         return None
     digits = text.removeprefix("r")
     if not digits.isdecimal() or len(digits) > 9:
-        raise HTTPException(404, f"“{text[:20]}” is not a revision; revisions are written as r17.")
+        raise HTTPException(
+            404, f"“{text[:20]}” is not a revision; revisions are written as r17."
+        )
     return int(digits)

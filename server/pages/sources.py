@@ -52,7 +52,9 @@ class SourcesPage:
     locked: bool
 
 
-@router.get("/stations/{station_id}/{sheet}/sources", name="sources", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/{sheet}/sources", name="sources", dependencies=[needs("read")]
+)
 def sources(request: Request, station_id: str, sheet: str) -> HTMLResponse:
     """Show every entered value of a sheet with where it comes from."""
     name = next((known for known in SHEET_TITLES if known == sheet), None)
@@ -70,9 +72,13 @@ def build(sheet: SheetView) -> SourcesPage:
         if fields.sheet_of(path) == sheet.sheet and not path.startswith("/criteria")
     )
     return SourcesPage(
-        rows, sum(bool(row.kind) for row in rows), KINDS, sheet.action("edits"),
-        sheet.loaded.number, sheet.read_only,
-    )  # fmt: skip
+        rows,
+        sum(bool(row.kind) for row in rows),
+        KINDS,
+        sheet.action("edits"),
+        sheet.loaded.number,
+        sheet.read_only,
+    )
 
 
 def quantities(node: Node, holder: object, path: str) -> Iterator[tuple[str, Quantity]]:

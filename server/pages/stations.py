@@ -85,7 +85,9 @@ def make_station(
 
 
 @router.post("/stations/import", name="import_station", dependencies=[needs("edit")])
-def import_station(request: Request, file: Annotated[UploadFile | None, File()] = None) -> Response:
+def import_station(
+    request: Request, file: Annotated[UploadFile | None, File()] = None
+) -> Response:
     """Take a station file in; a file that is not one is refused with every fault."""
     if file is None or not file.filename:
         return _list(request, said="Choose a station file first.", status=422)
@@ -93,7 +95,9 @@ def import_station(request: Request, file: Annotated[UploadFile | None, File()] 
         station = read_station(file.file.read())
     except BadStation as bad:
         return _list(request, refused_file=file.filename, faults=bad.faults, status=422)
-    return _open(request, store_of(request).create(station, actor_of(request).name, "import"), "summary")
+    return _open(
+        request, store_of(request).create(station, actor_of(request).name, "import"), "summary"
+    )
 
 
 @router.get("/stations/{station_id}/file", name="station_file", dependencies=[needs("read")])
@@ -105,7 +109,9 @@ def station_file(request: Request, station_id: str, at: str = "") -> Response:
         loaded = store.load(station_id, number)
         body = store.body(station_id, number)
     except KeyError as missing:
-        raise HTTPException(404, "There is no such station, or no such revision of it.") from missing
+        raise HTTPException(
+            404, "There is no such station, or no such revision of it."
+        ) from missing
     name = file_name(loaded.station.identity.title or "station")
     return Response(
         body,
@@ -128,8 +134,11 @@ def rename(request: Request, station_id: str, title: Annotated[str, Form()] = ""
     if not name:
         return _list(request, said="A station must have a name.", status=422)
     try:
-        _do(request, station_id,
-            lambda: store_of(request).rename(station_id, name, actor_of(request).name))  # fmt: skip
+        _do(
+            request,
+            station_id,
+            lambda: store_of(request).rename(station_id, name, actor_of(request).name),
+        )
     except BadStation as bad:
         return _list(request, said=bad.faults[0].sentence, status=422)
     return RedirectResponse(link(request, "stations"), 303)
@@ -164,21 +173,30 @@ def _list(
     store = store_of(request)
     lines = tuple(
         StationLine(
-            row.id, row.title or UNNAMED, ", ".join(part for part in (row.job_number, row.place) if part),
-            when(row.edited_at), row.newest,
+            row.id,
+            row.title or UNNAMED,
+            ", ".join(part for part in (row.job_number, row.place) if part),
+            when(row.edited_at),
+            row.newest,
         )
         for row in store.list_stations(archived)
-    )  # fmt: skip
+    )
     page = StationsPage(
-        lines, archived, len(store.list_stations(not archived)), refused_file,
-        tuple(FaultLine(_where(fault), fault.sentence) for fault in faults), said,
-    )  # fmt: skip
+        lines,
+        archived,
+        len(store.list_stations(not archived)),
+        refused_file,
+        tuple(FaultLine(_where(fault), fault.sentence) for fault in faults),
+        said,
+    )
     return render(request, "stations/page.html", {"page": page}, status=status)
 
 
 def _where(fault: Fault) -> str:
     """Return the sheet of a fault and its address in the file, to be found there."""
-    sheet = next((title for name, title in SHEET_TITLES.items() if name == fault.sheet), "The file")
+    sheet = next(
+        (title for name, title in SHEET_TITLES.items() if name == fault.sheet), "The file"
+    )
     return f"{sheet}, {fault.path}" if fault.path else sheet
 
 

@@ -1,4 +1,4 @@
-"""Sheet 2, Site and supply: levels and water of the site, what feeds the station, the suction line."""
+"""Sheet 2, Site and supply: levels and water, what feeds the station, the suction line."""
 
 from dataclasses import dataclass
 
@@ -15,24 +15,42 @@ from server.pages.sheet import SheetView, open_sheet
 router = APIRouter()
 
 SITE = (
-    "altitude", "datum", "water_temperature/low", "water_temperature/normal",
-    "water_temperature/high", "weather_allowance", "floor_level", "eye_level",
-    "suction_gauge_level", "discharge_gauge_level",
-)  # fmt: skip
+    "altitude",
+    "datum",
+    "water_temperature/low",
+    "water_temperature/normal",
+    "water_temperature/high",
+    "weather_allowance",
+    "floor_level",
+    "eye_level",
+    "suction_gauge_level",
+    "discharge_gauge_level",
+)
 FLOW_TEST = (
-    "title", "made_at", "gauge_level", "static_pressure", "residual_pressure", "test_flow",
-    "station_draw", "use",
-)  # fmt: skip
+    "title",
+    "made_at",
+    "gauge_level",
+    "static_pressure",
+    "residual_pressure",
+    "test_flow",
+    "station_draw",
+    "use",
+)
 TANK = ("cut_out", "low", "normal", "top", "outlet_level", "outlet_bore")
 SUPPLYING_ZONE = (
-    "lowest_customer_level", "loss", "at_flow", "source_grade", "maximum_day", "peak_hour",
+    "lowest_customer_level",
+    "loss",
+    "at_flow",
+    "source_grade",
+    "maximum_day",
+    "peak_hour",
     "fire_flow",
-)  # fmt: skip
+)
 
 
 @dataclass(frozen=True, slots=True)
 class SupplyPage:
-    """All that the sheet's template reads; a kind that is not chosen is folded away, not lost."""
+    """All that the sheet's template reads; a kind not chosen is folded away, not lost."""
 
     site: tuple[FieldView, ...]
     kind: FieldView
@@ -55,7 +73,10 @@ def build(sheet: SheetView) -> SupplyPage:
         chosen=sheet.station.supply.kind or "",
         named=field_views(sheet, "/supply", ("title", "connection_level")),
         tests=item_table(
-            sheet, "/supply/flow_tests", FLOW_TEST, "Flow tests on the main",
+            sheet,
+            "/supply/flow_tests",
+            FLOW_TEST,
+            "Flow tests on the main",
             note="Pressures are gauge; the flow is drawn in addition to that day's demand.",
             empty="No flow test yet. The supply is known by at least one.",
         ),
@@ -65,7 +86,7 @@ def build(sheet: SheetView) -> SupplyPage:
         supplying_zone=field_views(sheet, "/supply/supplying_zone", SUPPLYING_ZONE),
         bypass=field_views(sheet, "/supply/bypass", ("fitted", "bore", "k")),
         suction_line=reaches_view(sheet, "/suction_line/reaches", "Suction line"),
-    )  # fmt: skip
+    )
 
 
 register(SheetPage("supply", build))

@@ -1,0 +1,120 @@
+"""Rows pasted from a spreadsheet into a list of the document, and one typed cell."""
+
+from collections.abc import Sequence
+
+from pydantic import JsonValue
+
+from server.pages.forms import entry_at
+from server.station import fields, paths
+from server.station.edits import Edit, apply_edits
+from server.station.faults import BadStation, Fault, quoted
+from server.station.fresh import new_item
+from server.station.station import Station
+from server.station.typed_text import value_from_text
+from server.units import UNITS, View, display_unit
+
+LONGEST_PASTE = 500
+
+
+def typed_value(
+    station: Station, path: str, text: str, *, view: View, unit: str = ""
+) -> JsonValue:
+    """Return the JSON value of a text typed in a field; `unit` when it names none."""
+    node = fields.node_at(path)
+    known = unit if node.kind == "quantity" and unit in UNITS else None
+    dimension = entry_at(path).dimension
+    return value_from_text(station, path, text, view=view, unit=known, dimension=dimension)
+
+
+def pasted_rows(
+    station: Station, list_path: str, first: str, names: list[str], text: str, view: View
+) -> tuple[Edit, ...]:
+    """Return the edits that fill cells from rows: from the item `first` on, then new items.
+
+    Raises
+    ------
+    BadStation
+        With a fault for every bad cell; then nothing is stored.
+    """
+    lines = [
+        line.split("\t") for line in text.replace("\r\n", "\n").split("\n") if line.strip()
+    ]
+    if not lines or not names:
+        raise _refused(list_path, "", "rows", "There are no rows to store.")
+    if len(lines) > LONGEST_PASTE:
+        raise _refused(
+            list_path,
+            str(len(lines)),
+            f"{LONGEST_PASTE} rows",
+            f"More than {LONGEST_PASTE} rows cannot be pasted at once.",
+        )
+    if _is_head(list_path, names, lines[0]):
+        lines = lines[1:]
+    items = [f"{list_path}/{i}" for i in ids_of(station, list_path)]
+    at = items.index(first) if first in items else len(items)
+    edits: list[Edit] = []
+    faults: list[Fault] = []
+    for number, cells in enumerate(lines):
+        if at + number >= len(items):
+            new = new_item(station, list_path)
+            edits.append(Edit("insert", list_path, new))
+            station = apply_edits(station, edits[-1:])
+            items.append(f"{list_path}/{new['id']}")
+        for column, (name, cell) in enumerate(zip(names, cells, strict=False)):
+            path = f"{items[at + number]}/{name}"
+            try:
+                edit = Edit(
+                    "set",
+                    path,
+                    typed_value(station, path, cell, view=view, unit=_column_unit(path, view)),
+                )
+                station = apply_edits(station, [edit])
+                edits.append(edit)
+            except BadStation as bad:
+                title = fields.label(path)
+                faults.extend(
+                    _fault(
+                        path,
+                        cell,
+                        fault.allowed,
+                        f"Row {number + 1}, {title}: {fault.sentence}",
+                        (number, column),
+                    )
+                    for fault in bad.faults
+                )
+    if faults:
+        raise BadStation(faults)
+    return tuple(edits)
+
+
+def _column_unit(path: str, view: View) -> str:
+    """Return the unit in the head of a column, for a pasted number without its own."""
+    entry = fields.entry_for(path)
+    if fields.kind_of(path) != "quantity" or entry.dimension is None:
+        return ""
+    return display_unit(entry.dimension, view).symbol
+
+
+def _is_head(list_path: str, names: Sequence[str], cells: Sequence[str]) -> bool:
+    """Whether a pasted line is the table's head: each cell begins with its column's title."""
+    titles = [fields.label(f"{list_path}/*/{name}").lower() for name in names]
+    return all(
+        cell.strip().lower().startswith(title)
+        for title, cell in zip(titles, cells, strict=False)
+    )
+
+
+def ids_of(station: Station, list_path: str) -> list[str]:
+    """Return the ids of the items of a list."""
+    items = paths.get(station, list_path)
+    return [str(item.id) for item in items] if isinstance(items, tuple) else []
+
+
+def _refused(path: str, given: str, allowed: str, sentence: str) -> BadStation:
+    return BadStation([_fault(path, given, allowed, sentence)])
+
+
+def _fault(
+    path: str, given: str, allowed: str, sentence: str, cell: tuple[int, int] | None = None
+) -> Fault:
+    return Fault(path, fields.sheet_of(path), quoted(given), allowed, sentence, cell)
