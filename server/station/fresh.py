@@ -53,6 +53,8 @@ def copy_item(station: Station, item_path: str) -> Item:
     list_path = item_path.rpartition("/")[0]
     _new_ids(item, list_path, taken, renamed)
     _refer(item, renamed)
+    if list_path == "/supply/flow_tests":
+        _flow_test(station, (), item, taken)
     title = item.get("title")
     if isinstance(title, str) and title:
         items = items_of(get(station, list_path))
