@@ -10,7 +10,7 @@ from server.hydraulics.errors import SolutionNotFound
 
 MOST_PASSES = 250
 SLOW = 4  # passes in which a bracket has to halve, else it is halved
-ENOUGH = 1e-12  # width of a bracket that counts as a root, as a share of its larger end
+ENOUGH = 1e-9  # width of a last bracket, as a share of its larger end; read along its chord
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -37,8 +37,8 @@ def falling_root(
     Returns
     -------
     FallingRoot
-        Roots, to 1e-12 of the bracket's larger end; nan where the value is below zero at `low`,
-        above zero at `high`, or not a number.
+        Roots, to 1e-9 of the bracket's larger end at worst, to rounding for smooth functions;
+        nan where the value is below zero at `low`, above zero at `high`, or not a number.
 
     Raises
     ------
@@ -59,14 +59,15 @@ def falling_root(
     above = np.where(bracketed & (at_low == 0), below, above)
     below = np.where(bracketed & (at_high == 0) & (at_low != 0), above, below)
     moving = bracketed & (above - below > enough)
+    true_below, true_above = value_below, value_above
     widths = [above - below]
     for _ in range(MOST_PASSES):
         if not moving.any():
-            root = np.where(bracketed, 0.5 * (below + above), np.nan)
-            return FallingRoot(root=root, at_low=at_low, at_high=at_high)
-        fall = value_below - value_above
-        share = np.where(moving, value_below, 0.0) / np.where(moving & (fall > 0), fall, 1.0)
-        secant = below + (above - below) * share
+            root = below + (above - below) * _share(true_below, true_above)
+            return FallingRoot(
+                root=np.where(bracketed, root, np.nan), at_low=at_low, at_high=at_high
+            )
+        secant = below + (above - below) * _share(value_below, value_above)
         # not nearer to a bound than what counts: a step past the root then closes the bracket
         ahead = np.clip(secant, below + 0.5 * enough, above - 0.5 * enough)
         if len(widths) > SLOW:
@@ -82,14 +83,23 @@ def falling_root(
         value_below = np.where(
             falls, value_below * _weight(value, value_above, falls), value_below
         )
-        below = np.where(rises | (falls & (value == 0)), ahead, below)
-        above = np.where(falls, ahead, above)
-        value_below = np.where(rises, value, value_below)
+        met = moving & (value == 0)
+        below, above = np.where(rises | met, ahead, below), np.where(falls, ahead, above)
+        value_below = np.where(rises | met, value, value_below)
         value_above = np.where(falls, value, value_above)
+        true_below = np.where(rises | met, value, true_below)
+        true_above = np.where(falls, value, true_above)
         widths.append(above - below)
         moving &= above - below > enough
     worst = float(np.abs(value[moving]).max())
     raise SolutionNotFound("root of a falling function", int(moving.sum()), worst)
+
+
+def _share(value_below: FloatArray, value_above: FloatArray) -> FloatArray:
+    """Return where a straight line passes zero, as a share of the way from below to above."""
+    fall = value_below - value_above
+    some = (value_below > 0) & (fall > 0) & np.isfinite(fall)
+    return np.where(some, value_below, 0.0) / np.where(some, fall, 1.0)
 
 
 def _weight(value: FloatArray, replaced: FloatArray, where: BoolArray) -> FloatArray:

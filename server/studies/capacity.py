@@ -90,8 +90,8 @@ def _excess(
 ) -> Floats:
     """Return pressure over what is asked, (M, P + 3): points, connection, gauge, NPSH [Pa]."""
     speed, points, weight = of.control.highest_speed, len(of.points.facts), of.water.weight
-    flow = speed * units.total(y)
-    heads = _heads(of, asked, flow)
+    each = units.kind_flows(y)
+    heads = _heads(of, asked, speed * units.sum_of(each))
     entry = (heads.suction_grade + speed**2 * y - heads.main_loss)[:, :points]
     pressure = point_pressures(of, entry, heads.zone_loss[:, :points])[1]
     over = np.empty(y.shape)
@@ -100,7 +100,9 @@ def _excess(
     over[:, points] = weight * connection - limits.suction_main
     gauge = heads.suction_grade[:, points + 1] - of.supply.suction_gauge_level
     over[:, points + 1] = weight * gauge - limits.suction_gauge
-    npsh = _npsh_excess(of, limits, units, y[:, points + 2], heads.suction_grade[:, points + 2])
+    npsh = _npsh_excess(
+        of, limits, units, [x[:, points + 2] for x in each], heads.suction_grade[:, points + 2]
+    )
     over[:, points + 2] = weight * npsh
     return over
 
@@ -116,13 +118,19 @@ def _heads(of: LoweredSet, asked: Asked, flow: Floats) -> SystemHeads:
 
 
 def _npsh_excess(
-    of: LoweredSet, limits: StudyLimits, units: CommonSpeed, y: Floats, suction_grade: Floats
+    of: LoweredSet,
+    limits: StudyLimits,
+    units: CommonSpeed,
+    each: Sequence[Floats],
+    suction_grade: Floats,
 ) -> Floats:
     """Return the least NPSH available over what criteria ask, nan where it is not known [m]."""
     speed, water = of.control.highest_speed, of.water
     vapour = (water.atmosphere - water.vapour_pressure) / water.weight
-    least = np.full(y.shape, np.inf)
-    for t, x in enumerate(units.kind_flows(y)):
+    least = np.full(suction_grade.shape, np.inf)
+    for t, x in enumerate(each):
+        if not np.any(units.count[:, t]):
+            continue
         one, flow = of.units[t], speed * x
         required = affinity.npsh_required(
             one.curve, flow, speed=speed, exponent=one.npsh_exponent

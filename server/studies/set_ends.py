@@ -32,11 +32,19 @@ class CommonSpeed:
 
     def total(self, y: Floats) -> Floats:
         """Return X(y), y of shape (M, ...): a leg above its peak adds nothing."""
-        spread = (slice(None),) + (None,) * (y.ndim - 1)
-        total = np.zeros(y.shape)
-        for t, x in enumerate(self.kind_flows(y)):
+        return self.sum_of(self.kind_flows(y))
+
+    def sum_of(self, flows: Sequence[Floats]) -> Floats:
+        """Return the flow of the sets from that of one leg of each kind."""
+        spread = (slice(None),) + (None,) * (flows[0].ndim - 1)
+        total = np.zeros(flows[0].shape)
+        for t, x in enumerate(flows):
             total += self.count[:, t][spread] * x
         return total
+
+    def take(self, rows: Flags) -> "CommonSpeed":
+        """Return the combinations marked."""
+        return CommonSpeed(legs=self.legs, count=self.count[rows])
 
     @property
     def last_head(self) -> Floats:
@@ -125,10 +133,11 @@ def preferred_flows(
     # where a speed limit comes before the end of the region, the limit is the end of the range
     too_slow = known[:, 0] & (found.at_low[:, 0] < 0)
     too_fast = known[:, 1] & (found.at_high[:, 1] > 0)
-    if too_slow.any():
-        start = np.where(too_slow, _flows_at_speed(of, units, low, aged, shift), start)
-    if too_fast.any():
-        end = np.where(too_fast, _flows_at_speed(of, units, high, aged, shift), end)
+    for limited, speed, flows_there in ((too_slow, low, start), (too_fast, high, end)):
+        rows = np.asarray(limited.any(axis=1), dtype=np.bool_)
+        if rows.any():
+            at_limit = _flows_at_speed(of, units.take(rows), speed, aged, shift)
+            flows_there[rows] = np.where(limited[rows], at_limit, flows_there[rows])
     empty = ~(end > start)
     return PreferredFlows(
         start=np.where(empty, np.nan, start), end=np.where(empty, np.nan, end)
