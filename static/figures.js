@@ -120,7 +120,13 @@
   };
   addEventListener("beforeprint", () => paper(true));
   addEventListener("afterprint", () => paper(false));
-  document.addEventListener("DOMContentLoaded", () => { columns(); draw(document); });
+  // the chosen scenario is in sight, however long the row is
+  const inSight = () => {
+    const row = document.getElementById("scenario-row");
+    const tab = row && row.querySelector("[aria-current]");
+    if (tab) row.scrollLeft = tab.offsetLeft - row.offsetLeft - (row.clientWidth - tab.clientWidth) / 2;
+  };
+  document.addEventListener("DOMContentLoaded", () => { columns(); inSight(); draw(document); });
   // the fragment that came, not the target of the request: figures also arrive out of band
-  document.addEventListener("htmx:afterSettle", (event) => { columns(); draw(event.target); });
+  document.addEventListener("htmx:afterSettle", (event) => { columns(); inSight(); draw(event.target); });
 })();

@@ -1,4 +1,4 @@
-"""The band mark: where a pump stands on a short axis from 0 to 150 % of best-efficiency flow."""
+"""The band mark: a pump on a short axis from 0 to 150 % of best-efficiency flow."""
 
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -20,7 +20,7 @@ REGION_WORDS = {
 
 @dataclass(frozen=True, slots=True)
 class BandMark:
-    """A mark as it is drawn: ends of the preferred region, the dot, the words; pixels of 62 by 12."""
+    """A mark as drawn: ends of the preferred region, dot, words; pixels of 62 by 12."""
 
     low: float | None
     high: float | None
@@ -46,7 +46,7 @@ def band_mark(
     Parameters
     ----------
     share : float or None
-        Flow over best-efficiency flow at the running speed; None or nan when it is not known. [-]
+        Flow over best-efficiency flow at the running speed; None or nan if not known. [-]
     preferred : (float, float) or None
         Ends of its preferred region. [-]
     region : Region
@@ -60,9 +60,18 @@ def band_mark(
     percent = _percent(share, preferred)
     low, high = (None, None) if preferred is None else (_at(preferred[0]), _at(preferred[1]))
     return BandMark(
-        low, high, _at(min(share, AXIS_END)), share > AXIS_END, region.value.replace("_", "-"), word,
-        f"{percent}\u00a0%, {word}", percent, region, float(share), slot,
-    )  # fmt: skip
+        low,
+        high,
+        _at(min(share, AXIS_END)),
+        share > AXIS_END,
+        region.value.replace("_", "-"),
+        word,
+        f"{percent}\u00a0%, {word}",
+        percent,
+        region,
+        float(share),
+        slot,
+    )
 
 
 def slot_mark(judged: JudgedSet, case: int, combination: int, slot: int) -> BandMark:
@@ -78,7 +87,7 @@ def slot_mark(judged: JudgedSet, case: int, combination: int, slot: int) -> Band
 
 
 def worst_mark(judged: JudgedSet, case: int, combination: int) -> BandMark | None:
-    """Return the mark of the running pump that stands farthest from its region; None if none runs."""
+    """Return the mark of the running pump farthest from its region; None if none runs."""
     marks = [slot_mark(judged, case, combination, n) for n in judged.running(case, combination)]
     return farthest(marks)
 
@@ -102,8 +111,10 @@ def _percent(share: float, preferred: tuple[float, float] | None) -> str:
         if preferred is None:
             return text
         rounded = float(text) / 100
-        if all((rounded < end) == (share < end) and (rounded > end) == (share > end)
-               for end in preferred):  # fmt: skip
+        if all(
+            (rounded < end) == (share < end) and (rounded > end) == (share > end)
+            for end in preferred
+        ):
             return text
     return text
 

@@ -67,7 +67,8 @@ def state_words(judged: JudgedSet, case: int) -> str:
 
 def case_words(judged: JudgedSet, case: int) -> str:
     """Return a case in words: scenario and state."""
-    return f"{scenario_title(judged, judged.result.cases[case].scenario)}, {state_words(judged, case)}"
+    title = scenario_title(judged, judged.result.cases[case].scenario)
+    return f"{title}, {state_words(judged, case)}"
 
 
 def slot_title(judged: JudgedSet, slot: str) -> str:
@@ -81,7 +82,11 @@ def slot_title(judged: JudgedSet, slot: str) -> str:
 def running_slots(judged: JudgedSet, case: int) -> tuple[int, ...]:
     """Return the slots of the chosen combination of a case."""
     chosen = int(judged.result.chosen[case])
-    return () if chosen < 0 else tuple(int(n) for n in np.flatnonzero(judged.result.combinations[chosen]))
+    return (
+        ()
+        if chosen < 0
+        else tuple(int(n) for n in np.flatnonzero(judged.result.combinations[chosen]))
+    )
 
 
 def running_words(judged: JudgedSet, case: int) -> str:
@@ -98,7 +103,9 @@ def no_duty_words(judged: JudgedSet, case: int) -> str:
     """Return why a case has no duty, as a sentence."""
     result = judged.result
     chosen = int(result.chosen[case])
-    usable = [chosen] if chosen >= 0 else [int(k) for k in np.flatnonzero(result.available[case])]
+    usable = (
+        [chosen] if chosen >= 0 else [int(k) for k in np.flatnonzero(result.available[case])]
+    )
     states = {State(int(result.state[case, k])) for k in usable}
     if not usable:
         return "No pump is available in this state."
@@ -116,7 +123,10 @@ def combination_words(judged: JudgedSet, combination: int) -> str:
     kinds: dict[str, int] = {}
     for n in np.flatnonzero(judged.result.combinations[combination]):
         kinds[judged.pump_title(int(n))] = kinds.get(judged.pump_title(int(n)), 0) + 1
-    return " and ".join(title if number == 1 else f"{_number(number)} {title}" for title, number in kinds.items())
+    return " and ".join(
+        title if number == 1 else f"{_number(number)} {title}"
+        for title, number in kinds.items()
+    )
 
 
 def _number(count: int) -> str:

@@ -1,12 +1,12 @@
 """A chart as data: axes, panels, series, bands, markers, words, and the table behind it.
 
-Everything is in SI. Units and rounding come in where a chart is written for a person: `to_plotly`
-for the screen, `to_svg` for paper. Both take the numbers through `shown_points`, so that the same
-points stand in both.
+Everything is in SI. Units and rounding come in where a chart is written for a person: by
+`to_plotly` for the screen, by `to_svg` for paper. Both take the numbers through `shown_points`,
+so that the same points stand in both.
 """
 
 from dataclasses import dataclass, field
-from enum import Enum
+from enum import StrEnum
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,7 +16,7 @@ from server.units import Dimension, View, display_unit, shown
 Floats = NDArray[np.float64]
 
 
-class Role(str, Enum):
+class Role(StrEnum):
     """What a thing on a chart stands for; colour, dash and marker follow from it."""
 
     SET_CURVE = "set_curve"  # pumps together, at top speed
@@ -132,7 +132,7 @@ class BehindTable:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Chart:
-    """One figure: panels over a common horizontal axis, what is drawn in them, the words for it."""
+    """One figure: panels over a common horizontal axis, what is drawn, the words for it."""
 
     key: str
     title: str
@@ -149,7 +149,7 @@ class Chart:
 
 
 def shown_points(values: Floats, axis: Axis, view: View) -> tuple[float | None, ...]:
-    """Return SI values in the unit a person reads, to four decimals; None where there is no number.
+    """Return SI values in the unit a person reads, to four decimals; None for no number.
 
     Parameters
     ----------

@@ -49,14 +49,21 @@ def duty_chart(curves: DutyCurves, judged: JudgedSet, chosen: str | None = None)
         if not lines:
             continue
         high = max(float(np.nanmax(line.y)) for line in lines)
-        panels.append(Panel(key, Axis(title, dimension, 0.0, 1.0 if key == "efficiency" else 1.12 * high), SMALL_SHARE))
+        panels.append(
+            Panel(
+                key,
+                Axis(title, dimension, 0.0, 1.0 if key == "efficiency" else 1.12 * high),
+                SMALL_SHARE,
+            )
+        )
         series.extend(lines)
         markers.extend(_markers(key, judged, chosen, markers, len(panels) - 1))
     return Chart(
         key="duty",
         title=f"Duty of {judged.title}",
         caption=caption_of(curves, judged)
-        + f" Below: along the held set point at {curves.along_state} supply; each point in its own state.",
+        + f" Below: along the held set point at {curves.along_state} supply; each point in "
+        "its own state.",
         alt=alt_of(judged),
         x=flow_axis(curves, judged),
         panels=tuple(panels),
@@ -96,7 +103,12 @@ def _lines(key: str, curves: DutyCurves, judged: JudgedSet, panel: int) -> list[
             "efficiency": [("efficiency", name, role, along.efficiency)],
             "power": [("power", name, role, along.shaft_power)],
             "npsh": [
-                ("available", f"available, {curves.along_state} supply", Role.AVAILABLE, along.npsh_available),
+                (
+                    "available",
+                    f"available, {curves.along_state} supply",
+                    Role.AVAILABLE,
+                    along.npsh_available,
+                ),
                 ("required", f"required, {name}", role, along.npsh_required),
             ],
         }[key]
@@ -106,19 +118,28 @@ def _lines(key: str, curves: DutyCurves, judged: JudgedSet, panel: int) -> list[
                 first, last = int(np.argmax(known)), int(values.size - np.argmax(known[::-1]))
                 lines.append(
                     Series(
-                        f"{part}-{along.combination}", told, look, along.flow[first:last],
-                        values[first:last], panel, dash,
+                        f"{part}-{along.combination}",
+                        told,
+                        look,
+                        along.flow[first:last],
+                        values[first:last],
+                        panel,
+                        dash,
                     )
-                )  # fmt: skip
+                )
     return _named(lines, key)
 
 
 def _named(lines: list[Series], key: str) -> list[Series]:
-    """Give a name to the lines that need one: NPSH available once, the rest by their dash above."""
+    """Name the lines that need it: NPSH available once, the rest by their dash above."""
     if key != "npsh":
         return lines
     longest = {
-        part: max((line for line in lines if line.key.startswith(part)), key=lambda s: float(s.x[-1]), default=None)
+        part: max(
+            (line for line in lines if line.key.startswith(part)),
+            key=lambda s: float(s.x[-1]),
+            default=None,
+        )
         for part in ("available", "required")
     }
     named: list[Series] = []
@@ -128,10 +149,16 @@ def _named(lines: list[Series], key: str) -> list[Series]:
         name = line.name if part == "available" else "required"
         named.append(
             Series(
-                line.key, name if is_longest else line.name, line.role, line.x, line.y, line.panel,
-                line.dash, is_longest,
+                line.key,
+                name if is_longest else line.name,
+                line.role,
+                line.x,
+                line.y,
+                line.panel,
+                line.dash,
+                is_longest,
             )
-        )  # fmt: skip
+        )
     return named
 
 
@@ -152,10 +179,15 @@ def _markers(
         scenario = result.cases[c].scenario
         markers.append(
             Marker(
-                scenario, scenario_title(judged, scenario), roles.get(scenario, next(iter(MARK_ROLES.values()))),
-                float(result.flow[c, k]), value, panel, chosen=scenario == chosen,
+                scenario,
+                scenario_title(judged, scenario),
+                roles.get(scenario, next(iter(MARK_ROLES.values()))),
+                float(result.flow[c, k]),
+                value,
+                panel,
+                chosen=scenario == chosen,
             )
-        )  # fmt: skip
+        )
     return markers
 
 
@@ -167,9 +199,11 @@ def _value(key: str, judged: JudgedSet, c: int, k: int, running: list[int]) -> f
     if key == "power":
         value = power
     elif key == "npsh":
-        value = float(np.nanmin(result.npsh_available[c, k, running])) if np.any(
-            np.isfinite(result.npsh_available[c, k, running])
-        ) else float("nan")
+        value = (
+            float(np.nanmin(result.npsh_available[c, k, running]))
+            if np.any(np.isfinite(result.npsh_available[c, k, running]))
+            else float("nan")
+        )
     else:
         shares = result.efficiency[c, k, running]
         # all pumps together: what they give the water over what their shafts take
@@ -180,9 +214,13 @@ def _value(key: str, judged: JudgedSet, c: int, k: int, running: list[int]) -> f
 
 def _along_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
     columns = (
-        Column("Flow", D.FLOW), Column("Speed", D.RATIO), Column("Efficiency", D.RATIO),
-        Column("Shaft power", D.POWER), Column("NPSH available", D.HEAD), Column("NPSH required", D.HEAD),
-    )  # fmt: skip
+        Column("Flow", D.FLOW),
+        Column("Speed", D.RATIO),
+        Column("Efficiency", D.RATIO),
+        Column("Shaft power", D.POWER),
+        Column("NPSH available", D.HEAD),
+        Column("NPSH required", D.HEAD),
+    )
     tables: list[BehindTable] = []
     for along in curves.along:
         known = np.flatnonzero(np.isfinite(along.speed))
@@ -192,7 +230,8 @@ def _along_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
         name = combination_words(judged, along.combination)
         tables.append(
             BehindTable(
-                f"{name[:1].upper()}{name[1:]} along the held set point, {curves.along_state} supply",
+                f"{name[:1].upper()}{name[1:]} along the held set point, {curves.along_state} "
+                "supply",
                 columns,
                 tuple(_along_row(along, int(i)) for i in at),
             )
@@ -202,7 +241,11 @@ def _along_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
 
 def _along_row(along: AlongControl, i: int) -> tuple[float | None, ...]:
     values = (
-        along.flow[i], along.speed[i], along.efficiency[i], along.shaft_power[i],
-        along.npsh_available[i], along.npsh_required[i],
-    )  # fmt: skip
+        along.flow[i],
+        along.speed[i],
+        along.efficiency[i],
+        along.shaft_power[i],
+        along.npsh_available[i],
+        along.npsh_required[i],
+    )
     return tuple(float(v) if np.isfinite(v) else None for v in values)

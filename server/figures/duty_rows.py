@@ -1,4 +1,4 @@
-"""The duty of each case as one row of SI numbers: what every duty table, on screen or paper, prints."""
+"""The duty of each case as one row of SI numbers, for every duty table."""
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
@@ -20,7 +20,7 @@ from server.studies.shapes import Case
 
 @dataclass(frozen=True, slots=True)
 class DutyRow:
-    """One case; a number that could not be had is None, and `reason` says why there is no duty."""
+    """One case; a number not to be had is None, `reason` says why there is no duty."""
 
     case: int
     of: Case
@@ -79,7 +79,10 @@ def duty_row(judged: JudgedSet, case: int) -> DutyRow:
     running = list(judged.running(case, k)) if solved else []
     flow = _number(result.flow[case, k]) if solved else _number(result.demand[case])
     available, required = _npsh(judged, case, k, running)
-    shaft, wire = _sum(result.shaft_power[case, k], running), _sum(result.wire_power[case, k], running)
+    shaft, wire = (
+        _sum(result.shaft_power[case, k], running),
+        _sum(result.wire_power[case, k], running),
+    )
     useful = _sum(result.shaft_power[case, k] * result.efficiency[case, k], running)
     return DutyRow(
         case=case,
@@ -140,7 +143,9 @@ def _npsh(
     return (min(only), None) if only else (None, None)
 
 
-def _sum(values: np.ndarray[tuple[int, ...], np.dtype[np.float64]], running: Sequence[int]) -> float | None:
+def _sum(
+    values: np.ndarray[tuple[int, ...], np.dtype[np.float64]], running: Sequence[int]
+) -> float | None:
     total = float(np.sum(values[list(running)])) if running else float("nan")
     return total if np.isfinite(total) else None
 

@@ -1,4 +1,4 @@
-"""The head figure: what the set gives and what is asked of it, with every duty point on them."""
+"""The head figure: what the set gives, what is asked of it, every duty point."""
 
 from collections.abc import Sequence
 
@@ -40,22 +40,30 @@ MARK_ROLES = {
 def head_panel(curves: DutyCurves) -> Panel:
     """Return the panel of the head."""
     top = max((float(np.max(s.head)) for s in curves.sets if s.head.size), default=1.0)
-    asked = [float(np.nanmax(r)) for r in (curves.required_low, curves.required_high) if np.any(np.isfinite(r))]
+    asked = [
+        float(np.nanmax(r))
+        for r in (curves.required_low, curves.required_high)
+        if np.any(np.isfinite(r))
+    ]
     # a head far above every pump is cut off: the pumps must stay readable
     high = min(max([top, *asked]), 1.3 * top)
     return Panel("head", Axis("Head, manifold to manifold", D.HEAD, 0.0, 1.06 * high))
 
 
 def flow_axis(curves: DutyCurves, judged: JudgedSet) -> Axis:
-    """Return the common flow axis: past the largest duty, at most to the end of the longest curve."""
+    """Return the common flow axis: past the largest duty and the longest curve."""
     ends = [float(s.flow[-1]) for s in curves.sets if s.flow.size]
     demand = judged.result.demand
     asked = float(np.nanmax(demand)) if demand.size else 0.0
-    return Axis("Station flow", D.FLOW, 0.0, max([1.04 * e for e in ends] + [1.1 * asked, 1e-3]))
+    return Axis(
+        "Station flow", D.FLOW, 0.0, max([1.04 * e for e in ends] + [1.1 * asked, 1e-3])
+    )
 
 
-def head_series(curves: DutyCurves, judged: JudgedSet, chosen: str | None) -> tuple[Series, ...]:
-    """Return the set curves at top speed, the chosen case's held curve, and the required head."""
+def head_series(
+    curves: DutyCurves, judged: JudgedSet, chosen: str | None
+) -> tuple[Series, ...]:
+    """Return curves at top speed, the chosen case's held curve, and the required head."""
     series: list[Series] = []
     numbers = {s.combination: i for i, s in enumerate(_mains(curves.sets))}
     for running in curves.sets:
@@ -65,25 +73,31 @@ def head_series(curves: DutyCurves, judged: JudgedSet, chosen: str | None) -> tu
         name = combination_words(judged, running.combination)
         series.append(
             Series(
-                f"top-{running.combination}", name, role, running.flow, running.head,
-                dash=numbers.get(running.combination, 0), named=True,
+                f"top-{running.combination}",
+                name,
+                role,
+                running.flow,
+                running.head,
+                dash=numbers.get(running.combination, 0),
+                named=True,
             )
-        )  # fmt: skip
+        )
     for held in curves.held:
         case = judged.result.cases[held.case]
         if case.scenario == chosen:
-            name = f"{running_words(judged, held.case)} at the speed of {scenario_title(judged, case.scenario)}"
+            title = scenario_title(judged, case.scenario)
+            name = f"{running_words(judged, held.case)} at the speed of {title}"
             series.append(
-                Series(f"held-{case.scenario}", name, Role.HELD_CURVE, held.flow, held.head, dash=2)
+                Series(
+                    f"held-{case.scenario}", name, Role.HELD_CURVE, held.flow, held.head, dash=2
+                )
             )
     for key, name, role, required in (
         ("required-low", "asked at low supply", Role.SYSTEM_LOW, curves.required_low),
         ("required-high", "asked at high supply", Role.SYSTEM_HIGH, curves.required_high),
     ):
         if np.any(np.isfinite(required)):
-            series.append(
-                Series(key, name, role, curves.flow, required, named=True)
-            )
+            series.append(Series(key, name, role, curves.flow, required, named=True))
     return tuple(series)
 
 
@@ -94,18 +108,23 @@ def head_areas(curves: DutyCurves) -> tuple[Area, ...]:
         if running.preferred_flow.size:
             areas.append(
                 Area(
-                    f"preferred-{running.combination}", "preferred region", Role.PREFERRED,
-                    running.preferred_flow, running.preferred_head,
+                    f"preferred-{running.combination}",
+                    "preferred region",
+                    Role.PREFERRED,
+                    running.preferred_flow,
+                    running.preferred_head,
                 )
-            )  # fmt: skip
+            )
     if np.all(np.isfinite(curves.required_low)) and np.all(np.isfinite(curves.required_high)):
         areas.append(
             Area(
-                "band", "low to high supply", Role.SYSTEM_BAND,
+                "band",
+                "low to high supply",
+                Role.SYSTEM_BAND,
                 np.concatenate([curves.flow, curves.flow[::-1]]),
                 np.concatenate([curves.required_low, curves.required_high[::-1]]),
             )
-        )  # fmt: skip
+        )
     return tuple(areas)
 
 
@@ -128,12 +147,15 @@ def duty_markers(judged: JudgedSet, chosen: str | None) -> tuple[Marker, ...]:
         scenario = result.cases[c].scenario
         markers.append(
             Marker(
-                scenario, named[key] if key not in told else scenario_title(judged, scenario),
+                scenario,
+                named[key] if key not in told else scenario_title(judged, scenario),
                 Role.DUTY_INSIDE if mark is None else MARK_ROLES[mark.region],
-                float(result.flow[c, k]), float(result.station_head[c, k]),
-                chosen=scenario == chosen, named=key not in told,
+                float(result.flow[c, k]),
+                float(result.station_head[c, k]),
+                chosen=scenario == chosen,
+                named=key not in told,
             )
-        )  # fmt: skip
+        )
         told.add(key)
     return tuple(markers)
 
@@ -149,21 +171,31 @@ def _duty_table(judged: JudgedSet) -> BehindTable:
     for c in np.flatnonzero(result.shown):
         case, k = int(c), int(result.chosen[c])
         solved = (case, k) in set(judged.stated)
-        marks = [slot_mark(judged, case, k, n) for n in judged.running(case, k)] if solved else []
+        marks = (
+            [slot_mark(judged, case, k, n) for n in judged.running(case, k)] if solved else []
+        )
         rows.append(
             (
-                case_words(judged, case), _number(result.flow[case, k]) if solved else None,
+                case_words(judged, case),
+                _number(result.flow[case, k]) if solved else None,
                 _number(result.station_head[case, k]) if solved else None,
-                _number(result.required_head[case]), running_words(judged, case),
+                _number(result.required_head[case]),
+                running_words(judged, case),
                 _marks_text(marks),
             )
-        )  # fmt: skip
+        )
     return BehindTable(
         "Duty points",
-        (Column("Scenario"), Column("Flow", D.FLOW), Column("Head delivered", D.HEAD),
-         Column("Head that holds the set point", D.HEAD), Column("Running"), Column("Of best-efficiency flow")),
+        (
+            Column("Scenario"),
+            Column("Flow", D.FLOW),
+            Column("Head delivered", D.HEAD),
+            Column("Head that holds the set point", D.HEAD),
+            Column("Running"),
+            Column("Of best-efficiency flow"),
+        ),
         tuple(rows),
-    )  # fmt: skip
+    )
 
 
 def _curve_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
@@ -181,9 +213,17 @@ def _curve_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
     tables.append(
         BehindTable(
             f"Head that holds the set point, {curves.pipes} pipes",
-            (Column("Flow", D.FLOW), Column("Low supply", D.HEAD), Column("High supply", D.HEAD)),
+            (
+                Column("Flow", D.FLOW),
+                Column("Low supply", D.HEAD),
+                Column("High supply", D.HEAD),
+            ),
             tuple(
-                (float(curves.flow[i]), _number(curves.required_low[i]), _number(curves.required_high[i]))
+                (
+                    float(curves.flow[i]),
+                    _number(curves.required_low[i]),
+                    _number(curves.required_high[i]),
+                )
                 for i in at
             ),
         )
@@ -201,7 +241,11 @@ def _mains(sets: Sequence[RunningSet]) -> list[RunningSet]:
 
 
 def _spread(size: int) -> list[int]:
-    return sorted({round(i) for i in np.linspace(0, size - 1, min(size, BEHIND_ROWS))}) if size else []
+    return (
+        sorted({round(i) for i in np.linspace(0, size - 1, min(size, BEHIND_ROWS))})
+        if size
+        else []
+    )
 
 
 def _near(flow: float, head: float) -> tuple[int, int]:
@@ -224,8 +268,10 @@ def _lower(text: str) -> str:
 def caption_of(curves: DutyCurves, judged: JudgedSet) -> str:
     """Return what the figure shows, in two sentences."""
     return (
-        "Curves of the pumps that run together, at top speed; hatched where all of them are in their"
-        f" preferred region. Blue: the head that holds the set point from low to high supply, {curves.pipes}"
+        "Curves of the pumps that run together, at top speed; hatched where all of them are "
+        "in their"
+        " preferred region. Blue: the head that holds the set point from low to high supply, "
+        f"{curves.pipes}"
         " pipes, all flow as demand of the zone."
     )
 
@@ -243,4 +289,6 @@ def alt_of(judged: JudgedSet) -> str:
             f"{scenario_title(judged, result.cases[c].scenario)} ({state_words(judged, c)}):"
             f" {running_words(judged, c)}{told}"
         )
-    return "Head against station flow. " + ("; ".join(parts) if parts else "No duty point.") + "."
+    return (
+        "Head against station flow. " + ("; ".join(parts) if parts else "No duty point.") + "."
+    )

@@ -54,7 +54,7 @@ def ends(axis: Axis, view: View) -> tuple[float, float]:
 
 
 def lay_out(chart: Chart, view: View, *, width: float, scale: float = 1.0) -> Layout:
-    """Return the layout of a chart that is `width` pixels wide; `scale` stretches the panels' height."""
+    """Return the layout of a chart `width` pixels wide; `scale` stretches its height."""
     x_low, x_high = ends(chart.x, view)
     top = MARGIN_TOP
     places: list[PanelPlace] = []
@@ -68,11 +68,16 @@ def lay_out(chart: Chart, view: View, *, width: float, scale: float = 1.0) -> La
 
 
 def line_points(
-    xs: Sequence[float | None], ys: Sequence[float | None], place: PanelPlace, every: float = 5.0
+    xs: Sequence[float | None],
+    ys: Sequence[float | None],
+    place: PanelPlace,
+    every: float = 5.0,
 ) -> list[tuple[float, float]]:
     """Return points along a line, about `every` pixels, for keeping names off it."""
     pixels = [
-        (place.x(x), place.y(y)) for x, y in zip(xs, ys, strict=True) if x is not None and y is not None
+        (place.x(x), place.y(y))
+        for x, y in zip(xs, ys, strict=True)
+        if x is not None and y is not None
     ]
     points: list[tuple[float, float]] = []
     for (x0, y0), (x1, y1) in zip(pixels, pixels[1:], strict=False):
@@ -81,4 +86,3 @@ def line_points(
             (x0 + (x1 - x0) * i / steps, y0 + (y1 - y0) * i / steps) for i in range(steps)
         )
     return points
-

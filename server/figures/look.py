@@ -1,7 +1,8 @@
 """How each role looks: colour, dash, width and marker, in one place.
 
-The colours are the page's own (CSS names) and their paper values. They stay apart for the common
-kinds of colour blindness, and nothing is told by colour alone: dash, marker and words differ too.
+The colours are the page's own (CSS names) and their paper values. They stay apart for the
+common kinds of colour blindness, and nothing is told by colour alone: dash, marker and words
+differ too.
 """
 
 from collections.abc import Mapping
@@ -10,18 +11,39 @@ from typing import Literal
 
 from server.figures.chart import Role
 
-Colour = Literal["ink", "soft", "rule", "hair", "water", "water-tint", "outside", "edge", "note", "paper"]
+Colour = Literal[
+    "ink", "soft", "rule", "hair", "water", "water-tint", "outside", "edge", "note", "paper"
+]
 Shape = Literal["circle", "square", "diamond", "triangle"]
 
 SCREEN: Mapping[str, str] = {
     name: f"var(--{name})"
-    for name in ("ink", "soft", "rule", "hair", "water", "water-tint", "outside", "edge", "note", "paper")
-}  # fmt: skip
+    for name in (
+        "ink",
+        "soft",
+        "rule",
+        "hair",
+        "water",
+        "water-tint",
+        "outside",
+        "edge",
+        "note",
+        "paper",
+    )
+}
 # printed on white: the hair lines a little darker than on the screen, or they vanish
 PAPER: Mapping[str, str] = {
-    "ink": "#1b2430", "soft": "#4c555f", "rule": "#b9b2a2", "hair": "#dcd7ca", "water": "#0b5d73",
-    "water-tint": "#dcebee", "outside": "#a8380f", "edge": "#7a5c00", "note": "#3d4a8a", "paper": "#ffffff",
-}  # fmt: skip
+    "ink": "#1b2430",
+    "soft": "#4c555f",
+    "rule": "#b9b2a2",
+    "hair": "#dcd7ca",
+    "water": "#0b5d73",
+    "water-tint": "#dcebee",
+    "outside": "#a8380f",
+    "edge": "#7a5c00",
+    "note": "#3d4a8a",
+    "paper": "#ffffff",
+}
 
 # by number of pumps running: on, off, on, off ... in pixels
 DASHES: tuple[tuple[int, ...], ...] = ((), (8, 3), (2, 3), (9, 3, 2, 3), (14, 4), (2, 3, 8, 3))

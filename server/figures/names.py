@@ -80,26 +80,43 @@ def _names_of_panel(chart: Chart, layout: Layout, view: View, index: int) -> lis
             asked.append(_Asked(series.name, series.role, series.key, points, number))
     bounds = Box(place.box.left + 3, place.box.top + 2, place.box.right, place.box.bottom - 2)
     wanted = [
-        Wanted(a.text, tuple((place.x(x), place.y(y)) for x, y in a.points), 15 if a.bold else 4, a.line)
+        Wanted(
+            a.text,
+            tuple((place.x(x), place.y(y)) for x, y in a.points),
+            15 if a.bold else 4,
+            a.line,
+        )
         for a in asked
     ]
-    placed = place_names(wanted, size=LETTERS, bounds=bounds, lines=np.array(lines).reshape(-1, 3), taken=taken)
+    placed = place_names(
+        wanted, size=LETTERS, bounds=bounds, lines=np.array(lines).reshape(-1, 3), taken=taken
+    )
     return [_name(a, w, spot, index) for a, w, spot in zip(asked, wanted, placed, strict=True)]
 
 
 def _name(asked: _Asked, wanted: Wanted, spot: Placed, panel: int) -> Name:
     pixel = wanted.points[spot.which]
-    away = abs(spot.y - pixel[1]) > LETTERS * 1.8 or not spot.box.left <= pixel[0] <= spot.box.right
+    away = (
+        abs(spot.y - pixel[1]) > LETTERS * 1.8
+        or not spot.box.left <= pixel[0] <= spot.box.right
+    )
     return Name(
-        asked.text, asked.role, panel, asked.points[spot.which], (spot.x, spot.y), pixel,
-        away and asked.bold, asked.bold, asked.key,
-    )  # fmt: skip
+        asked.text,
+        asked.role,
+        panel,
+        asked.points[spot.which],
+        (spot.x, spot.y),
+        pixel,
+        away and asked.bold,
+        asked.bold,
+        asked.key,
+    )
 
 
 def _along(
     xs: tuple[float | None, ...], ys: tuple[float | None, ...], place: PanelPlace
 ) -> tuple[tuple[float, float], ...]:
-    """Return points of a line at which its name may stand: inside the panel, the last stretch first."""
+    """Return points of a line, inside the panel, at which its name may stand."""
     inside = [
         (x, y)
         for x, y in zip(xs, ys, strict=True)
@@ -111,11 +128,15 @@ def _along(
     if len(inside) == 2:  # a level: anywhere along it
         (x0, y0), (x1, y1) = inside
         return tuple((x0 + (x1 - x0) * t, y0 + (y1 - y0) * t) for t in NAMED_AT)
-    return tuple(dict.fromkeys(inside[int((len(inside) - 1) * t)] for t in NAMED_AT)) if inside else ()
+    return (
+        tuple(dict.fromkeys(inside[int((len(inside) - 1) * t)] for t in NAMED_AT))
+        if inside
+        else ()
+    )
 
 
 def leader_end(name: Name) -> tuple[float, float]:
-    """Return where the line from a point to its name ends: at the near edge of the name. [px]"""
+    """Return the pixel at which the line from a point to its name ends."""
     half = text_width(name.text, LETTERS, name.bold) / 2
     x = min(max(name.pixel[0], name.at[0] - half), name.at[0] + half)
     return x, name.at[1] + (LETTERS * 0.6 if name.at[1] < name.pixel[1] else -LETTERS * 0.6)
@@ -130,7 +151,14 @@ def _one(x: float, y: float, chart: Chart, panel: int, view: View) -> tuple[floa
 
 
 def _words_box(
-    text: str, x: float, y: float, anchor: str, chart: Chart, layout: Layout, panel: int, view: View
+    text: str,
+    x: float,
+    y: float,
+    anchor: str,
+    chart: Chart,
+    layout: Layout,
+    panel: int,
+    view: View,
 ) -> Box:
     shown_x, shown_y = _one(x, y, chart, panel, view)
     px, py = layout.panels[panel].x(shown_x), layout.panels[panel].y(shown_y)

@@ -1,6 +1,7 @@
 """Where the names on a chart stand, so that none lies on another or on a point.
 
-Greedy: each name tries places round its point, near ones first, and takes the first that is free,
+Greedy: each name tries places round its point, near ones first, and takes the first that is
+free,
 or the one that lies on the fewest line points when it cannot be free of lines.
 """
 
@@ -54,7 +55,7 @@ class Placed:
 
 
 def text_width(text: str, size: float, bold: bool = False) -> float:
-    """Return about how wide a line of text is. [px]"""
+    """Return about how wide a line of text is, in pixels."""
     return len(text) * size * (LETTER + (0.04 if bold else 0.0))
 
 
@@ -72,14 +73,16 @@ def place_names(
     Parameters
     ----------
     names : sequence of Wanted
-        Names with their points, one line of text each; points before lines, so that the names that
+        Names with their points, one line of text each; points before lines, so that the
+        names that
         cannot move come first.
     size : float
         Size of the letters. [px]
     bounds : Box
         No name reaches out of it. [px]
     lines : ndarray, shape (n, 3)
-        Points of the lines of the chart, x and y [px], and the number of the line: a place on fewer
+        Points of the lines of the chart, x and y [px], and the number of the line: a place
+        on fewer
         points is better, and a line's name is not nearer to another line.
     taken : sequence of Box
         Boxes of texts and points that already stand. [px]
@@ -95,7 +98,9 @@ def place_names(
     markers = [Box(x - marker, y - marker, x + marker, y + marker) for x, y in single]
     standing = [*taken, *markers]
     placed: dict[int, Placed] = {}
-    order = sorted(range(len(names)), key=lambda i: (len(names[i].points) > 1, names[i].points[0][0]))
+    order = sorted(
+        range(len(names)), key=lambda i: (len(names[i].points) > 1, names[i].points[0][0])
+    )
     for index in order:
         place = _place(names[index], size, bounds, lines, standing, marker)
         standing.append(place.box)
@@ -104,17 +109,32 @@ def place_names(
 
 
 def _place(
-    name: Wanted, size: float, bounds: Box, lines: NDArray[np.float64], standing: Sequence[Box],
+    name: Wanted,
+    size: float,
+    bounds: Box,
+    lines: NDArray[np.float64],
+    standing: Sequence[Box],
     marker: float,
-) -> Placed:  # fmt: skip
+) -> Placed:
     wide, high = text_width(name.text, size, bold=True) + 4, size * 1.25
     best: tuple[float, Placed] | None = None
     for which, (x, y) in enumerate(name.points):
         for step in range(1, name.farthest + 1):
             for side, shift in _TRIES:
-                middle_x = min(max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2)
-                middle_y = y + side * (high * (0.4 + 0.22 * step) if name.line >= 0 else marker + high * (0.2 + 0.75 * step))
-                box = Box(middle_x - wide / 2, middle_y - high / 2, middle_x + wide / 2, middle_y + high / 2)
+                middle_x = min(
+                    max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2
+                )
+                middle_y = y + side * (
+                    high * (0.4 + 0.22 * step)
+                    if name.line >= 0
+                    else marker + high * (0.2 + 0.75 * step)
+                )
+                box = Box(
+                    middle_x - wide / 2,
+                    middle_y - high / 2,
+                    middle_x + wide / 2,
+                    middle_y + high / 2,
+                )
                 if box.top < bounds.top or box.bottom > bounds.bottom:
                     continue
                 if any(box.meets(other, 1.0) for other in standing):

@@ -55,30 +55,46 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
     site = station.site
     stops = [
         StripStop(
-            station.supply.title or "Supply", _level(station.supply.connection_level),
-            _number(result.supply_grade[case]), _number(result.connection_pressure[case]), False,
+            station.supply.title or "Supply",
+            _level(station.supply.connection_level),
+            _number(result.supply_grade[case]),
+            _number(result.connection_pressure[case]),
+            False,
         ),
         StripStop(
-            "Suction manifold", _level(site.suction_gauge_level),
-            _number(result.suction_grade[case]), _number(result.suction_pressure[case]), False,
+            "Suction manifold",
+            _level(site.suction_gauge_level),
+            _number(result.suction_grade[case]),
+            _number(result.suction_pressure[case]),
+            False,
         ),
         StripStop(
-            "Discharge manifold", _level(site.discharge_gauge_level),
+            "Discharge manifold",
+            _level(site.discharge_gauge_level),
             _number(result.discharge_grade[case, combination]) if solved else None,
-            _number(result.discharge_pressure[case, combination]) if solved else None, True,
+            _number(result.discharge_pressure[case, combination]) if solved else None,
+            True,
             concerns=result.held_point is None,
         ),
-    ]  # fmt: skip
-    end = station.discharge_main.reaches[-1].end_level if station.discharge_main.reaches else None
+    ]
+    end = (
+        station.discharge_main.reaches[-1].end_level if station.discharge_main.reaches else None
+    )
     entry = _number(result.zone_entry_grade[case, combination]) if solved else None
     level = _level(end)
     pressure = None
     if entry is not None and level is not None:
         pressure = (entry - level) * result.density * 9.80665
-    stops.append(StripStop("End of the main" if level is not None else "", level, entry, pressure, True))
+    stops.append(
+        StripStop("End of the main" if level is not None else "", level, entry, pressure, True)
+    )
     stops.extend(_points(result, case, combination, solved))
     lift = _number(result.station_head[case, combination]) if solved else None
-    running = np.flatnonzero(result.combinations[combination]) if solved else np.array([], dtype=np.intp)
+    running = (
+        np.flatnonzero(result.combinations[combination])
+        if solved
+        else np.array([], dtype=np.intp)
+    )
     names = tuple(result.slots[int(n)].title or result.slots[int(n)].id for n in running)
     speed = _number(result.speed[case, combination, running[0]]) if running.size else None
     return GradeStrip(tuple(stops), lift, names, speed, _number(result.demand[case]))
@@ -94,13 +110,15 @@ def _points(result: DutyResult, case: int, combination: int, solved: bool) -> li
     )[:MOST_POINTS]
     stops = [
         StripStop(
-            result.points[p].title or "Point without a name", _number(result.points[p].elevation),
+            result.points[p].title or "Point without a name",
+            _number(result.points[p].elevation),
             _number(result.point_grade[case, combination, p]) if solved else None,
-            _number(result.point_pressure[case, combination, p]) if solved else None, True,
+            _number(result.point_pressure[case, combination, p]) if solved else None,
+            True,
             concerns=p == burning or result.points[p].id == result.held_point,
         )
         for p in order
-    ]  # fmt: skip
+    ]
     return sorted(stops, key=lambda s: (-(s.grade or 0.0), s.elevation or 0.0))
 
 

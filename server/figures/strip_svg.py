@@ -1,11 +1,11 @@
 """Draw the grade-line strip as SVG."""
 
-from collections.abc import Callable, Mapping
-from html import escape
+from collections.abc import Callable
 from itertools import pairwise
 
 from server.figures.look import PAPER
 from server.figures.strip import GradeStrip, StripStop
+from server.figures.svg import Palette, Value, element, points, short, words
 from server.units import Dimension, View, shown_with_unit
 
 WIDTH, TOP, BASE, GROUND = 880.0, 16.0, 128.0, 134.0
@@ -15,7 +15,7 @@ LINE = 15  # letters of a name on one line
 PUMPS_TAKE = 1.75  # columns between the two manifolds: the lift and its words stand there
 
 
-def strip_svg(strip: GradeStrip, view: View, title: str, *, palette: Mapping[str, str] = PAPER) -> str:
+def strip_svg(strip: GradeStrip, view: View, title: str, *, palette: Palette = PAPER) -> str:
     """Return the strip as one SVG element.
 
     Parameters
@@ -30,34 +30,43 @@ def strip_svg(strip: GradeStrip, view: View, title: str, *, palette: Mapping[str
         Colour of each name of `look`.
     """
     columns = _columns(strip.stops)
-    names = [_two_lines(stop.name) for stop in strip.stops]
-    height = 178 if all(len(n) == 1 for n in names) else 192
+    height = 178 if all(len(_two_lines(stop.name)) == 1 for stop in strip.stops) else 192
     scale = _scale(strip)
-    parts = [
-        f'<svg class="drawn" xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {WIDTH:.0f} {height}" role="img"'
-        f' aria-label="{escape(_alt(strip, view, title))}">'
-    ]
-    if scale is not None:
-        parts.append(_drawing(strip, columns, scale, view, palette))
-    for index, (stop, x, lines) in enumerate(zip(strip.stops, columns, names, strict=True)):
-        if not stop.name:  # a bend of the grade line at a level that nobody gave
-            continue
-        anchor = "start" if index == 0 else "end" if index == len(columns) - 1 else "middle"
-        at = x - 6 if index == 0 else x + 6 if anchor == "end" else x
-        weight = ' font-weight="650"'
-        shown = shown_with_unit(stop.pressure, Dimension.PRESSURE, view)
-        colour = palette["water"] if stop.concerns else palette["ink"]
-        parts.append(
-            f'<text x="{at:.1f}" y="152" text-anchor="{anchor}" font-size="{LETTERS}"{weight}'
-            f' fill="{colour}">{escape(shown)}</text>'
-        )
-        for row, line in enumerate(lines):
-            parts.append(
-                f'<text x="{at:.1f}" y="{167 + 14 * row}" text-anchor="{anchor}" font-size="{LETTERS - 0.5}"'
-                f' fill="{palette["soft"]}">{escape(line)}</text>'
-            )
-    parts.append("</svg>")
-    return "".join(parts)
+    parts = [] if scale is None else [_drawing(strip, columns, scale, view, palette)]
+    last = len(columns) - 1
+    for index, (stop, x) in enumerate(zip(strip.stops, columns, strict=True)):
+        if stop.name:  # else a bend of the grade line at a level that nobody gave
+            anchor = "start" if index == 0 else "end" if index == last else "middle"
+            at = x - 6 if index == 0 else x + 6 if index == last else x
+            parts.append(_label(stop, at, anchor, view, palette))
+    return element(
+        "svg",
+        *parts,
+        class_="drawn",
+        xmlns="http://www.w3.org/2000/svg",
+        viewBox=f"0 0 {WIDTH:.0f} {height}",
+        role="img",
+        aria_label=_alt(strip, view, title),
+    )
+
+
+def _label(stop: StripStop, x: float, anchor: str, view: View, palette: Palette) -> str:
+    """Return the pressure of a stop over its name."""
+    pressure = words(
+        shown_with_unit(stop.pressure, Dimension.PRESSURE, view),
+        x,
+        152,
+        text_anchor=anchor,
+        font_size=LETTERS,
+        font_weight=650,
+        fill=palette["water"] if stop.concerns else palette["ink"],
+    )
+    small: dict[str, Value] = {"font_size": LETTERS - 0.5, "fill": palette["soft"]}
+    lines = (
+        words(line, x, 167 + 14 * row, text_anchor=anchor, **small)
+        for row, line in enumerate(_two_lines(stop.name))
+    )
+    return "".join([pressure, *lines])
 
 
 def _columns(stops: tuple[StripStop, ...]) -> list[float]:
@@ -80,44 +89,58 @@ def _scale(strip: GradeStrip) -> tuple[float, float] | None:
 
 
 def _drawing(
-    strip: GradeStrip, columns: list[float], scale: tuple[float, float], view: View, palette: Mapping[str, str]
+    strip: GradeStrip,
+    columns: list[float],
+    scale: tuple[float, float],
+    view: View,
+    palette: Palette,
 ) -> str:
     low, per_metre = scale
 
     def y(level: float) -> float:
         return BASE - 10 - (level - low) * per_metre
 
-    parts: list[str] = []
-    ground = [(x, y(s.elevation)) for s, x in zip(strip.stops, columns, strict=True) if s.elevation is not None]
-    if len(ground) > 1:
-        line = " ".join(f"{px:.1f},{py:.1f}" for px, py in ground)
-        parts.append(
-            f'<polygon points="{ground[0][0]:.1f},{GROUND} {line} {ground[-1][0]:.1f},{GROUND}" fill="{palette["hair"]}"/>'
-            f'<polyline points="{line}" fill="none" stroke="{palette["soft"]}"/>'
-        )
+    stops = list(zip(strip.stops, columns, strict=True))
+    parts = [
+        _ground([(x, y(s.elevation)) for s, x in stops if s.elevation is not None], palette)
+    ]
+    lift_x = _lift_x(strip.stops, columns)
     for side in (False, True):
         way = [
-            (x, y(s.grade))
-            for s, x in zip(strip.stops, columns, strict=True)
-            if s.after_pumps is side and s.grade is not None
+            (x, y(s.grade)) for s, x in stops if s.after_pumps is side and s.grade is not None
         ]
         if way:
-            lift_x = _lift_x(strip.stops, columns)
             # the manifolds' grades are carried level to the pumps
-            run = [*way, (lift_x, way[-1][1])] if not side else [(lift_x, way[0][1]), *way]
-            line = " ".join(f"{px:.1f},{py:.1f}" for px, py in run)
+            at = (lift_x, way[0][1]) if side else (lift_x, way[-1][1])
+            run = [at, *way] if side else [*way, at]
             parts.append(
-                f'<polyline points="{line}" fill="none" stroke="{palette["water"]}" stroke-width="2.5"'
-                ' stroke-linejoin="round"/>'
+                element(
+                    "polyline",
+                    points=points(run),
+                    fill="none",
+                    stroke=palette["water"],
+                    stroke_width=2.5,
+                    stroke_linejoin="round",
+                )
             )
-    for stop, x in zip(strip.stops, columns, strict=True):
+    for stop, x in stops:
         if stop.grade is not None and stop.elevation is not None:
+            over = f"M{short(x)} {short(y(stop.grade))}V{short(y(stop.elevation))}"
+            parts.append(element("path", d=over, stroke=palette["rule"]))
             parts.append(
-                f'<path d="M{x:.1f} {y(stop.grade):.1f}V{y(stop.elevation):.1f}" stroke="{palette["rule"]}"/>'
-                f'<circle cx="{x:.1f}" cy="{y(stop.elevation):.1f}" r="2" fill="{palette["soft"]}"/>'
+                element("circle", cx=x, cy=y(stop.elevation), r=2, fill=palette["soft"])
             )
-    parts.append(_lift(strip, columns, y, view, palette))
+    parts.append(_lift(strip, lift_x, y, view, palette))
     return "".join(parts)
+
+
+def _ground(line: list[tuple[float, float]], palette: Palette) -> str:
+    if len(line) < 2:
+        return ""
+    below = [(line[0][0], GROUND), *line, (line[-1][0], GROUND)]
+    return element("polygon", points=points(below), fill=palette["hair"]) + element(
+        "polyline", points=points(line), fill="none", stroke=palette["soft"]
+    )
 
 
 def _lift_x(stops: tuple[StripStop, ...], columns: list[float]) -> float:
@@ -127,28 +150,40 @@ def _lift_x(stops: tuple[StripStop, ...], columns: list[float]) -> float:
 
 
 def _lift(
-    strip: GradeStrip, columns: list[float], y: Callable[[float], float], view: View,
-    palette: Mapping[str, str],
-) -> str:  # fmt: skip
+    strip: GradeStrip, x: float, y: Callable[[float], float], view: View, palette: Palette
+) -> str:
     before = [s.grade for s in strip.stops if not s.after_pumps and s.grade is not None]
     after = [s.grade for s in strip.stops if s.after_pumps and s.grade is not None]
     if not before or not after or strip.lift is None:
         return ""
-    x, low, high = _lift_x(strip.stops, columns), y(before[-1]), y(after[0])
+    low, high = y(before[-1]), y(after[0])
     middle = (low + high) / 2
-    running = f"{len(strip.running)} running" if len(strip.running) > 1 else " ".join(strip.running)
+    many = len(strip.running) > 1
+    running = f"{len(strip.running)} running" if many else " ".join(strip.running)
     speed = shown_with_unit(strip.speed, Dimension.RATIO, view)
+    lift = f"lift {shown_with_unit(strip.lift, Dimension.HEAD, view)}"
+    bar = element(
+        "path",
+        d=f"M{short(x)} {short(low)}V{short(high)}",
+        stroke=palette["water"],
+        stroke_width=6,
+        stroke_dasharray="2 2",
+    )
+    bold: dict[str, Value] = {
+        "font_size": LETTERS,
+        "font_weight": 650,
+        "fill": palette["ink"],
+    }
+    small: dict[str, Value] = {"font_size": LETTERS - 0.5, "fill": palette["soft"]}
     return (
-        f'<path d="M{x:.1f} {low:.1f}V{high:.1f}" stroke="{palette["water"]}" stroke-width="6" stroke-dasharray="2 2"/>'
-        f'<text x="{x + 10:.1f}" y="{middle - 2:.1f}" font-size="{LETTERS}" font-weight="650"'
-        f' fill="{palette["ink"]}">lift {escape(shown_with_unit(strip.lift, Dimension.HEAD, view))}</text>'
-        f'<text x="{x + 10:.1f}" y="{middle + 13:.1f}" font-size="{LETTERS - 0.5}" fill="{palette["soft"]}">'
-        f"{escape(running)}, {escape(speed)}</text>"
+        bar
+        + words(lift, x + 10, middle - 2, **bold)
+        + words(f"{running}, {speed}", x + 10, middle + 13, **small)
     )
 
 
 def _two_lines(name: str) -> list[str]:
-    """Return a name on one or two lines, shortened with an ellipsis when even two do not hold it."""
+    """Return a name on one or two lines, shortened when even two do not hold it."""
     if len(name) <= LINE:
         return [name]
     first = name[: LINE + 1].rsplit(" ", 1)[0] if " " in name[: LINE + 1] else name[:LINE]

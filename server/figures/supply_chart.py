@@ -1,4 +1,4 @@
-"""The supply figure: what the main gives against what is drawn, with its tests and the limit."""
+"""The supply figure: what the main gives against draw, with tests and limit."""
 
 import numpy as np
 
@@ -27,30 +27,58 @@ def supply_chart(curve: SupplyCurve, station: Station, view: View) -> Chart:
     """
     names = {scenario.id: scenario.title or "Scenario" for scenario in station.scenarios}
     series = [
-        Series(f"supply-{state}", f"{state} supply", ROLES[state], curve.flow, curve.pressure[i],
-               named=True)
+        Series(
+            f"supply-{state}",
+            f"{state} supply",
+            ROLES[state],
+            curve.flow,
+            curve.pressure[i],
+            named=True,
+        )
         for i, state in enumerate(SUPPLY_STATES)
         if np.any(np.isfinite(curve.pressure[i]))
-    ]  # fmt: skip
+    ]
     series.append(
-        Series("limit", "least pressure of the main", Role.LIMIT, curve.flow[[0, -1]],
-               np.array([curve.limit, curve.limit]), named=True)
-    )  # fmt: skip
+        Series(
+            "limit",
+            "least pressure of the main",
+            Role.LIMIT,
+            curve.flow[[0, -1]],
+            np.array([curve.limit, curve.limit]),
+            named=True,
+        )
+    )
     markers: list[Marker] = []
     for test in curve.tests:
         role = Role.TEST if test.basis else Role.TEST_COMPARED
         use = "design basis" if test.basis else "compared"
         title = test.title or "Flow test"
-        markers.append(Marker(f"static-{test.id}", f"{title}, static", role, 0.0, test.static_pressure))
         markers.append(
-            Marker(f"test-{test.id}", f"{title} ({use})", role, test.flow, test.residual_pressure, named=True)
+            Marker(f"static-{test.id}", f"{title}, static", role, 0.0, test.static_pressure)
+        )
+        markers.append(
+            Marker(
+                f"test-{test.id}",
+                f"{title} ({use})",
+                role,
+                test.flow,
+                test.residual_pressure,
+                named=True,
+            )
         )
     worst = min(curve.demands, key=lambda d: d[3], default=None)
     for demand in curve.demands:
         scenario, _, flow, pressure = demand
         role = Role.DUTY_OUTSIDE if pressure < curve.limit else Role.DUTY_INSIDE
         markers.append(
-            Marker(scenario, names.get(scenario, scenario), role, flow, pressure, named=demand is worst)
+            Marker(
+                scenario,
+                names.get(scenario, scenario),
+                role,
+                flow,
+                pressure,
+                named=demand is worst,
+            )
         )
     shown = curve.pressure[np.isfinite(curve.pressure)]
     top = max([float(shown.max()), *(t.static_pressure for t in curve.tests), curve.limit])
@@ -59,13 +87,19 @@ def supply_chart(curve: SupplyCurve, station: Station, view: View) -> Chart:
         key="supply",
         title=f"What {station.supply.title or 'the supply'} gives",
         caption=(
-            "Gauge pressure at the connection, at ground level, against what the station draws. Dashed in"
-            " rust: the least pressure of the supplying main. Points: flow tests and what the scenarios draw,"
+            "Gauge pressure at the connection, at ground level, against what the station "
+            "draws. Dashed in"
+            " rust: the least pressure of the supplying main. Points: flow tests and what "
+            "the scenarios draw,"
             " each in its own supply state."
         ),
         alt=_alt(curve, names, view),
         x=Axis("Drawn by the station", D.FLOW, 0.0, float(curve.flow[-1])),
-        panels=(Panel("supply", Axis("Pressure at the connection", D.PRESSURE, low, 1.08 * top), 0.85),),
+        panels=(
+            Panel(
+                "supply", Axis("Pressure at the connection", D.PRESSURE, low, 1.08 * top), 0.85
+            ),
+        ),
         series=tuple(series),
         markers=tuple(markers),
         tables=(_states_table(curve), _tests_table(curve)),
@@ -77,7 +111,9 @@ def _alt(curve: SupplyCurve, names: dict[str, str], view: View) -> str:
     for i, state in enumerate(SUPPLY_STATES):
         at = float(curve.flow_at_limit[i])
         if np.isfinite(at):
-            said.append(f"{state} supply falls to the limit at {shown_with_unit(at, D.FLOW, view)}")
+            said.append(
+                f"{state} supply falls to the limit at {shown_with_unit(at, D.FLOW, view)}"
+            )
     below = [names.get(d[0], d[0]) for d in curve.demands if d[3] < curve.limit]
     if below:
         said.append(f"below the limit: {', '.join(below)}")
@@ -91,7 +127,10 @@ def _states_table(curve: SupplyCurve) -> BehindTable:
     ]
     return BehindTable(
         "Pressure at the connection",
-        (Column("Drawn", D.FLOW), *(Column(f"{s.capitalize()} supply", D.PRESSURE) for s in SUPPLY_STATES)),
+        (
+            Column("Drawn", D.FLOW),
+            *(Column(f"{s.capitalize()} supply", D.PRESSURE) for s in SUPPLY_STATES),
+        ),
         tuple(rows),
     )
 
@@ -99,14 +138,26 @@ def _states_table(curve: SupplyCurve) -> BehindTable:
 def _tests_table(curve: SupplyCurve) -> BehindTable:
     return BehindTable(
         "Flow tests, at the level of the connection",
-        (Column("Test"), Column("Made on"), Column("Use"), Column("Flow", D.FLOW),
-         Column("Static", D.PRESSURE), Column("Residual", D.PRESSURE)),
+        (
+            Column("Test"),
+            Column("Made on"),
+            Column("Use"),
+            Column("Flow", D.FLOW),
+            Column("Static", D.PRESSURE),
+            Column("Residual", D.PRESSURE),
+        ),
         tuple(
-            (t.title or "Flow test", t.made_at or None, "design basis" if t.basis else "compared", t.flow,
-             t.static_pressure, t.residual_pressure)
+            (
+                t.title or "Flow test",
+                t.made_at or None,
+                "design basis" if t.basis else "compared",
+                t.flow,
+                t.static_pressure,
+                t.residual_pressure,
+            )
             for t in curve.tests
         ),
-    )  # fmt: skip
+    )
 
 
 def _number(value: float) -> float | None:

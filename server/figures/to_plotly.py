@@ -1,7 +1,7 @@
 """Write a chart for the live figure on the screen: plain data, the page's script draws it.
 
-Colours go as the page's own names ("var(--water)"); the script puts the values of the light or the
-dark page in their place.
+Colours go as the page's own names ("var(--water)"); the script puts the values of the light or
+the dark page in their place.
 """
 
 from collections.abc import Mapping, Sequence
@@ -29,7 +29,9 @@ SYMBOLS: Mapping[Shape, str] = {
 }
 # a weight, not a tag: plotly turns <b> into a style attribute, which the content policy refuses
 BOLD = 600
-NARROWEST = 640.0  # the figure scrolls below this width, so names placed here stay apart above it
+NARROWEST = (
+    640.0  # the figure scrolls below this width, so names placed here stay apart above it
+)
 
 
 def to_plotly(chart: Chart, view: View, *, scale: float = 1.0) -> dict[str, Json]:
@@ -69,11 +71,18 @@ def _axis_names(panel: int) -> tuple[str, str]:
 
 def _hover(chart: Chart, panel: int, view: View) -> str:
     axis = chart.panels[panel].axis
-    x_places = display_decimals(chart.x.dimension, view) if chart.x.decimals is None else chart.x.decimals
-    y_places = display_decimals(axis.dimension, view) if axis.decimals is None else axis.decimals
+    x_places = (
+        display_decimals(chart.x.dimension, view)
+        if chart.x.decimals is None
+        else chart.x.decimals
+    )
+    y_places = (
+        display_decimals(axis.dimension, view) if axis.decimals is None else axis.decimals
+    )
     x_unit = display_unit(chart.x.dimension, view).printed
     y_unit = display_unit(axis.dimension, view).printed
-    return f"%{{text}}<br>%{{x:.{x_places}f}} {x_unit}, %{{y:.{y_places}f}} {y_unit}<extra></extra>"
+    x, y = f"%{{x:.{x_places}f}} {x_unit}", f"%{{y:.{y_places}f}} {y_unit}"
+    return f"%{{text}}<br>{x}, {y}<extra></extra>"
 
 
 def _line(series: Series, chart: Chart, view: View) -> dict[str, Json]:
@@ -118,9 +127,13 @@ def _area(area: Area, chart: Chart, view: View) -> dict[str, Json]:
     }
     if look.hatched:
         trace["fillpattern"] = {
-            "shape": "/", "fgcolor": SCREEN[look.colour], "bgcolor": "rgba(0,0,0,0)",
-            "size": 7, "solidity": 0.12, "fgopacity": 0.5,
-        }  # fmt: skip
+            "shape": "/",
+            "fgcolor": SCREEN[look.colour],
+            "bgcolor": "rgba(0,0,0,0)",
+            "size": 7,
+            "solidity": 0.12,
+            "fgopacity": 0.5,
+        }
         trace["fillcolor"] = "rgba(0,0,0,0)"
     else:
         trace["fillcolor"] = SCREEN[look.colour]
@@ -166,7 +179,9 @@ def _layout(chart: Chart, layout: Layout, names: Sequence[Name], view: View) -> 
         "font": {"family": "var(--text)", "size": LETTERS, "color": "var(--ink)"},
         "hovermode": "closest",
         "hoverlabel": {
-            "bgcolor": "var(--paper)", "bordercolor": "var(--ink)", "font": {"color": "var(--ink)"},
+            "bgcolor": "var(--paper)",
+            "bordercolor": "var(--ink)",
+            "font": {"color": "var(--ink)"},
         },
         "dragmode": "zoom",
         "showlegend": False,
@@ -175,8 +190,12 @@ def _layout(chart: Chart, layout: Layout, names: Sequence[Name], view: View) -> 
             "anchor": _axis_names(len(chart.panels) - 1)[1],
             **_axis_look(),
         },
-        "annotations": [*_axis_titles(chart, layout, view), *(_annotation(n) for n in names), *_words(chart, view)],
-    }  # fmt: skip
+        "annotations": [
+            *_axis_titles(chart, layout, view),
+            *(_annotation(n) for n in names),
+            *_words(chart, view),
+        ],
+    }
     for index, place in enumerate(layout.panels):
         bottom = 1 - (place.box.bottom - MARGIN_TOP) / whole
         top = 1 - (place.box.top - MARGIN_TOP) / whole
@@ -196,29 +215,48 @@ def _layout(chart: Chart, layout: Layout, names: Sequence[Name], view: View) -> 
 
 def _axis_look() -> dict[str, Json]:
     return {
-        "gridcolor": "var(--hair)", "zeroline": False, "showline": True, "linecolor": "var(--ink)",
-        "linewidth": 1.3, "tickfont": {"color": "var(--soft)"}, "ticks": "",
-    }  # fmt: skip
+        "gridcolor": "var(--hair)",
+        "zeroline": False,
+        "showline": True,
+        "linecolor": "var(--ink)",
+        "linewidth": 1.3,
+        "tickfont": {"color": "var(--soft)"},
+        "ticks": "",
+    }
 
 
 def _axis_titles(chart: Chart, layout: Layout, view: View) -> list[dict[str, Json]]:
     whole = layout.height - MARGIN_TOP - MARGIN_BOTTOM
     still: dict[str, Json] = {
-        "showarrow": False, "xref": "paper", "yref": "paper", "font": {"weight": BOLD, "size": LETTERS},
-    }  # fmt: skip
+        "showarrow": False,
+        "xref": "paper",
+        "yref": "paper",
+        "font": {"weight": BOLD, "size": LETTERS},
+    }
     titles: list[dict[str, Json]] = [
         {
-            **still, "text": escape(axis_title(panel.axis, view)), "x": 0, "xshift": -MARGIN_LEFT + 8,
-            "xanchor": "left", "y": 1 - (place.box.top - MARGIN_TOP) / whole, "yanchor": "bottom", "yshift": 5,
+            **still,
+            "text": escape(axis_title(panel.axis, view)),
+            "x": 0,
+            "xshift": -MARGIN_LEFT + 8,
+            "xanchor": "left",
+            "y": 1 - (place.box.top - MARGIN_TOP) / whole,
+            "yanchor": "bottom",
+            "yshift": 5,
         }
         for panel, place in zip(chart.panels, layout.panels, strict=True)
-    ]  # fmt: skip
+    ]
     titles.append(
         {
-            **still, "text": escape(axis_title(chart.x, view)), "x": 1, "xanchor": "right", "y": 0,
-            "yshift": -20, "yanchor": "top",
+            **still,
+            "text": escape(axis_title(chart.x, view)),
+            "x": 1,
+            "xanchor": "right",
+            "y": 0,
+            "yshift": -20,
+            "yanchor": "top",
         }
-    )  # fmt: skip
+    )
     return titles
 
 
@@ -256,10 +294,15 @@ def _words(chart: Chart, view: View) -> list[dict[str, Json]]:
             {
                 "text": escape(words.text),
                 "x": display_unit(chart.x.dimension, view).from_si(words.x),
-                "y": display_unit(chart.panels[words.panel].axis.dimension, view).from_si(words.y),
-                "xref": x_axis, "yref": y_axis, "showarrow": False,
-                "xanchor": anchors[words.anchor], "yanchor": "bottom",
+                "y": display_unit(chart.panels[words.panel].axis.dimension, view).from_si(
+                    words.y
+                ),
+                "xref": x_axis,
+                "yref": y_axis,
+                "showarrow": False,
+                "xanchor": anchors[words.anchor],
+                "yanchor": "bottom",
                 "font": {"color": SCREEN[LOOKS[words.role].colour], "size": LETTERS},
             }
-        )  # fmt: skip
+        )
     return written

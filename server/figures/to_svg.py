@@ -1,10 +1,9 @@
 """Draw a chart as SVG: on paper, and on the screen before the live figure stands.
 
-Text stays text, lines stay lines. Each panel says its scale in `data-scale`, so that a reader (or a
-test) gets the numbers back from the drawing.
+Text stays text, lines stay lines. Each panel says its scale in `data-scale`, so that a reader
+(or a test) gets the numbers back from the drawing.
 """
 
-from collections.abc import Mapping
 from html import escape
 
 from server.figures.chart import (
@@ -21,13 +20,17 @@ from server.figures.chart import (
 from server.figures.layout import Layout, PanelPlace, lay_out
 from server.figures.look import LOOKS, PAPER, Look, Shape, dash_of
 from server.figures.names import LETTERS, Name, leader_end, names_of
+from server.figures.svg import Palette, Value, element, points, short, value, words
 from server.units import View, display_unit
-
-Palette = Mapping[str, str]
 
 
 def to_svg(
-    chart: Chart, view: View, *, width: float = 680.0, scale: float = 1.0, palette: Palette = PAPER
+    chart: Chart,
+    view: View,
+    *,
+    width: float = 680.0,
+    scale: float = 1.0,
+    palette: Palette = PAPER,
 ) -> str:
     """Return a chart as one SVG element.
 
@@ -50,103 +53,149 @@ def to_svg(
         The element, without a header: it stands in a page or, with one, in a file.
     """
     layout = lay_out(chart, view, width=width, scale=scale)
-    parts = [
-        f'<svg class="drawn" xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {width:.0f} {layout.height:.0f}"'
-        f' role="img" aria-label="{escape(chart.alt)}" data-chart="{escape(chart.key)}">',
-        _definitions(chart, layout, palette),
-    ]
-    for index, (panel, place) in enumerate(zip(chart.panels, layout.panels, strict=True)):
-        parts.append(_panel(chart, panel, index, place, view, palette))
+    parts = [_definitions(chart, layout, palette)]
+    for index in range(len(chart.panels)):
+        parts.append(_panel(chart, index, layout.panels[index], view, palette))
     parts.append(_flow_axis(chart, layout, view, palette))
-    for name in names_of(chart, layout, view):
-        parts.append(_name(name, palette))
-    parts.append("</svg>")
-    return "".join(parts)
+    parts.extend(_name(name, palette) for name in names_of(chart, layout, view))
+    return element(
+        "svg",
+        *parts,
+        class_="drawn",
+        xmlns="http://www.w3.org/2000/svg",
+        viewBox=f"0 0 {width:.0f} {layout.height:.0f}",
+        role="img",
+        aria_label=chart.alt,
+        data_chart=chart.key,
+    )
 
 
 def _definitions(chart: Chart, layout: Layout, palette: Palette) -> str:
-    clips = "".join(
-        f'<clipPath id="clip-{chart.key}-{i}"><rect x="{_n(p.box.left)}" y="{_n(p.box.top)}"'
-        f' width="{_n(p.box.right - p.box.left)}" height="{_n(p.box.bottom - p.box.top)}"/></clipPath>'
-        for i, p in enumerate(layout.panels)
+    clips = [
+        element(
+            "clipPath",
+            element(
+                "rect",
+                x=place.box.left,
+                y=place.box.top,
+                width=place.box.right - place.box.left,
+                height=place.box.bottom - place.box.top,
+            ),
+            id=f"clip-{chart.key}-{index}",
+        )
+        for index, place in enumerate(layout.panels)
+    ]
+    hatch = element(
+        "pattern",
+        element("path", d="M0 0V7", stroke=palette["water"], stroke_width=1, opacity=0.4),
+        id=f"hatch-{chart.key}",
+        width=7,
+        height=7,
+        patternUnits="userSpaceOnUse",
+        patternTransform="rotate(45)",
     )
-    hatch = (
-        f'<pattern id="hatch-{chart.key}" width="7" height="7" patternUnits="userSpaceOnUse"'
-        f' patternTransform="rotate(45)"><path d="M0 0V7" stroke="{palette["water"]}"'
-        ' stroke-width="1" opacity=".4"/></pattern>'
-    )
-    return f"<defs>{clips}{hatch}</defs>"
+    return element("defs", *clips, hatch)
 
 
-def _panel(
-    chart: Chart, panel: Panel, index: int, place: PanelPlace, view: View, palette: Palette
-) -> str:
-    box = place.box
-    parts = [_grid(chart, panel, place, view, palette)]
-    clip = f"clip-{chart.key}-{index}"
-    parts.append(
-        f'<g clip-path="url(#{clip})" data-scale="{place.x_low!r} {place.x_high!r} {place.y_low!r}'
-        f' {place.y_high!r} {box.left!r} {box.top!r} {box.right!r} {box.bottom!r}">'
+def _panel(chart: Chart, index: int, place: PanelPlace, view: View, palette: Palette) -> str:
+    panel, box = chart.panels[index], place.box
+    drawn = [
+        *(
+            _area(a, chart, panel.axis, place, view, palette)
+            for a in chart.areas
+            if a.panel == index
+        ),
+        *(
+            _line(s, chart, panel.axis, place, view, palette)
+            for s in chart.series
+            if s.panel == index
+        ),
+    ]
+    ends = (place.x_low, place.x_high, place.y_low, place.y_high)
+    sides = (box.left, box.top, box.right, box.bottom)
+    parts = [
+        _grid(panel, place, view, palette),
+        element(
+            "g",
+            *(drawn or [""]),
+            clip_path=f"url(#clip-{chart.key}-{index})",
+            data_scale=" ".join(repr(float(number)) for number in (*ends, *sides)),
+        ),
+    ]
+    for said in chart.words:
+        if said.panel == index:
+            x, y = _pixel(said.x, said.y, chart, panel.axis, place, view)
+            colour = palette[LOOKS[said.role].colour]
+            look: dict[str, Value] = {
+                "text_anchor": said.anchor,
+                "font_size": LETTERS,
+                "fill": colour,
+            }
+            parts.append(words(said.text, x, y, **look, **_halo(palette)))
+    parts.extend(
+        _marker(m, chart, panel.axis, place, view, palette)
+        for m in chart.markers
+        if m.panel == index
     )
-    for area in chart.areas:
-        if area.panel == index:
-            parts.append(_area(area, chart, panel.axis, place, view, palette))
-    for series in chart.series:
-        if series.panel == index:
-            parts.append(_line(series, chart, panel.axis, place, view, palette))
-    parts.append("</g>")
-    for words in chart.words:
-        if words.panel == index:
-            x = place.x(display_unit(chart.x.dimension, view).from_si(words.x))
-            y = place.y(display_unit(panel.axis.dimension, view).from_si(words.y))
-            parts.append(
-                f'<text x="{_n(x)}" y="{_n(y)}" text-anchor="{words.anchor}" font-size="{LETTERS}"'
-                f' fill="{palette[LOOKS[words.role].colour]}"{_halo(palette)}>{escape(words.text)}</text>'
-            )
-    for marker in chart.markers:
-        if marker.panel == index:
-            parts.append(_marker(marker, chart, panel.axis, place, view, palette))
     return "".join(parts)
 
 
-def _grid(chart: Chart, panel: Panel, place: PanelPlace, view: View, palette: Palette) -> str:
-    box = place.box
+def _pixel(
+    x: float, y: float, chart: Chart, axis: Axis, place: PanelPlace, view: View
+) -> tuple[float, float]:
+    return (
+        place.x(display_unit(chart.x.dimension, view).from_si(x)),
+        place.y(display_unit(axis.dimension, view).from_si(y)),
+    )
+
+
+def _grid(panel: Panel, place: PanelPlace, view: View, palette: Palette) -> str:
+    box, hair = place.box, palette["hair"]
     parts: list[str] = []
-    high = box.bottom - box.top
-    for tick in round_ticks(place.y_low, place.y_high, max(3, int(high / 38))):
+    for tick in round_ticks(
+        place.y_low, place.y_high, max(3, int((box.bottom - box.top) / 38))
+    ):
         y = place.y(tick)
-        parts.append(f'<path d="M{_n(box.left)} {_n(y)}H{_n(box.right)}" stroke="{palette["hair"]}"/>')
         parts.append(
-            f'<text x="{_n(box.left - 7)}" y="{_n(y + 4)}" text-anchor="end" font-size="{LETTERS}"'
-            f' fill="{palette["soft"]}">{tick:g}</text>'
+            element("path", d=f"M{short(box.left)} {short(y)}H{short(box.right)}", stroke=hair)
         )
+        parts.append(_tick(tick, box.left - 7, y + 4, "end", palette))
     for tick in round_ticks(place.x_low, place.x_high):
-        x = place.x(tick)
-        parts.append(f'<path d="M{_n(x)} {_n(box.top)}V{_n(box.bottom)}" stroke="{palette["hair"]}"/>')
+        x = short(place.x(tick))
+        parts.append(
+            element("path", d=f"M{x} {short(box.top)}V{short(box.bottom)}", stroke=hair)
+        )
+    corner = f"M{short(box.left)} {short(box.top)}V{short(box.bottom)}H{short(box.right)}"
     parts.append(
-        f'<path d="M{_n(box.left)} {_n(box.top)}V{_n(box.bottom)}H{_n(box.right)}" fill="none"'
-        f' stroke="{palette["ink"]}" stroke-width="1.3"/>'
+        element("path", d=corner, fill="none", stroke=palette["ink"], stroke_width=1.3)
     )
     parts.append(
-        f'<text x="{_n(box.left - 46)}" y="{_n(box.top - 12)}" font-size="{LETTERS}" font-weight="650"'
-        f' fill="{palette["ink"]}">{escape(axis_title(panel.axis, view))}</text>'
+        _title(axis_title(panel.axis, view), box.left - 46, box.top - 12, "start", palette)
     )
     return "".join(parts)
 
 
 def _flow_axis(chart: Chart, layout: Layout, view: View, palette: Palette) -> str:
     place = layout.panels[-1]
-    parts = [
-        f'<text x="{_n(place.x(tick))}" y="{_n(place.box.bottom + 16)}" text-anchor="middle"'
-        f' font-size="{LETTERS}" fill="{palette["soft"]}">{tick:g}</text>'
+    right, bottom = place.box.right, place.box.bottom
+    ticks = [
+        _tick(tick, place.x(tick), bottom + 16, "middle", palette)
         for tick in round_ticks(place.x_low, place.x_high)
     ]
-    parts.append(
-        f'<text x="{_n(place.box.right)}" y="{_n(place.box.bottom + 33)}" text-anchor="end"'
-        f' font-size="{LETTERS}" font-weight="650" fill="{palette["ink"]}">'
-        f"{escape(axis_title(chart.x, view))}</text>"
+    return "".join(
+        [*ticks, _title(axis_title(chart.x, view), right, bottom + 33, "end", palette)]
     )
-    return "".join(parts)
+
+
+def _tick(number: float, x: float, y: float, anchor: str, palette: Palette) -> str:
+    return words(
+        f"{number:g}", x, y, text_anchor=anchor, font_size=LETTERS, fill=palette["soft"]
+    )
+
+
+def _title(text: str, x: float, y: float, anchor: str, palette: Palette) -> str:
+    bold: dict[str, Value] = {"font_size": LETTERS, "font_weight": 650, "fill": palette["ink"]}
+    return words(text, x, y, text_anchor=anchor, **bold)
 
 
 def _runs(
@@ -168,11 +217,17 @@ def _line(
 ) -> str:
     look = LOOKS[series.role]
     dash = dash_of(look, series.dash)
-    dashes = f' stroke-dasharray="{" ".join(map(str, dash))}"' if dash else ""
     xs, ys = shown_points(series.x, chart.x, view), shown_points(series.y, axis, view)
     return "".join(
-        f'<polyline data-series="{escape(series.key)}" points="{_points(run)}" fill="none"'
-        f' stroke="{palette[look.colour]}" stroke-width="{look.width:g}"{dashes}/>'
+        element(
+            "polyline",
+            data_series=series.key,
+            points=points(run),
+            fill="none",
+            stroke=palette[look.colour],
+            stroke_width=look.width,
+            stroke_dasharray=" ".join(map(str, dash)) or None,
+        )
         for run in _runs(xs, ys, place)
     )
 
@@ -184,8 +239,14 @@ def _area(
     fill = f"url(#hatch-{chart.key})" if look.hatched else palette[look.colour]
     xs, ys = shown_points(area.x, chart.x, view), shown_points(area.y, axis, view)
     return "".join(
-        f'<polygon data-area="{escape(area.key)}" points="{_points(run)}" fill="{fill}"'
-        f' stroke="none" opacity="{look.opacity:g}"/>'
+        element(
+            "polygon",
+            data_area=area.key,
+            points=points(run),
+            fill=fill,
+            stroke="none",
+            opacity=look.opacity,
+        )
         for run in _runs(xs, ys, place)
     )
 
@@ -194,48 +255,53 @@ def _marker(
     marker: Marker, chart: Chart, axis: Axis, place: PanelPlace, view: View, palette: Palette
 ) -> str:
     look = LOOKS[marker.role]
-    x = place.x(display_unit(chart.x.dimension, view).from_si(marker.x))
-    y = place.y(display_unit(axis.dimension, view).from_si(marker.y))
+    x, y = _pixel(marker.x, marker.y, chart, axis, place, view)
     size = 6.2 if marker.chosen else 4.6
     colour = palette[look.colour]
     fill, stroke = (palette["paper"], colour) if look.hollow else (colour, palette["paper"])
     shape = _shape(look.marker, x, y, size)
-    return (
-        f'<g data-marker="{escape(marker.key)}" data-at="{_n(x)} {_n(y)}">'
-        f'<path d="{shape}" fill="{fill}" stroke="{stroke}" stroke-width="1.4"/>'
-        f"<title>{escape(marker.name)}</title></g>"
+    return element(
+        "g",
+        element("path", d=shape, fill=fill, stroke=stroke, stroke_width=1.4),
+        element("title", escape(marker.name)),
+        data_marker=marker.key,
+        data_at=f"{value(x)} {value(y)}",
     )
 
 
 def _shape(shape: Shape, x: float, y: float, r: float) -> str:
     if shape == "circle":
-        return f"M{_n(x - r)} {_n(y)}a{r:g} {r:g} 0 1 0 {2 * r:g} 0a{r:g} {r:g} 0 1 0 {-2 * r:g} 0Z"
-    if shape == "square":
-        s = r * 0.9
-        return f"M{_n(x - s)} {_n(y - s)}H{_n(x + s)}V{_n(y + s)}H{_n(x - s)}Z"
-    if shape == "diamond":
-        s = r * 1.25
-        return f"M{_n(x)} {_n(y - s)}L{_n(x + s)} {_n(y)}L{_n(x)} {_n(y + s)}L{_n(x - s)} {_n(y)}Z"
-    s = r * 1.2
-    return f"M{_n(x)} {_n(y - s)}L{_n(x + s)} {_n(y + s * 0.8)}H{_n(x - s)}Z"
+        half = f"{r:g} {r:g} 0 1 0"
+        return f"M{short(x - r)} {short(y)}a{half} {2 * r:g} 0a{half} {-2 * r:g} 0Z"
+    corners = {
+        "square": ((-0.9, -0.9), (0.9, -0.9), (0.9, 0.9), (-0.9, 0.9)),
+        "diamond": ((0.0, -1.25), (1.25, 0.0), (0.0, 1.25), (-1.25, 0.0)),
+        "triangle": ((0.0, -1.2), (1.2, 0.96), (-1.2, 0.96)),
+    }[shape]
+    return (
+        "M" + "L".join(f"{short(x + r * dx)} {short(y + r * dy)}" for dx, dy in corners) + "Z"
+    )
 
 
 def _name(name: Name, palette: Palette) -> str:
     colour = palette[_readable(LOOKS[name.role])]
-    parts: list[str] = []
+    leader = ""
     if name.leader:
         end_x, end_y = leader_end(name)
-        parts.append(
-            f'<path d="M{_n(name.pixel[0])} {_n(name.pixel[1])}L{_n(end_x)} {_n(end_y)}"'
-            f' stroke="{colour}" stroke-width=".8" opacity=".8"/>'
-        )
-    weight = ' font-weight="650"' if name.bold else ""
-    parts.append(
-        f'<text x="{_n(name.at[0])}" y="{_n(name.at[1] + LETTERS * 0.35)}" text-anchor="middle"'
-        f' font-size="{LETTERS}"{weight} fill="{colour}"{_halo(palette)} data-name="{escape(name.key)}">'
-        f"{escape(name.text)}</text>"
+        way = f"M{short(name.pixel[0])} {short(name.pixel[1])}L{short(end_x)} {short(end_y)}"
+        leader = element("path", d=way, stroke=colour, stroke_width=0.8, opacity=0.8)
+    text = words(
+        name.text,
+        name.at[0],
+        name.at[1] + LETTERS * 0.35,
+        text_anchor="middle",
+        font_size=LETTERS,
+        font_weight=650 if name.bold else None,
+        fill=colour,
+        data_name=name.key,
+        **_halo(palette),
     )
-    return "".join(parts)
+    return leader + text
 
 
 def _readable(look: Look) -> str:
@@ -243,13 +309,11 @@ def _readable(look: Look) -> str:
     return "water" if look.colour == "water-tint" else look.colour
 
 
-def _halo(palette: Palette) -> str:
-    return f' stroke="{palette["paper"]}" stroke-width="3" stroke-linejoin="round" paint-order="stroke"'
-
-
-def _points(run: list[tuple[float, float]]) -> str:
-    return " ".join(f"{_n(x)},{_n(y)}" for x, y in run)
-
-
-def _n(value: float) -> str:
-    return f"{value:.2f}".rstrip("0").rstrip(".")
+def _halo(palette: Palette) -> dict[str, Value]:
+    """Return what keeps letters legible over lines: an edge in the paper's colour."""
+    return {
+        "stroke": palette["paper"],
+        "stroke_width": 3,
+        "stroke_linejoin": "round",
+        "paint_order": "stroke",
+    }

@@ -142,7 +142,16 @@ class PageBreak:
 
 
 Block = (
-    Heading | Paragraph | Facts | Table | Figure | StripFigure | Findings | Items | Warned | PageBreak
+    Heading
+    | Paragraph
+    | Facts
+    | Table
+    | Figure
+    | StripFigure
+    | Findings
+    | Items
+    | Warned
+    | PageBreak
 )
 
 

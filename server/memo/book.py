@@ -29,15 +29,28 @@ from server.units import View
 
 Section = Callable[[MemoSource], tuple[Block, ...]]
 SECTIONS: tuple[Section, ...] = (
-    verdict.blocks, basis.blocks, inputs.blocks, demand.blocks, supply.blocks, duty.blocks,
-    firm_capacity.blocks, pressures.blocks, npsh.blocks, motors.blocks, made_cases.blocks,
-    findings.blocks, criteria.blocks, not_checked.blocks, cautions.blocks, record.blocks,
-)  # fmt: skip
+    verdict.blocks,
+    basis.blocks,
+    inputs.blocks,
+    demand.blocks,
+    supply.blocks,
+    duty.blocks,
+    firm_capacity.blocks,
+    pressures.blocks,
+    npsh.blocks,
+    motors.blocks,
+    made_cases.blocks,
+    findings.blocks,
+    criteria.blocks,
+    not_checked.blocks,
+    cautions.blocks,
+    record.blocks,
+)
 HASH_SHOWN = 12
 
 
 def memo_book(station: Station, assessment: Assessment, view: View) -> MemoBook:
-    """Return the memo on the proposed set; an empty station has one too, saying what is missing.
+    """Return the memo on the proposed set; of an empty station it says what is missing.
 
     Parameters
     ----------

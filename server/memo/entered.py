@@ -10,17 +10,26 @@ from server.station.station import Station
 from server.units import UNITS, Dimension, View, display_decimals, display_unit
 
 SOURCE_WORDS = {
-    "survey": "survey", "test": "test", "code": "code", "standard": "standard", "maker": "maker",
-    "office": "office", "default": "DEFAULT",
-}  # fmt: skip
+    "survey": "survey",
+    "test": "test",
+    "code": "code",
+    "standard": "standard",
+    "maker": "maker",
+    "office": "office",
+    "default": "DEFAULT",
+}
 COLUMNS = (
-    Column("Input"), Column("As entered"), Column("Source"),
-)  # fmt: skip
+    Column("Input"),
+    Column("As entered"),
+    Column("Source"),
+)
 NO_SOURCE = "not stated"
 Row = tuple[Cell, ...]
 
 
-def entered_table(station: Station, caption: str, starts: tuple[str, ...], view: View) -> Table | None:
+def entered_table(
+    station: Station, caption: str, starts: tuple[str, ...], view: View
+) -> Table | None:
     """Return everything entered below some paths, None when nothing is.
 
     Parameters
@@ -75,7 +84,9 @@ def item_table(
 
 
 def _rows(station: Station, path: str, view: View) -> Iterator[Row]:
-    if path.endswith("/slots") or (path == "/zone/tank" and station.zone.kind in (None, "closed")):
+    if path.endswith("/slots") or (
+        path == "/zone/tank" and station.zone.kind in (None, "closed")
+    ):
         return  # slots have a table of their own; a closed zone has no tank
     node = fields.node_at(path)
     value = paths.get(station, path)
@@ -91,9 +102,15 @@ def _rows(station: Station, path: str, view: View) -> Iterator[Row]:
 
 
 def _is_told(node: Node, value: object) -> bool:
-    # a title is the name in front of every other row of its item; curves have tables of their own
+    # a title is the name in front of every other row of its item; curves have tables of
+    # their own
     usual = node.name in ("barrels", "stages") and value == node.default
-    return not usual and value not in (None, "", ()) and node.name != "title" and node.kind not in ("table", "source")
+    return (
+        not usual
+        and value not in (None, "", ())
+        and node.name != "title"
+        and node.kind not in ("table", "source")
+    )
 
 
 def _name(station: Station, path: str) -> str:
@@ -119,7 +136,7 @@ def _value(station: Station, path: str, node: Node, value: object, view: View) -
 
 
 def quantity_spans(value: Quantity, entry: Entry | None, view: View) -> Spans:
-    """Return a quantity as entered, followed by its reading in the view when that is another unit."""
+    """Return a quantity as entered, and its reading where the view has another unit."""
     unit = UNITS[value.unit]
     typed = f" (typed {value.typed})" if value.typed else ""
     shown = f"{value.value:.10g}\u00a0{unit.printed}".rstrip("\u00a0") + typed

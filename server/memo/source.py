@@ -29,7 +29,7 @@ class MemoSource:
 
     @property
     def not_solved(self) -> NotSolved | None:
-        """What stands in the way of the proposed set, None when it is solved or there is none."""
+        """What stands in the way of the proposed set; None when solved, or without one."""
         proposed = self.assessment.proposed
         answer = self.assessment.for_set(proposed) if proposed else None
         return None if answer is None or isinstance(answer, DutyResult) else answer
@@ -38,4 +38,6 @@ class MemoSource:
 def memo_source(station: Station, assessment: Assessment, view: View) -> MemoSource:
     """Return the source of a memo on the proposed set."""
     judged = judged_set(assessment, assessment.proposed)
-    return MemoSource(station, assessment, view, judged, () if judged is None else scenario_duties(judged))
+    return MemoSource(
+        station, assessment, view, judged, () if judged is None else scenario_duties(judged)
+    )

@@ -19,7 +19,6 @@ from server.memo.blocks import (
     Items,
     MemoBook,
     Number,
-    PageBreak,
     Paragraph,
     Span,
     Spans,
@@ -100,10 +99,12 @@ class _Writer:
         if isinstance(span, str):
             return escape(span)
         if isinstance(span, Strong):
-            return f'<strong{_css("no" if span.bad else "")}>{escape(span.text)}</strong>'
+            return f"<strong{_css('no' if span.bad else '')}>{escape(span.text)}</strong>"
         if isinstance(span, BandMark):
             return band_html(span)
-        return self._data(span, shown_with_unit(span.value, span.dimension, self.view, span.decimals))
+        return self._data(
+            span, shown_with_unit(span.value, span.dimension, self.view, span.decimals)
+        )
 
     def _data(self, number: Number, text: str) -> str:
         if number.value is None or number.value != number.value:
@@ -131,11 +132,13 @@ class _Writer:
             for row in table.rows
         )
         notes = "".join(f'<p class="small soft">{escape(note)}</p>' for note in table.notes)
-        # a table of few rows stays on one page; a long one breaks between rows and repeats its head
+        # a table of few rows stays on one page; a long one breaks between rows and repeats
+        # its head
         css = "keep" if len(table.rows) <= 14 else "long"
         css += f" {table.kind}" if table.kind else ""
         return (
-            f'<div class="table {css}"><table><caption>{number}{escape(table.caption)}</caption>'
+            f'<div class="table {css}"><table><caption>{number}{escape(table.caption)}'
+            "</caption>"
             f"<thead><tr>{heads}</tr></thead><tbody>{rows}</tbody></table>{notes}</div>"
         )
 
@@ -158,7 +161,9 @@ class _Writer:
             inner = "–"
         else:
             number = Number(cell, column.dimension, column.decimals)
-            inner = self._data(number, shown(cell, column.dimension, self.view, column.decimals))
+            inner = self._data(
+                number, shown(cell, column.dimension, self.view, column.decimals)
+            )
         if first:
             return f'<th scope="row">{inner}</th>'
         return f"<td{_css('num' if column.dimension is not None else '')}>{inner}</td>"
@@ -173,7 +178,8 @@ class _Writer:
         if not block.items:
             return f"<p>{escape(block.none)}</p>"
         items = "".join(
-            f'<li class="{SEVERITY_CSS[f.severity]}"><span class="grade">{escape(f.grade)}</span>'
+            f'<li class="{SEVERITY_CSS[f.severity]}">'
+            f'<span class="grade">{escape(f.grade)}</span>'
             f'<p>{escape(f.sentence)}</p><span class="basis">{escape(f.basis)}</span>'
             + (f'<p class="answer"><b>Answer:</b> {escape(f.answer)}</p>' if f.answer else "")
             + "</li>"
@@ -203,9 +209,8 @@ def band_html(mark: BandMark) -> str:
             '<svg class="band" viewBox="0 0 62 12" width="62" height="12" aria-hidden="true">'
             f'<path class="line" d="M2 6H60"/>{region}{dot}</svg> '
         )
-    return (
-        f'<span class="verdict {mark.css}">{drawn}<span class="word">{escape(mark.text)}</span></span>'
-    )
+    word = f'<span class="word">{escape(mark.text)}</span>'
+    return f'<span class="verdict {mark.css}">{drawn}{word}</span>'
 
 
 def memo_body(book: MemoBook, view: View, paper: Paper) -> str:
@@ -238,7 +243,8 @@ def _title(head: TitleBlock) -> str:
     return (
         f'<header><div class="title"><div><h1>{escape(head.title)}</h1>'
         f'<div class="about">{escape(head.station)}</div>{client}</div>'
-        f'<div class="small soft issue">{right}</div></div><dl class="sign">{names}</dl></header>'
+        f'<div class="small soft issue">{right}</div></div>'
+        f'<dl class="sign">{names}</dl></header>'
     )
 
 
@@ -251,15 +257,17 @@ def page_css(head: TitleBlock, paper: Paper) -> str:
     parts = [head.station, f"Issue {head.issue}" if head.issue else "Draft", head.date]
     running = css_string(" · ".join(part for part in parts if part))
     font = '8.5pt "Segoe UI", "Noto Sans", Arial, "DejaVu Sans", sans-serif'
+    look = f"font:{font};color:#4c555f"
+    pages = '"page " counter(page) " of " counter(pages)'
     return (
         f"@page{{size:{size};margin:17mm 16mm 19mm;"
-        f"@bottom-left{{content:{running};font:{font};color:#4c555f}}"
-        f'@bottom-right{{content:"page " counter(page) " of " counter(pages);font:{font};color:#4c555f}}}}'
+        f"@bottom-left{{content:{running};{look}}}"
+        f"@bottom-right{{content:{pages};{look}}}}}"
     )
 
 
 def css_string(text: str) -> str:
-    """Return a text as a CSS string: every character that could end it is escaped by its number."""
+    """Return a text as a CSS string, every character that could end it escaped."""
     safe = "".join(c if c.isalnum() or c in " .,;:·-()/" else f"\\{ord(c):x} " for c in text)
     return f'"{safe}"'
 
@@ -276,7 +284,12 @@ def whole_page(book: MemoBook, view: View, paper: Paper, styles: str) -> str:
 
 
 def memo_html(
-    station: Station, view: View, paper: Paper, *, standalone: bool = True, document_hash: str = ""
+    station: Station,
+    view: View,
+    paper: Paper,
+    *,
+    standalone: bool = True,
+    document_hash: str = "",
 ) -> str:
     """Return the memo of a station as HTML.
 

@@ -95,7 +95,10 @@ def table_view(table: BehindTable, view: View) -> TableView:
         table.caption,
         tuple(Head(column.title, _unit(column, view)) for column in table.columns),
         tuple(
-            tuple(cell_text(cell, column, view) for cell, column in zip(row, table.columns, strict=True))
+            tuple(
+                cell_text(cell, column, view)
+                for cell, column in zip(row, table.columns, strict=True)
+            )
             for row in table.rows
         ),
     )
@@ -131,7 +134,11 @@ def _head_figure(sheet: SheetView) -> Chart | None:
 def supply_figure_chart(sheet: SheetView) -> Chart | None:
     """Return the supply figure, None while the supply is not known."""
     curve = supply_curve(sheet.station, sheet.result)
-    return supply_chart(curve, sheet.station, sheet.view) if isinstance(curve, SupplyCurve) else None
+    return (
+        supply_chart(curve, sheet.station, sheet.view)
+        if isinstance(curve, SupplyCurve)
+        else None
+    )
 
 
 CHARTS: dict[str, Callable[[SheetView], Chart | None]] = {
@@ -141,7 +148,9 @@ CHARTS: dict[str, Callable[[SheetView], Chart | None]] = {
 }
 
 
-@router.get("/stations/{station_id}/charts/{chart}.svg", name="chart-svg", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/charts/{chart}.svg", name="chart-svg", dependencies=[needs("read")]
+)
 def chart_svg(request: Request, station_id: str, chart: str) -> Response:
     """Answer one chart, or the grade-line strip, as an SVG file."""
     sheet = open_sheet(request, station_id, "duty")
@@ -150,7 +159,11 @@ def chart_svg(request: Request, station_id: str, chart: str) -> Response:
     return _svg(to_svg(_chart(sheet, chart), sheet.view, palette=PAPER))
 
 
-@router.get("/stations/{station_id}/charts/{chart}.json", name="chart-json", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/charts/{chart}.json",
+    name="chart-json",
+    dependencies=[needs("read")],
+)
 def chart_json(request: Request, station_id: str, chart: str) -> Response:
     """Answer one chart as the data that the live figure is drawn from."""
     sheet = open_sheet(request, station_id, "duty")
@@ -160,10 +173,14 @@ def chart_json(request: Request, station_id: str, chart: str) -> Response:
 
 def _chart(sheet: SheetView, name: str) -> Chart:
     if name not in CHARTS:
-        raise HTTPException(404, f"There is no such chart. There are: {', '.join([*CHARTS, 'strip'])}.")
+        raise HTTPException(
+            404, f"There is no such chart. There are: {', '.join([*CHARTS, 'strip'])}."
+        )
     chart = CHARTS[name](sheet)
     if chart is None:
-        raise HTTPException(404, "This chart cannot be drawn yet: inputs that it needs are missing.")
+        raise HTTPException(
+            404, "This chart cannot be drawn yet: inputs that it needs are missing."
+        )
     return chart
 
 
@@ -171,9 +188,15 @@ def _strip(sheet: SheetView) -> str:
     judged = judged_set(sheet.assessment, sheet.set_id)
     case = None if judged is None else case_index(judged.result, sheet.scenario_id)
     if judged is None or case is None:
-        raise HTTPException(404, "The grade line cannot be drawn yet: inputs that it needs are missing.")
-    return strip_svg(grade_strip(sheet.station, judged.result, case), sheet.view, case_words(judged, case))
+        raise HTTPException(
+            404, "The grade line cannot be drawn yet: inputs that it needs are missing."
+        )
+    return strip_svg(
+        grade_strip(sheet.station, judged.result, case), sheet.view, case_words(judged, case)
+    )
 
 
 def _svg(drawn: str) -> Response:
-    return Response('<?xml version="1.0" encoding="UTF-8"?>\n' + drawn, media_type="image/svg+xml")
+    return Response(
+        '<?xml version="1.0" encoding="UTF-8"?>\n' + drawn, media_type="image/svg+xml"
+    )

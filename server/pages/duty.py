@@ -1,4 +1,4 @@
-"""Sheet 7, Duty: a row a scenario with the worst of its three supply states, and the duty figure."""
+"""Sheet 7, Duty: a row a scenario, the worst of three supply states, the figure."""
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
@@ -20,7 +20,7 @@ from server.studies.findings import words
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Finding
 from server.units import Dimension as D
-from server.units import display_unit, shown
+from server.units import display_unit, shown, shown_with_unit
 
 router = APIRouter()
 
@@ -36,7 +36,7 @@ CRITERION_COLUMNS = {
 
 @dataclass(frozen=True, slots=True)
 class ColumnView:
-    """Head of a column; `group` is what the chooser shows and hides, empty for what always stands."""
+    """Head of a column; `group` is what the chooser hides, empty for what always stands."""
 
     key: str
     title: str
@@ -114,7 +114,12 @@ def build(sheet: SheetView) -> DutyPage:
     columns = _columns(sheet, judged)
     duties = scenario_duties(judged)
     chart = duty_figure(sheet)
-    query: dict[str, str | None] = {"set": sheet.set_id, "units": sheet.view, "case": sheet.scenario_id, "at": sheet.chosen.get("at")}
+    query: dict[str, str | None] = {
+        "set": sheet.set_id,
+        "units": sheet.view,
+        "case": sheet.scenario_id,
+        "at": sheet.chosen.get("at"),
+    }
     return DutyPage(
         meta=_meta(sheet, judged),
         unsolved=(),
@@ -122,10 +127,16 @@ def build(sheet: SheetView) -> DutyPage:
         columns=columns,
         groups=GROUPS,
         rows=tuple(_scenario_row(sheet, judged, duty, columns) for duty in duties),
-        states=tuple(_state_row(sheet, judged, row, columns) for duty in duties for row in duty.states),
+        states=tuple(
+            _state_row(sheet, judged, row, columns) for duty in duties for row in duty.states
+        ),
         figure=None if chart is None else figure_view(chart, sheet.view, live=True),
-        csv_href=link(sheet.request, "table-csv", station_id=sheet.station_id, table="duty", **query),
-        svg_href=link(sheet.request, "chart-svg", station_id=sheet.station_id, chart="duty", **query),
+        csv_href=link(
+            sheet.request, "table-csv", station_id=sheet.station_id, table="duty", **query
+        ),
+        svg_href=link(
+            sheet.request, "chart-svg", station_id=sheet.station_id, chart="duty", **query
+        ),
     )
 
 
@@ -137,8 +148,8 @@ def _meta(sheet: SheetView, judged: JudgedSet) -> str:
     set_point = judged.result.set_point
     if set_point is None:
         return judged.title
-    unit = display_unit(D.PRESSURE, sheet.view).printed
-    return f"{judged.title}, holds {shown(set_point, D.PRESSURE, sheet.view)}\u00a0{unit} at {held}"
+    pressure = shown_with_unit(set_point, D.PRESSURE, sheet.view)
+    return f"{judged.title}, holds {pressure} at {held}"
 
 
 def _missing(sheet: SheetView) -> tuple[tuple[str, str, str], ...]:
@@ -150,7 +161,11 @@ def _missing(sheet: SheetView) -> tuple[tuple[str, str, str], ...]:
         for finding in sheet.assessment.findings
     }
     return tuple(
-        (sheet.field_words(m.path), sheet.field_href(m.path), "" if m.reason == "absent" else said.get(m.path, ""))
+        (
+            sheet.field_words(m.path),
+            sheet.field_href(m.path),
+            "" if m.reason == "absent" else said.get(m.path, ""),
+        )
         for m in answer.missing
     )
 
@@ -198,13 +213,23 @@ def _scenario_row(
     worsts = _worsts(sheet, judged, duty)
     cells = tuple(
         CellView(
-            cell.column, cell.text, cell.css, cell.mark, *worsts.get(cell.column.key, ("", "")),
+            cell.column,
+            cell.text,
+            cell.css,
+            cell.mark,
+            *worsts.get(cell.column.key, ("", "")),
             lines=_finding_lines(sheet, judged, duty) if cell.column.key == "findings" else (),
         )
         for cell in row.cells
-    )  # fmt: skip
+    )
     return RowView(
-        row.scenario, row.title, row.href, row.state, row.scenario == sheet.scenario_id, row.reason, cells
+        row.scenario,
+        row.title,
+        row.href,
+        row.state,
+        row.scenario == sheet.scenario_id,
+        row.reason,
+        cells,
     )
 
 
@@ -215,14 +240,22 @@ def _state_row(
     texts = _texts(sheet, row)
     cells = tuple(
         CellView(
-            column, texts.get(column.key, ""), "bad" if column.key in bad else "",
+            column,
+            texts.get(column.key, ""),
+            "bad" if column.key in bad else "",
             row.mark if column.key == "region" else None,
             lines=_finding_lines_of(sheet, judged, (row,)) if column.key == "findings" else (),
         )
         for column in columns
-    )  # fmt: skip
+    )
     return RowView(
-        row.of.scenario, row.title, sheet.case_href(row.of.scenario), row.state, row.own, row.reason, cells
+        row.of.scenario,
+        row.title,
+        sheet.case_href(row.of.scenario),
+        row.state,
+        row.own,
+        row.reason,
+        cells,
     )
 
 
@@ -248,8 +281,10 @@ def _texts(sheet: SheetView, row: DutyRow) -> dict[str, str]:
     return texts
 
 
-def _worsts(sheet: SheetView, judged: JudgedSet, duty: ScenarioDuty) -> dict[str, tuple[str, str]]:
-    """Return the worst of the three states per judged column, where it differs from the own state."""
+def _worsts(
+    sheet: SheetView, judged: JudgedSet, duty: ScenarioDuty
+) -> dict[str, tuple[str, str]]:
+    """Return the worst of three states by column, where it differs from the own state."""
     told: dict[str, tuple[str, str]] = {}
 
     def tell(key: str, row: DutyRow | None) -> None:
@@ -269,7 +304,9 @@ def _worsts(sheet: SheetView, judged: JudgedSet, duty: ScenarioDuty) -> dict[str
         tell(key, worst(duty.states, value))
     for p, point in enumerate(judged.points):
         tell(f"point-{p}", worst(duty.states, _pressure_at(p), highest=point.role == "lowest"))
-    not_held = [row.of.supply for row in duty.states if row.held is False and row is not duty.own]
+    not_held = [
+        row.of.supply for row in duty.states if row.held is False and row is not duty.own
+    ]
     if duty.own.held and not_held:
         told["held"] = f"no at {' and '.join(not_held)}", "bad"
     marks = {id(row.mark): row for row in duty.states if row.mark is not None}
@@ -296,7 +333,9 @@ def _failing(sheet: SheetView, judged: JudgedSet, row: DutyRow) -> set[str]:
             key = finding.criterion.rsplit("/", 1)[-1]
             if key in CRITERION_COLUMNS:
                 columns.add(CRITERION_COLUMNS[key])
-        if finding.code == "suction_main_low" and any(a.name == "gauge" for a in finding.others):
+        if finding.code == "suction_main_low" and any(
+            a.name == "gauge" for a in finding.others
+        ):
             columns.add("suction")  # one finding tells of both
         for p in range(len(judged.points)):
             if finding.subject.startswith(judged.point_path(p)):
@@ -313,7 +352,9 @@ def _of_case(sheet: SheetView, judged: JudgedSet, rows: Sequence[DutyRow]) -> li
     ]
 
 
-def _finding_lines(sheet: SheetView, judged: JudgedSet, duty: ScenarioDuty) -> tuple[tuple[str, str], ...]:
+def _finding_lines(
+    sheet: SheetView, judged: JudgedSet, duty: ScenarioDuty
+) -> tuple[tuple[str, str], ...]:
     return _finding_lines_of(sheet, judged, duty.states)
 
 

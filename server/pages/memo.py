@@ -1,4 +1,4 @@
-"""Sheet 9, Memo: issue, date, names and notes; the memo itself on paper, as it prints from the browser."""
+"""Sheet 9, Memo: issue, date, names, notes; the memo as it prints from the browser."""
 
 from dataclasses import dataclass
 
@@ -79,7 +79,11 @@ def build(sheet: SheetView) -> MemoPage:
 
 def _href(sheet: SheetView, name: str) -> str:
     return link(
-        sheet.request, name, station_id=sheet.station_id, units=sheet.view, at=sheet.chosen.get("at")
+        sheet.request,
+        name,
+        station_id=sheet.station_id,
+        units=sheet.view,
+        at=sheet.chosen.get("at"),
     )
 
 
@@ -92,9 +96,11 @@ def memo(request: Request, station_id: str) -> HTMLResponse:
     return show(open_sheet(request, station_id, "memo"))
 
 
-@router.get("/stations/{station_id}/memo/paper", name="memo-paper", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/memo/paper", name="memo-paper", dependencies=[needs("read")]
+)
 def memo_paper(request: Request, station_id: str) -> HTMLResponse:
-    """Show the memo as it prints; its page numbers and running line come with its own stylesheet."""
+    """Show the memo as it prints; page numbers come with its own stylesheet."""
     sheet = open_sheet(request, station_id, "memo")
     book = memo_book(sheet.station, sheet.assessment, sheet.view)
     page = PaperPage(
@@ -107,9 +113,11 @@ def memo_paper(request: Request, station_id: str) -> HTMLResponse:
     return render(request, "memo/paper.html", {"page": page})
 
 
-@router.get("/stations/{station_id}/memo/page.css", name="memo-page-css", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/memo/page.css", name="memo-page-css", dependencies=[needs("read")]
+)
 def memo_page_css(request: Request, station_id: str) -> Response:
-    """Answer the paper's size, running line and page numbers: these must stand in a stylesheet."""
+    """Answer the paper's size, running line and page numbers as a stylesheet."""
     sheet = open_sheet(request, station_id, "memo")
     head = memo_book(sheet.station, sheet.assessment, sheet.view).head
     return Response(

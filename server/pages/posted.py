@@ -1,9 +1,8 @@
 """What a form of a sheet asked for, turned into edits of the document."""
 
 from dataclasses import dataclass
-from typing import Annotated
 
-from fastapi import Form
+from fastapi import Request
 from pydantic import JsonValue
 
 from server.pages.curve_grid import table_from_cells
@@ -17,6 +16,10 @@ from server.station.faults import BadStation, Fault, quoted
 from server.station.fresh import copy_item, new_item
 from server.station.station import Station
 from server.units import View
+
+# a grid of 200 rows and five columns, sent cell by cell without script
+MOST_FIELDS = 1500
+LONGEST_FINDING = 300
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,7 +41,7 @@ class Posted:
     item: str
     columns: str
     rows: str
-    source: tuple[str, str, str] | None
+    source: tuple[str, str, str]
 
     @property
     def shape(self) -> Look:
@@ -54,45 +57,34 @@ class Asked:
     focus: str = ""
 
 
-def posted_form(
-    path: Annotated[str, Form()] = "",
-    op: Annotated[str, Form()] = "set",
-    text: Annotated[str, Form()] = "",
-    base: Annotated[str, Form()] = "",
-    was: Annotated[str | None, Form()] = None,
-    unit: Annotated[str, Form()] = "",
-    look: Annotated[str, Form()] = "line",
-    before: Annotated[str, Form()] = "",
-    keep: Annotated[str, Form()] = "",
-    grid: Annotated[str | None, Form()] = None,
-    cell: Annotated[list[str] | None, Form()] = None,
-    units: Annotated[list[str] | None, Form()] = None,
-    item: Annotated[str, Form()] = "",
-    columns: Annotated[str, Form()] = "",
-    rows: Annotated[str, Form()] = "",
-    source_kind: Annotated[str | None, Form()] = None,
-    source_text: Annotated[str, Form()] = "",
-    source_date: Annotated[str, Form()] = "",
-) -> Posted:
-    """Return the form as posted; whatever is absent is empty."""
-    source = None if source_kind is None else (source_kind, source_text, source_date)
+async def posted_form(request: Request) -> Posted:
+    """Return the form as posted; whatever is absent is empty, but for `was` and `grid`."""
+    form = await request.form(max_fields=MOST_FIELDS)
+
+    def one(name: str, other: str = "") -> str:
+        value = form.get(name, other)
+        return value if isinstance(value, str) else other
+
+    def every(name: str) -> tuple[str, ...]:
+        return tuple(value for value in form.getlist(name) if isinstance(value, str))
+
     return Posted(
-        path,
-        op,
-        text,
-        base,
-        was,
-        unit,
-        look,
-        before,
-        keep,
-        grid,
-        tuple(cell or ()),
-        tuple(units or ()),
-        item,
-        columns,
-        rows,
-        source,
+        path=one("path"),
+        op=one("op", "set"),
+        text=one("text"),
+        base=one("base"),
+        was=one("was") if "was" in form else None,
+        unit=one("unit"),
+        look=one("look", "line"),
+        before=one("before"),
+        keep=one("keep"),
+        grid=one("grid") if "grid" in form else None,
+        cells=every("cell"),
+        units=every("units"),
+        item=one("item"),
+        columns=one("columns"),
+        rows=one("rows"),
+        source=(one("source_kind"), one("source_text"), one("source_date")),
     )
 
 
@@ -116,6 +108,12 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
         case "insert":
             new = new_item(station, posted.path)
             return Asked((Edit("insert", posted.path, new),), _focus(posted.path, new))
+        case "answer":
+            answer = {
+                **new_item(station, posted.path),
+                "finding": posted.item[:LONGEST_FINDING],
+            }
+            return Asked((Edit("insert", posted.path, answer),), _focus(posted.path, answer))
         case "copy":
             list_path, _, own = posted.path.rpartition("/")
             new = copy_item(station, posted.path)
@@ -137,7 +135,7 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
             return Asked((_default_edit(posted.path, view),))
         case "sort":
             return Asked((_grid_edit(posted, station, sort=True),))
-    if posted.source is not None:
+    if posted.look == "source":
         return Asked((_source_edit(posted, station),))
     if posted.look == "grid":
         return Asked((_grid_edit(posted, station, sort=False),))
@@ -157,6 +155,7 @@ def _expect_place(posted: Posted, station: Station) -> None:
     node = fields.node_at(posted.path)
     kinds = {
         "insert": node.kind == "list",
+        "answer": posted.path == "/answers",
         "paste": node.kind == "list",
         "scenarios": posted.path == "/scenarios",
         "copy": node.name == "*",
@@ -181,7 +180,7 @@ def _default_edit(path: str, view: View) -> Edit:
 def _source_edit(posted: Posted, station: Station) -> Edit:
     """Set or drop the source of a quantity that stands there already."""
     value = paths.get_json(station, posted.path)
-    if not isinstance(value, dict) or posted.source is None:
+    if not isinstance(value, dict):
         raise _refused(
             posted.path,
             "",

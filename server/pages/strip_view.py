@@ -31,6 +31,10 @@ from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Finding, Severity
 from server.units import Dimension, View, shown_with_unit
 
+SCALE_WORDS = (
+    "Grade line to scale in height, not in length; pressures are gauge, at each place's own"
+    " level."
+)
 MOST_MENDS = 4  # links under one finding; the sheet they lead to shows the rest
 SEVERITY_CSS = {
     Severity.STOP: "stop",
@@ -123,10 +127,12 @@ def strip_view(sheet: OpenedSheet) -> StripView | None:
         return None if missing is None else StripView("not solved", None, missing)
     case = case_index(judged.result, sheet.scenario_id)
     if case is None:
-        return StripView("no scenario", None, "No scenario is used, so there is no grade line yet.")
+        return StripView(
+            "no scenario", None, "No scenario is used, so there is no grade line yet."
+        )
     title = case_words(judged, case)
     strip = grade_strip(sheet.station, judged.result, case)
-    said = "Grade line to scale in height, not in length; pressures are gauge, at each place's own level."
+    said = SCALE_WORDS
     if int(judged.result.chosen[case]) < 0 or strip.lift is None:
         said = f"{no_duty_words(judged, case)} The supply's side is drawn alone. {said}"
     return StripView(
@@ -172,7 +178,7 @@ def _missing_words(sheet: OpenedSheet) -> str | None:
     if not sheet.set_id:
         return None
     answer = sheet.assessment.for_set(sheet.set_id)
-    if isinstance(answer, DutyResult):
+    if answer is None or isinstance(answer, DutyResult):
         return None
     count = len(answer.missing)
     return (
@@ -184,7 +190,9 @@ def _missing_words(sheet: OpenedSheet) -> str | None:
     )
 
 
-def _tab(sheet: OpenedSheet, judged: JudgedSet | None, scenario: str, title: str) -> ScenarioTab:
+def _tab(
+    sheet: OpenedSheet, judged: JudgedSet | None, scenario: str, title: str
+) -> ScenarioTab:
     href = sheet.case_href(scenario)
     current = scenario == sheet.scenario_id
     case = None if judged is None else case_index(judged.result, scenario)
@@ -196,4 +204,6 @@ def _tab(sheet: OpenedSheet, judged: JudgedSet | None, scenario: str, title: str
     if chosen < 0:
         return ScenarioTab(scenario, title, href, current, f"{told}, no duty", None)
     telling = f"{told}, {running_words(judged, case)}"
-    return ScenarioTab(scenario, title, href, current, telling, worst_mark(judged, case, chosen))
+    return ScenarioTab(
+        scenario, title, href, current, telling, worst_mark(judged, case, chosen)
+    )

@@ -1,4 +1,4 @@
-"""Sheet 1, Summary: whether the proposed set holds, requirements by horizon, what stands before signing."""
+"""Sheet 1, Summary: whether the set holds, by horizon, and what stands before signing."""
 
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -92,7 +92,8 @@ def build(sheet: SheetView) -> SummaryPage:
     return SummaryPage(
         lead=stressed(assessment.lead(sheet.view)),
         horizons=tuple(
-            " ".join(p for p in (str(h.year) if h.year else "", h.title.lower()) if p) or "horizon"
+            " ".join(p for p in (str(h.year) if h.year else "", h.title.lower()) if p)
+            or "horizon"
             for h in station.horizons
         ),
         requirements=_requirements(sheet),
@@ -110,10 +111,10 @@ def build(sheet: SheetView) -> SummaryPage:
 
 def stressed(lead: str) -> tuple[str, str, str]:
     """Return the lead cut in three, the words that say it does not hold in the middle."""
-    for words in ("does not hold", "is not known"):
-        if words in lead:
-            before, _, after = lead.partition(words)
-            return before, words, after
+    for said in ("does not hold", "is not known"):
+        if said in lead:
+            before, _, after = lead.partition(said)
+            return before, said, after
     return lead, "", ""
 
 
@@ -142,13 +143,27 @@ def _standing(sheet: SheetView) -> tuple[Standing, ...]:
     found = sheet.assessment.findings_for(sheet.assessment.proposed)
     kinds: tuple[tuple[str, str, Callable[[Finding], bool], bool], ...] = (
         ("stops the design", "stop the design", lambda f: f.severity is Severity.STOP, True),
-        ("does not meet its requirement", "do not meet their requirements",
-         lambda f: f.severity is Severity.FAIL, True),
-        ("is not checked", "are not checked", lambda f: f.severity is Severity.NOT_CHECKED, True),
+        (
+            "does not meet its requirement",
+            "do not meet their requirements",
+            lambda f: f.severity is Severity.FAIL,
+            True,
+        ),
+        (
+            "is not checked",
+            "are not checked",
+            lambda f: f.severity is Severity.NOT_CHECKED,
+            True,
+        ),
         ("wants a look", "want a look", lambda f: f.severity is Severity.CAUTION, False),
         ("rests on a default", "rest on defaults", _is_default, False),
-        ("is noted", "are noted", lambda f: f.severity is Severity.NOTE and not _is_default(f), False),
-    )  # fmt: skip
+        (
+            "is noted",
+            "are noted",
+            lambda f: f.severity is Severity.NOTE and not _is_default(f),
+            False,
+        ),
+    )
     standing = []
     for one, many, keep, bad in kinds:
         kept = [f for f in found if keep(f)]
@@ -166,10 +181,20 @@ def _is_default(finding: Finding) -> bool:
 
 def _names(sheet: SheetView) -> tuple[tuple[str, str], ...]:
     memo = sheet.station.memo
-    wanted = (("issue", memo.issue), ("date of issue", memo.date), ("prepared by", memo.prepared),
-              ("checked by", memo.checked), ("approved by", memo.approved))  # fmt: skip
-    paths = {"issue": "issue", "date of issue": "date", "prepared by": "prepared", "checked by": "checked",
-             "approved by": "approved"}  # fmt: skip
+    wanted = (
+        ("issue", memo.issue),
+        ("date of issue", memo.date),
+        ("prepared by", memo.prepared),
+        ("checked by", memo.checked),
+        ("approved by", memo.approved),
+    )
+    paths = {
+        "issue": "issue",
+        "date of issue": "date",
+        "prepared by": "prepared",
+        "checked by": "checked",
+        "approved by": "approved",
+    }
     return tuple(
         (name, sheet.field_href(f"/memo/{paths[name]}")) for name, value in wanted if not value
     )
@@ -185,15 +210,21 @@ def _answering(sheet: SheetView) -> tuple[Answering, ...]:
     given = {a.finding: a.id for a in sheet.station.answers}
     rows = [
         Answering(
-            line.sentence, answer_key(finding),
+            line.sentence,
+            answer_key(finding),
             field_view(sheet, f"/answers/{given[answer_key(finding)]}/text")
-            if answer_key(finding) in given else None,
+            if answer_key(finding) in given
+            else None,
         )
         for finding, line in zip(found, findings_list(sheet, found), strict=True)
-    ]  # fmt: skip
+    ]
     asked = {answer_key(finding) for finding in found}
     rows.extend(
-        Answering("To a finding that no longer stands.", a.finding, field_view(sheet, f"/answers/{a.id}/text"))
+        Answering(
+            "To a finding that no longer stands.",
+            a.finding,
+            field_view(sheet, f"/answers/{a.id}/text"),
+        )
         for a in sheet.station.answers
         if a.finding not in asked
     )

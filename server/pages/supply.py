@@ -5,12 +5,14 @@ from dataclasses import dataclass
 from fastapi import APIRouter, Request
 from fastapi.responses import HTMLResponse
 
+from server.pages.charts import FigureView
 from server.pages.forms import FieldView, field_view, field_views
 from server.pages.frame import SheetPage, register, show
 from server.pages.items import ItemTable, item_table
 from server.pages.reaches import ReachesView, reaches_view
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
+from server.pages.supply_figure import supply_figure
 
 router = APIRouter()
 
@@ -58,6 +60,7 @@ class SupplyPage:
     named: tuple[FieldView, ...]
     tests: ItemTable
     states: tuple[FieldView, ...]
+    figure: FigureView
     tank: tuple[FieldView, ...]
     grade_line: tuple[FieldView, ...]
     supplying_zone: tuple[FieldView, ...]
@@ -81,6 +84,7 @@ def build(sheet: SheetView) -> SupplyPage:
             empty="No flow test yet. The supply is known by at least one.",
         ),
         states=field_views(sheet, "/supply/states", ("low", "normal", "high")),
+        figure=supply_figure(sheet),
         tank=field_views(sheet, "/supply/tank", TANK),
         grade_line=field_views(sheet, "/supply/grade_line", ("low", "normal", "high")),
         supplying_zone=field_views(sheet, "/supply/supplying_zone", SUPPLYING_ZONE),
@@ -89,7 +93,7 @@ def build(sheet: SheetView) -> SupplyPage:
     )
 
 
-register(SheetPage("supply", build))
+register(SheetPage("supply", build, "supply/results.html"))
 
 
 @router.get("/stations/{station_id}/supply", name="supply", dependencies=[needs("read")])

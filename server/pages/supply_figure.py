@@ -1,4 +1,4 @@
-"""The supply figure on the sheet "Site and supply": what the supply gives, its tests, its limit."""
+"""The supply figure on sheet 2: what the supply gives, its tests, its limit."""
 
 from server.figures.supply_chart import supply_chart
 from server.pages.charts import FigureView, figure_view, no_figure
@@ -20,7 +20,13 @@ def supply_figure(sheet: SheetView) -> FigureView:
     if isinstance(curve, NoSupplyCurve):
         kinds = {missing.reason for missing in curve.missing}
         if kinds == {"not_in_this_version"}:
-            return no_figure("supply", TITLE, "This kind of supply is entered but not yet computed.")
+            return no_figure(
+                "supply", TITLE, "This kind of supply is entered but not yet computed."
+            )
         first = sheet.field_words(curve.missing[0].path)
-        return no_figure("supply", TITLE, f"Drawn as soon as the supply is known; missing first: {first}.")
-    return figure_view(supply_chart(curve, sheet.station, sheet.view), sheet.view, live=False, scale=0.8)
+        return no_figure(
+            "supply", TITLE, f"Drawn as soon as the supply is known; missing first: {first}."
+        )
+    return figure_view(
+        supply_chart(curve, sheet.station, sheet.view), sheet.view, live=False, scale=0.8
+    )

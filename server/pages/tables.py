@@ -46,12 +46,16 @@ DUTY_COLUMNS: tuple[Column, ...] = (
 def duty_table(judged: JudgedSet, view: View) -> tuple[tuple[str, ...], ...]:
     """Return the duty of every scenario in all three supply states, head row first."""
     points = tuple(
-        (f"Pressure at {point.title}", D.PRESSURE, _pressure_at(p)) for p, point in enumerate(judged.points)
+        (f"Pressure at {point.title}", D.PRESSURE, _pressure_at(p))
+        for p, point in enumerate(judged.points)
     )
     columns: tuple[Column, ...] = (*DUTY_COLUMNS[:-1], *points, DUTY_COLUMNS[-1])
     heads = tuple(_head(title, dimension, view) for title, dimension, _ in columns)
     rows = (row for duty in scenario_duties(judged) for row in duty.states)
-    return (heads, *(tuple(_cell(read(row), d, view) for _, d, read in columns) for row in rows))
+    return (
+        heads,
+        *(tuple(_cell(read(row), d, view) for _, d, read in columns) for row in rows),
+    )
 
 
 def _pressure_at(point: int) -> Callable[[DutyRow], float | str | None]:
@@ -60,14 +64,20 @@ def _pressure_at(point: int) -> Callable[[DutyRow], float | str | None]:
 
 def _findings_table(sheet: SheetView) -> tuple[tuple[str, ...], ...]:
     rows = (
-        (words.severity_words(f.severity), f.code, words.sentence(f, sheet.station, sheet.view),
-         words.basis(f, sheet.station))
+        (
+            words.severity_words(f.severity),
+            f.code,
+            words.sentence(f, sheet.station, sheet.view),
+            words.basis(f, sheet.station),
+        )
         for f in sheet.assessment.findings
-    )  # fmt: skip
+    )
     return (("Weight", "Finding", "Sentence", "Basis"), *rows)
 
 
-@router.get("/stations/{station_id}/tables/{table}.csv", name="table-csv", dependencies=[needs("read")])
+@router.get(
+    "/stations/{station_id}/tables/{table}.csv", name="table-csv", dependencies=[needs("read")]
+)
 def table_csv(request: Request, station_id: str, table: str) -> Response:
     """Answer one table as a CSV file with units in its heads."""
     sheet = open_sheet(request, station_id, "duty")
@@ -77,13 +87,17 @@ def table_csv(request: Request, station_id: str, table: str) -> Response:
         raise HTTPException(404, "There is no such table. There are: duty, findings.")
     judged = judged_set(sheet.assessment, sheet.set_id)
     if judged is None:
-        raise HTTPException(404, "The duty table cannot be made yet: inputs that it needs are missing.")
+        raise HTTPException(
+            404, "The duty table cannot be made yet: inputs that it needs are missing."
+        )
     return _csv(duty_table(judged, sheet.view), f"{station_id}-duty.csv")
 
 
 def _csv(rows: Iterable[tuple[str, ...]], name: str) -> Response:
     written = io.StringIO()
-    csv.writer(written, lineterminator="\r\n").writerows([_harmless(cell) for cell in row] for row in rows)
+    csv.writer(written, lineterminator="\r\n").writerows(
+        [_harmless(cell) for cell in row] for row in rows
+    )
     # the mark tells a spreadsheet that the file is UTF-8
     return Response(
         "\ufeff" + written.getvalue(),

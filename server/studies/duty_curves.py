@@ -1,6 +1,7 @@
-"""The curves behind a duty: what the set gives, what is asked of it, what it takes, against flow.
+"""The curves behind a duty against flow: what is given, asked and taken.
 
-They are read from the same lowered set and the same physics as the duty itself, so that every duty
+They are read from the same lowered set and the same physics as the duty itself, so that
+every duty
 point lies on them.
 """
 
@@ -26,14 +27,16 @@ MOST_CURVES = 6
 
 @dataclass(frozen=True, slots=True, eq=False)
 class RunningSet:
-    """Units of one kind or of several that run together, and their curve at the highest speed."""
+    """Units that run together, and their curve at the highest speed."""
 
     combination: int  # index into the result's combinations
     units: int
     small: bool  # only jockeys
     flow: Floats  # (n,) [m3/s]
     head: Floats  # (n,) at the highest speed, manifold to manifold [m]
-    preferred_flow: Floats  # (m,) outline of the preferred region, empty when it has none [m3/s]
+    preferred_flow: (
+        Floats  # (m,) outline of the preferred region, empty when it has none [m3/s]
+    )
     preferred_head: Floats  # (m,) [m]
 
 
@@ -66,7 +69,9 @@ class DutyCurves:
     sets: tuple[RunningSet, ...]
     held: tuple[HeldCurve, ...]
     flow: Floats  # (n,) grid of station flow [m3/s]
-    required_low: Floats  # (n,) head that holds the set point at low supply, nan if not stated [m]
+    required_low: (
+        Floats  # (n,) head that holds the set point at low supply, nan if not stated [m]
+    )
     required_high: Floats  # (n,)
     pipes: PipeAge
     along: tuple[AlongControl, ...]
@@ -83,7 +88,8 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     result : DutyResult
         Duty of the set.
     state : {"low", "normal", "high"}
-        Supply state of the curves along the held set point; another is taken if it is not stated.
+        Supply state of the curves along the held set point; another is taken if it is not
+        stated.
 
     Raises
     ------
@@ -99,7 +105,9 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     asked = float(np.nanmax(result.demand)) if result.demand.size else 0.0
     grid = np.linspace(0.0, max(furthest, 1.1 * asked, 1e-3), READINGS)
     pipes = _pipes(lowered, result)
-    known = [s for s in SUPPLY_STATES if np.isfinite(lowered.supply.shift[SUPPLY_STATES.index(s)])]
+    known = [
+        s for s in SUPPLY_STATES if np.isfinite(lowered.supply.shift[SUPPLY_STATES.index(s)])
+    ]
     along_state = state if state in known else known[0]
     return DutyCurves(
         sets=sets,
@@ -121,11 +129,13 @@ def _pipes(lowered: LoweredSet, result: DutyResult) -> PipeAge:
 
 def _units(lowered: LoweredSet, result: DutyResult, combination: int) -> list[int]:
     """Return the unit of each slot that runs."""
-    return [lowered.slots[int(n)].unit for n in np.flatnonzero(result.combinations[combination])]
+    return [
+        lowered.slots[int(n)].unit for n in np.flatnonzero(result.combinations[combination])
+    ]
 
 
 def _drawn(lowered: LoweredSet, result: DutyResult) -> tuple[int, ...]:
-    """Return the combinations that are drawn, one of each make-up: those chosen, and fewer of them."""
+    """Return the combinations drawn, one of each make-up: those chosen, and fewer."""
     chosen = {int(k) for k in result.chosen if k >= 0}
     usable = {int(k) for k in np.flatnonzero(result.available.any(axis=0))} | chosen
     most = max((int(result.combinations[k].sum()) for k in chosen), default=2)
@@ -144,8 +154,12 @@ def _drawn(lowered: LoweredSet, result: DutyResult) -> tuple[int, ...]:
 def _at_speed(legs: list[LegCurve], speed: float) -> tuple[Floats, Floats]:
     """Return flow and head of legs together, from no flow to the first leg's last row."""
     square = speed * speed
-    high, low = max(leg.peak_head for leg in legs) * square, max(leg.last_head for leg in legs) * square
-    # flow grows with the root of the head given up: equal steps in flow need squared steps in head
+    high, low = (
+        max(leg.peak_head for leg in legs) * square,
+        max(leg.last_head for leg in legs) * square,
+    )
+    # flow grows with the root of the head given up: equal steps in flow need squared steps
+    # in head
     head = high - (high - low) * np.linspace(0.0, 1.0, READINGS) ** 2
     flows = leg_flows(head, legs=legs, speeds=speed)
     usable = ~np.any(flows.state == State.END_OF_CURVE, axis=-1)
@@ -191,19 +205,28 @@ def _held(lowered: LoweredSet, result: DutyResult) -> tuple[HeldCurve, ...]:
     return tuple(curves)
 
 
-def _heads(lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge) -> SystemHeads:
+def _heads(
+    lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge
+) -> SystemHeads:
     """Return grades and required head, all flow taken as demand of the zone."""
     draw = Draw(
-        domestic=flow, fire=np.zeros(flow.shape), fire_point=-1, aged=pipes == "aged",
+        domestic=flow,
+        fire=np.zeros(flow.shape),
+        fire_point=-1,
+        aged=pipes == "aged",
         shift=np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)]),
-    )  # fmt: skip
+    )
     return system_heads(lowered, draw)
 
 
 def _along(
-    lowered: LoweredSet, result: DutyResult, drawn: tuple[int, ...], flow: Floats,
-    state: SupplyState, pipes: PipeAge,
-) -> tuple[AlongControl, ...]:  # fmt: skip
+    lowered: LoweredSet,
+    result: DutyResult,
+    drawn: tuple[int, ...],
+    flow: Floats,
+    state: SupplyState,
+    pipes: PipeAge,
+) -> tuple[AlongControl, ...]:
     """Return each drawn combination where it holds the set point, solved as the duty is."""
     if not drawn:
         return ()
@@ -219,15 +242,22 @@ def _along(
         }
         power = slot["shaft_power"].sum(axis=1)
         useful = (slot["shaft_power"] * slot["efficiency"]).sum(axis=1)
-        available = _npsh_available(lowered, heads.suction_grade[:, None] - slot["suction_loss"])
+        available = _npsh_available(
+            lowered, heads.suction_grade[:, None] - slot["suction_loss"]
+        )
         curves.append(
             AlongControl(
-                combination=k, flow=flow, speed=slot["speed"][:, 0],
-                efficiency=np.divide(useful, power, out=np.full(flow.shape, np.nan), where=power > 0),
-                shaft_power=power, npsh_available=available.min(axis=1),
+                combination=k,
+                flow=flow,
+                speed=slot["speed"][:, 0],
+                efficiency=np.divide(
+                    useful, power, out=np.full(flow.shape, np.nan), where=power > 0
+                ),
+                shaft_power=power,
+                npsh_available=available.min(axis=1),
                 npsh_required=slot["npsh_required"].max(axis=1),
             )
-        )  # fmt: skip
+        )
     return tuple(curves)
 
 

@@ -1,4 +1,4 @@
-"""What the supply gives against what the station draws, in each of its states, with its tests."""
+"""What the supply gives against draw, in each of its states, with its tests."""
 
 from dataclasses import dataclass
 
@@ -32,7 +32,7 @@ class FlowTestPoint:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class SupplyCurve:
-    """Gauge pressure at the connection against the station's draw; rows of a state not stated are nan."""
+    """Gauge pressure at the connection against draw; nan for a state not stated."""
 
     flow: Floats  # (n,) [m3/s]
     pressure: Floats  # (3, n) low, normal, high [Pa]
@@ -40,7 +40,9 @@ class SupplyCurve:
     flow_at_limit: Floats  # (3,) nan when the limit is not reached on the curve [m3/s]
     tests: tuple[FlowTestPoint, ...]
     tested_flow: float | None  # largest flow that was tested [m3/s]
-    demands: tuple[tuple[str, SupplyState, float, float], ...]  # scenario, state, flow, pressure
+    demands: tuple[
+        tuple[str, SupplyState, float, float], ...
+    ]  # scenario, state, flow, pressure
     level: float  # of the connection [m]
 
 
@@ -91,11 +93,15 @@ def _pressure(source: Supply, flow: Floats, shift: float) -> Floats:
 
 
 def _at_limit(source: Supply, shift: float, limit: float) -> float:
-    """Return the draw at which the pressure falls to the limit; nan where it does not fall so far."""
+    """Return the draw at which the pressure falls to the limit; nan if it never does."""
     if not np.isfinite(shift) or not isinstance(source.source, FlowTestSupply):
         return float("nan")
-    moved = (source.connection_level - source.source.gauge_level) * source.water.density * GRAVITY
-    flow = float(source.source.flow_at(limit + moved, shift_pressure=shift)) + source.draw_in_test
+    moved = (
+        (source.connection_level - source.source.gauge_level) * source.water.density * GRAVITY
+    )
+    flow = (
+        float(source.source.flow_at(limit + moved, shift_pressure=shift)) + source.draw_in_test
+    )
     return flow if flow > 0 else float("nan")
 
 
@@ -103,16 +109,28 @@ def _tests(station: Station, source: Supply) -> tuple[FlowTestPoint, ...]:
     """Return the tests that are complete, moved from their gauge to the connection's level."""
     points = []
     for test in station.supply.flow_tests if station.supply.kind == "main" else ():
-        needed = (test.gauge_level, test.static_pressure, test.residual_pressure, test.test_flow)
+        needed = (
+            test.gauge_level,
+            test.static_pressure,
+            test.residual_pressure,
+            test.test_flow,
+        )
         if any(quantity is None for quantity in needed):
             continue
         level, static, residual, flow = (q.si for q in needed if q is not None)
         moved = (level - source.connection_level) * source.water.density * GRAVITY
         draw = 0.0 if test.station_draw is None else test.station_draw.si
         points.append(
-            FlowTestPoint(test.id, test.title, test.made_at or "", test.use == "basis", flow + draw,
-                      static + moved, residual + moved)
-        )  # fmt: skip
+            FlowTestPoint(
+                test.id,
+                test.title,
+                test.made_at or "",
+                test.use == "basis",
+                flow + draw,
+                static + moved,
+                residual + moved,
+            )
+        )
     return tuple(points)
 
 
@@ -120,7 +138,14 @@ def _demands(result: DutyResult | None) -> tuple[tuple[str, SupplyState, float, 
     if result is None:
         return ()
     return tuple(
-        (case.scenario, case.supply, float(result.demand[i]), float(result.connection_pressure[i]))
+        (
+            case.scenario,
+            case.supply,
+            float(result.demand[i]),
+            float(result.connection_pressure[i]),
+        )
         for i, case in enumerate(result.cases)
-        if result.shown[i] and np.isfinite(result.demand[i]) and np.isfinite(result.connection_pressure[i])
+        if result.shown[i]
+        and np.isfinite(result.demand[i])
+        and np.isfinite(result.connection_pressure[i])
     )

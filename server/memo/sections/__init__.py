@@ -1,1 +1,1 @@
-"""The sections of the memo, one file each: every one returns blocks, also for an empty station."""
+"""The sections of the memo: each returns blocks, also for an empty station."""

@@ -6,17 +6,23 @@ from server.station import fields
 
 PROFILES = {"si_municipal": "SI, municipal", "us_municipal": "US, municipal"}
 METHOD: tuple[str, ...] = (
-    "Water: density and viscosity by IAPWS SR6-08, vapour pressure by IAPWS-IF97, atmosphere by the US"
+    "Water: density and viscosity by IAPWS SR6-08, vapour pressure by IAPWS-IF97, atmosphere "
+    "by the US"
     " Standard Atmosphere 1976.",
-    "Friction: Darcy-Weisbach with Colebrook-White, or Hazen-Williams, as each reach says; fittings by K.",
-    "Supplying main by flow test: pressure falls with flow to the power 1/0.54 (NFPA 291); low, normal and"
+    "Friction: Darcy-Weisbach with Colebrook-White, or Hazen-Williams, as each reach says; "
+    "fittings by K.",
+    "Supplying main by flow test: pressure falls with flow to the power 1/0.54 (NFPA 291); "
+    "low, normal and"
     " high are shifts of the whole curve.",
-    "Pumps: rows joined by a shape-preserving cubic, nothing read past the last row; at another speed by the"
+    "Pumps: rows joined by a shape-preserving cubic, nothing read past the last row; at "
+    "another speed by the"
     " affinity laws, NPSH required by the power of speed that is stated with the pump.",
     "Zone losses grow with flow to the power 1.852 (common practice).",
-    "Every scenario is solved at low, normal and high supply, suction and discharge in one solve; the"
+    "Every scenario is solved at low, normal and high supply, suction and discharge in one "
+    "solve; the"
     " control produces a state, the requirements judge it.",
-    "Grade line: total head. A gauge pressure is density times 9.80665 m/s² times the height of the grade"
+    "Grade line: total head. A gauge pressure is density times 9.80665 m/s² times the height "
+    "of the grade"
     " line over the gauge; velocity head is not taken off.",
 )
 
@@ -28,13 +34,21 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     rows: list[tuple[str, Spans]] = [
         (name, (text,))
         for name, text in (
-            ("Station", identity.title), ("Place", identity.place), ("Water utility", identity.client),
-            ("Job number", identity.number), ("Datum of levels", station.site.datum),
-            ("Zone", station.zone.title), ("Supply", station.supply.title),
-            ("Criteria", f"profile {PROFILES[station.criteria.profile]}, with the departures listed below"),
+            ("Station", identity.title),
+            ("Place", identity.place),
+            ("Water utility", identity.client),
+            ("Job number", identity.number),
+            ("Datum of levels", station.site.datum),
+            ("Zone", station.zone.title),
+            ("Supply", station.supply.title),
+            (
+                "Criteria",
+                f"profile {PROFILES[station.criteria.profile]}, with the departures listed "
+                "below",
+            ),
         )
         if text
-    ]  # fmt: skip
+    ]
     for name, kind, path in (
         ("Kind of zone", station.zone.kind, "/zone/kind"),
         ("Kind of supply", station.supply.kind, "/supply/kind"),

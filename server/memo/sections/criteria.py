@@ -11,29 +11,49 @@ from server.studies.shapes import Amount, Verdict
 def blocks(of: MemoSource) -> tuple[Block, ...]:
     """Return the section."""
     made: list[Block] = [Heading("Criteria and departures")]
-    judged = tuple(r for r in of.assessment.compliance if r.verdict is not Verdict.NOT_APPLICABLE)
+    judged = tuple(
+        r for r in of.assessment.compliance if r.verdict is not Verdict.NOT_APPLICABLE
+    )
     if judged:
         made.append(
             Table(
                 "Criteria that are judged, worst case of each",
-                (Column("Criterion", wide=True), Column("Required"), Column("Provided"), Column("Verdict"), Column("Case, or why")),
+                (
+                    Column("Criterion", wide=True),
+                    Column("Required"),
+                    Column("Provided"),
+                    Column("Verdict"),
+                    Column("Case, or why"),
+                ),
                 tuple(_row(row, of) for row in judged),
             )
-        )  # fmt: skip
+        )
     left = departures(of.assessment.compliance)
     made.append(Heading("Departures from the profile", 3))
     if left:
         made.append(
             Table(
                 "Departures",
-                (Column("Criterion"), Column("Profile"), Column("Here"), Column("Source"), Column("Reason")),
+                (
+                    Column("Criterion"),
+                    Column("Profile"),
+                    Column("Here"),
+                    Column("Source"),
+                    Column("Reason"),
+                ),
                 tuple(_departure(row, of) for row in left),
             )
-        )  # fmt: skip
+        )
     else:
         made.append(Paragraph(("None: every limit is that of the profile.",)))
     made.append(
-        Paragraph(("Local codes and the authority's own limits govern; the profile is a starting point.",), small=True)
+        Paragraph(
+            (
+                "Local codes and the authority's own limits govern; the profile is a "
+                "starting point.",
+            ),
+            small=True,
+        )
     )
     return tuple(made)
 
@@ -47,9 +67,18 @@ def _row(row: ComplianceRow, of: MemoSource) -> tuple[Cell, ...]:
 
 def _departure(row: ComplianceRow, of: MemoSource) -> tuple[Cell, ...]:
     criterion = row.criterion
-    profile = "no limit" if criterion.profile is None else amount_words(
-        Amount("profile", criterion.profile.si, criterion.dimension, criterion.rule.decimals), of.view
+    profile = (
+        "no limit"
+        if criterion.profile is None
+        else amount_words(
+            Amount(
+                "profile", criterion.profile.si, criterion.dimension, criterion.rule.decimals
+            ),
+            of.view,
+        )
     )
-    here = amount_words(Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals), of.view)
+    here = amount_words(
+        Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals), of.view
+    )
     reason: Cell = criterion.reason or (Strong("no reason is given", bad=True),)
     return (criterion.title, profile, here, criterion.source, reason)

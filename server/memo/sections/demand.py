@@ -39,27 +39,49 @@ def _horizons(of: MemoSource) -> Table:
 
     return Table(
         "Demand by horizon",
-        (Column("Horizon"), Column("Year"), Column("People"), Column("Average day", D.FLOW),
-         Column("Maximum day", D.FLOW), Column("Peak hour", D.FLOW), Column("Minimum night", D.FLOW)),
+        (
+            Column("Horizon"),
+            Column("Year"),
+            Column("People"),
+            Column("Average day", D.FLOW),
+            Column("Maximum day", D.FLOW),
+            Column("Peak hour", D.FLOW),
+            Column("Minimum night", D.FLOW),
+        ),
         tuple(row(h) for h in of.station.horizons),
-    )  # fmt: skip
+    )
 
 
 def _fires(of: MemoSource) -> Table:
     points = {p.id: p.title for p in of.station.zone.points}
 
     def quantity(value: Quantity | None, path: str) -> Spans:
-        return ("–",) if value is None else quantity_spans(value, fields.entry_for(path), of.view)
+        return (
+            ("–",) if value is None else quantity_spans(value, fields.entry_for(path), of.view)
+        )
 
     return Table(
         "Design fires",
-        (Column("Fire"), Column("Hydrant"), Column("Flow"), Column("Duration"), Column("Beside"), Column("Carried by")),
+        (
+            Column("Fire"),
+            Column("Hydrant"),
+            Column("Flow"),
+            Column("Duration"),
+            Column("Beside"),
+            Column("Carried by"),
+        ),
         tuple(
-            (f.title or "Fire", points.get(f.point or "", "–"), quantity(f.flow, "/fires/*/flow"),
-             quantity(f.duration, "/fires/*/duration"), f.beside.replace("_", " "), f"the {f.carried_by}")
+            (
+                f.title or "Fire",
+                points.get(f.point or "", "–"),
+                quantity(f.flow, "/fires/*/flow"),
+                quantity(f.duration, "/fires/*/duration"),
+                f.beside.replace("_", " "),
+                f"the {f.carried_by}",
+            )
             for f in of.station.fires
         ),
-    )  # fmt: skip
+    )
 
 
 def _scenarios(of: MemoSource, used: list[Scenario]) -> Table:
@@ -69,18 +91,32 @@ def _scenarios(of: MemoSource, used: list[Scenario]) -> Table:
     def row(s: Scenario) -> tuple[Cell, ...]:
         demand = "" if s.demand is None else s.demand.replace("_", " ")
         return (
-            s.title or "Scenario", horizons.get(s.horizon or "", "–"),
-            f"{demand} and fire" if s.fire else demand, flows.get(s.id),
-            s.supply, s.pipes, "the largest unit" if s.out == "largest" else "none",
-        )  # fmt: skip
+            s.title or "Scenario",
+            horizons.get(s.horizon or "", "–"),
+            f"{demand} and fire" if s.fire else demand,
+            flows.get(s.id),
+            s.supply,
+            s.pipes,
+            "the largest unit" if s.out == "largest" else "none",
+        )
 
     return Table(
         "Scenarios",
-        (Column("Scenario"), Column("Horizon"), Column("Demand"), Column("Flow", D.FLOW),
-         Column("Supply shown"), Column("Pipes"), Column("Unit out")),
+        (
+            Column("Scenario"),
+            Column("Horizon"),
+            Column("Demand"),
+            Column("Flow", D.FLOW),
+            Column("Supply shown"),
+            Column("Pipes"),
+            Column("Unit out"),
+        ),
         tuple(row(s) for s in used),
-        ("Each is solved at low, normal and high supply; the tables print the state shown and the worst of the three.",),
-    )  # fmt: skip
+        (
+            "Each is solved at low, normal and high supply; the tables print the state shown "
+            "and the worst of the three.",
+        ),
+    )
 
 
 def _si(quantity: Quantity | None) -> float | None:

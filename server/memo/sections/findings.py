@@ -16,11 +16,15 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     ]
     items = tuple(
         FindingBlock(
-            f.code, f.severity, words.severity_words(f.severity), words.sentence(f, of.station, of.view),
-            words.basis(f, of.station), answer_to(f, of.station),
+            f.code,
+            f.severity,
+            words.severity_words(f.severity),
+            words.sentence(f, of.station, of.view),
+            words.basis(f, of.station),
+            answer_to(f, of.station),
         )
         for f in kept
-    )  # fmt: skip
+    )
     made: list[Block] = [
         Heading("Findings in full"),
         Findings(items, "Nothing was found in what could be checked."),

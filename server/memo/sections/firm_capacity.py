@@ -13,13 +13,23 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     """Return the section."""
     made: list[Block] = [Heading("Firm capacity")]
     if of.judged is None or not of.judged.result.made.firm_capacity:
-        why = "the proposed set is not solved" if of.judged is None else "no horizon has the demands for it"
+        why = (
+            "the proposed set is not solved"
+            if of.judged is None
+            else "no horizon has the demands for it"
+        )
         return (*made, Paragraph((f"Not computed: {why}.",)))
     made.append(
-        Paragraph(("The largest flow at low supply and aged pipes with each installed unit in turn out, the"
-                   " least of them: limited by head and curve end, and also by suction limits and NPSH margin."
-                   " Found by solving the coupled system; nameplate flows are never added.",))
-    )  # fmt: skip
+        Paragraph(
+            (
+                "The largest flow at low supply and aged pipes with each installed unit in "
+                "turn out, the"
+                " least of them: limited by head and curve end, and also by suction limits "
+                "and NPSH margin."
+                " Found by solving the coupled system; nameplate flows are never added.",
+            )
+        )
+    )
     made.append(_table(of, of.judged))
     return tuple(made)
 
@@ -31,21 +41,38 @@ def _table(of: MemoSource, judged: JudgedSet) -> Table:
     for firm in judged.result.made.firm_capacity:
         rows.append(
             (
-                f"{REQUIREMENTS.get(firm.requirement, firm.requirement)}, {horizons.get(firm.horizon, '')}",
-                firm.required_flow, firm.by_head, limit_title(firm.by_head_limit, of.station), firm.by_all,
-                limit_title(firm.by_all_limit, of.station), slots.get(firm.unit_out, "–"), _known(firm.all_running),
+                f"{REQUIREMENTS.get(firm.requirement, firm.requirement)}, "
+                f"{horizons.get(firm.horizon, '')}",
+                firm.required_flow,
+                firm.by_head,
+                limit_title(firm.by_head_limit, of.station),
+                firm.by_all,
+                limit_title(firm.by_all_limit, of.station),
+                slots.get(firm.unit_out, "–"),
+                _known(firm.all_running),
                 "–" if firm.runs_out is None else str(firm.runs_out),
             )
-        )  # fmt: skip
+        )
     return Table(
         "Firm capacity against what is required",
-        (Column("Requirement"), Column("Required", D.FLOW), Column("By head", D.FLOW), Column("limited by"),
-         Column("By all limits", D.FLOW), Column("limited by"), Column("Unit out"),
-         Column("No unit out", D.FLOW), Column("Passed in")),
+        (
+            Column("Requirement"),
+            Column("Required", D.FLOW),
+            Column("By head", D.FLOW),
+            Column("limited by"),
+            Column("By all limits", D.FLOW),
+            Column("limited by"),
+            Column("Unit out"),
+            Column("No unit out", D.FLOW),
+            Column("Passed in"),
+        ),
         tuple(rows),
-        ("“Passed in”: the year in which the demand, growing linearly between the horizons, passes the"
-         " capacity by all limits; a dash: not within the horizons.",),
-    )  # fmt: skip
+        (
+            "“Passed in”: the year in which the demand, growing linearly between the "
+            "horizons, passes the"
+            " capacity by all limits; a dash: not within the horizons.",
+        ),
+    )
 
 
 def _known(value: float) -> float | None:

@@ -29,17 +29,25 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         made.append(_after_trip(of, judged, cases.after_trip))
     if cases.handover is not None and len(cases.handover.fewer):
         made.append(_handover(judged, cases.handover))
-    for name, case in (("A shut zone", cases.zero_flow), ("The station off", cases.station_off),
-                       ("A trip", cases.after_trip), ("Hand-over", cases.handover)):  # fmt: skip
+    for name, case in (
+        ("A shut zone", cases.zero_flow),
+        ("The station off", cases.station_off),
+        ("A trip", cases.after_trip),
+        ("Hand-over", cases.handover),
+    ):
         if case is None:
-            made.append(Paragraph((f"{name}: not computed, because what it needs is not given.",)))
+            made.append(
+                Paragraph((f"{name}: not computed, because what it needs is not given.",))
+            )
     return tuple(made)
 
 
 def _points(judged: JudgedSet) -> tuple[int, ...]:
     """Return the points shown: critical, lowest and hydrants before other customers."""
     order = {"critical": 0, "lowest": 1, "hydrant": 2}
-    ranked = sorted(range(len(judged.points)), key=lambda p: (order.get(judged.points[p].role, 3), p))
+    ranked = sorted(
+        range(len(judged.points)), key=lambda p: (order.get(judged.points[p].role, 3), p)
+    )
     return tuple(ranked[:MOST_POINTS])
 
 
@@ -50,18 +58,44 @@ def _zero_flow(judged: JudgedSet, zero: ZeroFlow) -> Table:
         if not np.isfinite(zero.point_pressure_held[i]).any():
             rows.append((f"{state}, not stated", "–", None, None, *(None for _ in points)))
             continue
-        rows.append((state, "set point held, no flow", _n(zero.speed_held[i]), None,
-                     *(_n(zero.point_pressure_held[i, p]) for p in points)))  # fmt: skip
-        rows.append((state, "largest pump at top speed", judged.result.highest_speed,
-                     _n(zero.discharge_pressure_largest[i]), *(_n(zero.point_pressure_largest[i, p]) for p in points)))
-        rows.append((state, "all at top speed, sensor lost", judged.result.highest_speed,
-                     _n(zero.discharge_pressure_all[i]), *(_n(zero.point_pressure_all[i, p]) for p in points)))
+        rows.append(
+            (
+                state,
+                "set point held, no flow",
+                _n(zero.speed_held[i]),
+                None,
+                *(_n(zero.point_pressure_held[i, p]) for p in points),
+            )
+        )
+        rows.append(
+            (
+                state,
+                "largest pump at top speed",
+                judged.result.highest_speed,
+                _n(zero.discharge_pressure_largest[i]),
+                *(_n(zero.point_pressure_largest[i, p]) for p in points),
+            )
+        )
+        rows.append(
+            (
+                state,
+                "all at top speed, sensor lost",
+                judged.result.highest_speed,
+                _n(zero.discharge_pressure_all[i]),
+                *(_n(zero.point_pressure_all[i, p]) for p in points),
+            )
+        )
     return Table(
         "The set against a shut zone, gauge pressures",
-        (Column("Supply"), Column("State of the set"), Column("Speed", D.RATIO), Column("Discharge gauge", D.PRESSURE),
-         *(Column(judged.points[p].title or "Point", D.PRESSURE) for p in points)),
+        (
+            Column("Supply"),
+            Column("State of the set"),
+            Column("Speed", D.RATIO),
+            Column("Discharge gauge", D.PRESSURE),
+            *(Column(judged.points[p].title or "Point", D.PRESSURE) for p in points),
+        ),
         tuple(rows),
-    )  # fmt: skip
+    )
 
 
 def _station_off(of: MemoSource, judged: JudgedSet, off: StationOff) -> Table:
@@ -73,22 +107,36 @@ def _station_off(of: MemoSource, judged: JudgedSet, off: StationOff) -> Table:
             return ("no water",)
         if not np.isfinite(pressure):
             return ("–",)
-        return (shown(pressure, D.PRESSURE, of.view) + (", below atmosphere" if pressure < 0 else ""),)
+        return (
+            shown(pressure, D.PRESSURE, of.view)
+            + (", below atmosphere" if pressure < 0 else ""),
+        )
 
-    rows = tuple(
+    rows: tuple[tuple[Cell, ...], ...] = tuple(
         (scenario_title(judged, case.scenario), case.supply, *(cell(i, p) for p in points))
         for i, case in enumerate(off.cases)
         if i < len(judged.result.shown) and judged.result.shown[i]
     )
-    how = "through the bypass" if off.path == "bypass" else "as an upper bound: no bypass is entered"
+    how = (
+        "through the bypass"
+        if off.path == "bypass"
+        else "as an upper bound: no bypass is entered"
+    )
     unit = _unit(of)
     return Table(
         f"The station off: what the supply alone gives, {how}",
-        (Column("Scenario"), Column("State"), *(Column(judged.points[p].title or "Point", unit=unit) for p in points)),
+        (
+            Column("Scenario"),
+            Column("State"),
+            *(Column(judged.points[p].title or "Point", unit=unit) for p in points),
+        ),
         rows,
-        ("“No water”: the grade line falls so far below the point that the main drains or the column breaks;"
-         " no pressure is stated. Below atmosphere dirty water can be drawn in.",),
-    )  # fmt: skip
+        (
+            "“No water”: the grade line falls so far below the point that the main drains or "
+            "the column breaks;"
+            " no pressure is stated. Below atmosphere dirty water can be drawn in.",
+        ),
+    )
 
 
 def _after_trip(of: MemoSource, judged: JudgedSet, trip: AfterTrip) -> Table:
@@ -108,15 +156,29 @@ def _after_trip(of: MemoSource, judged: JudgedSet, trip: AfterTrip) -> Table:
         else:
             told, share = "nothing flows", None
         rows.append(
-            (scenario_title(judged, case.scenario), case.supply, lost, str(int(trip.running[i])), told, share,
-             _n(trip.flow_at_end[i]) if trip.running[i] else None)
-        )  # fmt: skip
+            (
+                scenario_title(judged, case.scenario),
+                case.supply,
+                lost,
+                str(int(trip.running[i])),
+                told,
+                share,
+                _n(trip.flow_at_end[i]) if trip.running[i] else None,
+            )
+        )
     return Table(
         "The largest running unit lost, before the standby has started",
-        (Column("Scenario"), Column("State"), Column("Lost"), Column("Left"), Column("What the rest does"),
-         Column("Largest of BEP", D.RATIO, 0), Column("Curves end at", D.FLOW)),
+        (
+            Column("Scenario"),
+            Column("State"),
+            Column("Lost"),
+            Column("Left"),
+            Column("What the rest does"),
+            Column("Largest of BEP", D.RATIO, 0),
+            Column("Curves end at", D.FLOW),
+        ),
         tuple(rows),
-    )  # fmt: skip
+    )
 
 
 def _handover(judged: JudgedSet, handover: Handover) -> Table:
@@ -130,14 +192,32 @@ def _handover(judged: JudgedSet, handover: Handover) -> Table:
             if end is not None and start is not None:
                 told = "overlap" if end >= start else "gap"
             name = f"{combination_words(judged, fewer)} to {combination_words(judged, more)}"
-            rows.append((name, state, end, start, None if end is None or start is None else abs(end - start), told))
+            rows.append(
+                (
+                    name,
+                    state,
+                    end,
+                    start,
+                    None if end is None or start is None else abs(end - start),
+                    told,
+                )
+            )
     return Table(
         "Hand-over between numbers of units, preferred regions along the held set point",
-        (Column("From and to"), Column("Supply"), Column("Fewer leave at", D.FLOW), Column("More enter at", D.FLOW),
-         Column("Width", D.FLOW), Column("Which is")),
+        (
+            Column("From and to"),
+            Column("Supply"),
+            Column("Fewer leave at", D.FLOW),
+            Column("More enter at", D.FLOW),
+            Column("Width", D.FLOW),
+            Column("Which is"),
+        ),
         tuple(rows),
-        ("Hand over by per cent of best-efficiency flow (flow over speed): one flow does not suit all supply states.",),
-    )  # fmt: skip
+        (
+            "Hand over by per cent of best-efficiency flow (flow over speed): one flow does "
+            "not suit all supply states.",
+        ),
+    )
 
 
 def _unit(of: MemoSource) -> str:

@@ -18,7 +18,11 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         made.append(Paragraph(("Standby power: not stated.",)))
     else:
         carries = f" It carries {power.carries}." if power.carries else ""
-        kind = {"none": "none", "automatic": "automatic generator", "manual": "started by hand"}[power.kind]
+        kind = {
+            "none": "none",
+            "automatic": "automatic generator",
+            "manual": "started by hand",
+        }[power.kind]
         made.append(Paragraph((f"Standby power: {kind}.{carries}",)))
     return tuple(made)
 
@@ -30,30 +34,64 @@ def _motors(judged: JudgedSet) -> Table:
         if (slot.pump, slot.curve) in seen:
             continue
         seen.add((slot.pump, slot.curve))
-        slots = ", ".join(judged.slot_title(i) for i, s in enumerate(judged.slots)
-                          if (s.pump, s.curve) == (slot.pump, slot.curve))  # fmt: skip
+        slots = ", ".join(
+            judged.slot_title(i)
+            for i, s in enumerate(judged.slots)
+            if (s.pump, s.curve) == (slot.pump, slot.curve)
+        )
         rows.append(
-            (judged.pump_title(n), slots, slot.largest_shaft_power, slot.motor_power, slot.motor_efficiency,
-             slot.drive_efficiency)
-        )  # fmt: skip
+            (
+                judged.pump_title(n),
+                slots,
+                slot.largest_shaft_power,
+                slot.motor_power,
+                slot.motor_efficiency,
+                slot.drive_efficiency,
+            )
+        )
     return Table(
         "Motors",
-        (Column("Pump"), Column("Slots"), Column("Largest shaft power", D.POWER), Column("Motor", D.POWER),
-         Column("Motor efficiency", D.RATIO), Column("Drive efficiency", D.RATIO)),
+        (
+            Column("Pump"),
+            Column("Slots"),
+            Column("Largest shaft power", D.POWER),
+            Column("Motor", D.POWER),
+            Column("Motor efficiency", D.RATIO),
+            Column("Drive efficiency", D.RATIO),
+        ),
         tuple(rows),
-        ("Largest shaft power: to the last row of the curve at top speed, so that the motor cannot be overloaded.",),
-    )  # fmt: skip
+        (
+            "Largest shaft power: to the last row of the curve at top speed, so that the "
+            "motor cannot be overloaded.",
+        ),
+    )
 
 
 def _power(of: MemoSource) -> Table:
     return Table(
         "Power and specific energy by scenario, in the state shown",
-        (Column("Scenario"), Column("Running"), Column("Efficiency of the pumps", D.RATIO),
-         Column("Shaft power", D.POWER), Column("Wire power", D.POWER), Column("Energy", D.SPECIFIC_ENERGY)),
+        (
+            Column("Scenario"),
+            Column("Running"),
+            Column("Efficiency of the pumps", D.RATIO),
+            Column("Shaft power", D.POWER),
+            Column("Wire power", D.POWER),
+            Column("Energy", D.SPECIFIC_ENERGY),
+        ),
         tuple(
-            (d.own.title, d.own.running, d.own.efficiency, d.own.shaft_power, d.own.wire_power, d.own.energy)
+            (
+                d.own.title,
+                d.own.running,
+                d.own.efficiency,
+                d.own.shaft_power,
+                d.own.wire_power,
+                d.own.energy,
+            )
             for d in of.duties
         ),
-        ("A dash: not computed, because an efficiency is not given or there is no duty. Energy over the year"
-         " is not computed in this version.",),
-    )  # fmt: skip
+        (
+            "A dash: not computed, because an efficiency is not given or there is no duty. "
+            "Energy over the year"
+            " is not computed in this version.",
+        ),
+    )

@@ -18,8 +18,12 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         fields = [words.field_words(of.station, path) for path in finding.mend]
         more = f" and {len(fields) - MOST_FIELDS} more" if len(fields) > MOST_FIELDS else ""
         needed = f" It needs: {'; '.join(fields[:MOST_FIELDS])}{more}." if fields else ""
-        items.append((Strong(f"{words.short(finding).capitalize()}. "),
-                      words.sentence(finding, of.station, of.view) + needed))  # fmt: skip
+        items.append(
+            (
+                Strong(f"{words.short(finding).capitalize()}. "),
+                words.sentence(finding, of.station, of.view) + needed,
+            )
+        )
     if items:
         made.append(Items(tuple(items), numbered=True))
     else:

@@ -12,26 +12,54 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     if of.judged is None:
         return (*made, Paragraph(("Not computed: the proposed set is not solved.",)))
     made.append(
-        Paragraph(("At the highest water temperature, at the pump eye, for the running pump with the least"
-                   " margin. NPSH required is the maker's 3 % head-drop value brought to the running speed.",))
-    )  # fmt: skip
+        Paragraph(
+            (
+                "At the highest water temperature, at the pump eye, for the running pump "
+                "with the least"
+                " margin. NPSH required is the maker's 3 % head-drop value brought to the "
+                "running speed.",
+            )
+        )
+    )
     rows: list[tuple[Cell, ...]] = []
     for duty in of.duties:
         far = worst(duty.states, lambda r: r.npsh_margin)
         own = duty.own
         rows.append(
-            (own.title, own.of.supply, own.npsh_available, own.npsh_required, own.npsh_margin,
-             None if far is None else far.npsh_margin, "–" if far is None else far.of.supply)
-        )  # fmt: skip
+            (
+                own.title,
+                own.of.supply,
+                own.npsh_available,
+                own.npsh_required,
+                own.npsh_margin,
+                None if far is None else far.npsh_margin,
+                "–" if far is None else far.of.supply,
+            )
+        )
     made.append(
         Table(
             "NPSH by scenario",
-            (Column("Scenario"), Column("State shown"), Column("Available", D.HEAD), Column("Required", D.HEAD),
-             Column("Margin", D.HEAD), Column("Least margin", D.HEAD), Column("at supply")),
+            (
+                Column("Scenario"),
+                Column("State shown"),
+                Column("Available", D.HEAD),
+                Column("Required", D.HEAD),
+                Column("Margin", D.HEAD),
+                Column("Least margin", D.HEAD),
+                Column("at supply"),
+            ),
             tuple(rows),
         )
-    )  # fmt: skip
+    )
     if any(row[3] is None for row in rows):
-        made.append(Paragraph(("A dash: not computed, because the pump's rows have no NPSH required, or the"
-                               " altitude or the eye level is not given.",), small=True))  # fmt: skip
+        made.append(
+            Paragraph(
+                (
+                    "A dash: not computed, because the pump's rows have no NPSH required, or "
+                    "the"
+                    " altitude or the eye level is not given.",
+                ),
+                small=True,
+            )
+        )
     return tuple(made)

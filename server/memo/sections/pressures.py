@@ -1,4 +1,4 @@
-"""Pressures at every named point, in each scenario: the state shown and the worst of the three."""
+"""Pressures at every named point: the state shown and the worst of the three."""
 
 from collections.abc import Callable
 
@@ -34,14 +34,20 @@ def _table(of: MemoSource, points: tuple[PointFacts, ...], which: range) -> Tabl
             own = shown(read(duty.own), D.PRESSURE, of.view)
             told = "" if far is None else shown(read(far), D.PRESSURE, of.view)
             same = far is None or far is duty.own or told == own
-            cells.append((own,) if same or far is None else (own, f" ({told} at {far.of.supply})"))
+            cells.append(
+                (own,) if same or far is None else (own, f" ({told} at {far.of.supply})")
+            )
         rows.append((duty.own.title, duty.own.of.supply, *cells))
     return Table(
         "Gauge pressure at the named points",
-        (Column("Scenario"), Column("State shown"), *columns), tuple(rows),
-        ("In brackets the worst of low, normal and high supply where it differs: the least, at the lowest"
-         " customer the highest.",),
-    )  # fmt: skip
+        (Column("Scenario"), Column("State shown"), *columns),
+        tuple(rows),
+        (
+            "In brackets the worst of low, normal and high supply where it differs: the "
+            "least, at the lowest"
+            " customer the highest.",
+        ),
+    )
 
 
 def _reader(point: int) -> Callable[[DutyRow], float | None]:
@@ -51,7 +57,11 @@ def _reader(point: int) -> Callable[[DutyRow], float | None]:
 def _title(point: PointFacts, of: MemoSource) -> str:
     level = point.elevation if point.elevation == point.elevation else None
     at = shown_with_unit(level, D.LEVEL, of.view)
-    return f"{point.title or 'Point'}, {at}" if level is not None else f"{point.title}, level not given"
+    return (
+        f"{point.title or 'Point'}, {at}"
+        if level is not None
+        else f"{point.title}, level not given"
+    )
 
 
 def _unit(of: MemoSource) -> str:

@@ -14,13 +14,29 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         Facts(
             (
                 ("Program", (f"Firmhead {__version__}",)),
-                ("Method", (f"study “{stamp.study}”, version {stamp.study_version}" if stamp else "no set solved",)),
+                (
+                    "Method",
+                    (
+                        f"study “{stamp.study}”, version {stamp.study_version}"
+                        if stamp
+                        else "no set solved",
+                    ),
+                ),
                 ("Document, SHA-256", (of.assessment.document_hash or "not stored",)),
-                ("Issue and date", (", ".join(p for p in (memo.issue, memo.date) if p) or "draft, not issued",)),
-                ("Prepared, checked, approved", (_names(memo.prepared, memo.checked, memo.approved),)),
+                (
+                    "Issue and date",
+                    (
+                        ", ".join(p for p in (memo.issue, memo.date) if p)
+                        or "draft, not issued",
+                    ),
+                ),
+                (
+                    "Prepared, checked, approved",
+                    (_names(memo.prepared, memo.checked, memo.approved),),
+                ),
             )
         ),
-    ]  # fmt: skip
+    ]
     for note in memo.notes:
         if note.text.strip():
             made.append(Heading("Note", 3))

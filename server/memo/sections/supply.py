@@ -32,16 +32,30 @@ def _limits(curve: SupplyCurve) -> Table:
     for i, state in enumerate(SUPPLY_STATES):
         if np.any(np.isfinite(curve.pressure[i])):
             at = float(curve.flow_at_limit[i])
-            rows.append((state, float(curve.pressure[i, 0]), curve.limit, at if np.isfinite(at) else None))
+            rows.append(
+                (
+                    state,
+                    float(curve.pressure[i, 0]),
+                    curve.limit,
+                    at if np.isfinite(at) else None,
+                )
+            )
         else:
             rows.append((f"{state}, not stated", None, curve.limit, None))
     return Table(
         "Draw at which the supplying main reaches its least pressure",
-        (Column("Supply state"), Column("At no draw", D.PRESSURE), Column("Least pressure", D.PRESSURE),
-         Column("Draw there", D.FLOW)),
+        (
+            Column("Supply state"),
+            Column("At no draw", D.PRESSURE),
+            Column("Least pressure", D.PRESSURE),
+            Column("Draw there", D.FLOW),
+        ),
         tuple(rows),
-        ("At the connection, at ground level. A dash: the limit is not reached by the curve, or the state is not stated.",),
-    )  # fmt: skip
+        (
+            "At the connection, at ground level. A dash: the limit is not reached by the "
+            "curve, or the state is not stated.",
+        ),
+    )
 
 
 def _suction(of: MemoSource) -> Table:
@@ -52,14 +66,26 @@ def _suction(of: MemoSource) -> Table:
             worst(duty.states, lambda r: r.suction_pressure),
         )
         rows.append(
-            (duty.own.title, duty.own.of.supply, duty.own.connection_pressure, duty.own.suction_pressure,
-             None if main is None else main.connection_pressure,
-             None if gauge is None else gauge.suction_pressure, "–" if main is None else main.of.supply)
-        )  # fmt: skip
+            (
+                duty.own.title,
+                duty.own.of.supply,
+                duty.own.connection_pressure,
+                duty.own.suction_pressure,
+                None if main is None else main.connection_pressure,
+                None if gauge is None else gauge.suction_pressure,
+                "–" if main is None else main.of.supply,
+            )
+        )
     return Table(
         "Pressure on the suction side by scenario",
-        (Column("Scenario"), Column("State shown"), Column("Supplying main", D.PRESSURE),
-         Column("Suction gauge", D.PRESSURE), Column("Main, worst", D.PRESSURE),
-         Column("Gauge, worst", D.PRESSURE), Column("Worst at")),
+        (
+            Column("Scenario"),
+            Column("State shown"),
+            Column("Supplying main", D.PRESSURE),
+            Column("Suction gauge", D.PRESSURE),
+            Column("Main, worst", D.PRESSURE),
+            Column("Gauge, worst", D.PRESSURE),
+            Column("Worst at"),
+        ),
         tuple(rows),
-    )  # fmt: skip
+    )

@@ -20,9 +20,14 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     count = sum(f.severity is Severity.NOT_CHECKED for f in of.findings)
     if count:
         made.append(
-            Paragraph((f"{count} {'thing is' if count == 1 else 'things are'} not checked; "
-                       "the section “What was not checked” lists them.",), small=True)
-        )  # fmt: skip
+            Paragraph(
+                (
+                    f"{count} {'thing is' if count == 1 else 'things are'} not checked; "
+                    "the section “What was not checked” lists them.",
+                ),
+                small=True,
+            )
+        )
     return tuple(made)
 
 
@@ -34,18 +39,18 @@ def _verdict(of: MemoSource) -> list[Block]:
             Warned(
                 f"{title} does not hold.",
                 tuple(
-                    (Strong(f"{words.severity_words(f.severity)}: ", bad=True),
-                     words.sentence(f, of.station, of.view))
+                    (
+                        Strong(f"{words.severity_words(f.severity)}: ", bad=True),
+                        words.sentence(f, of.station, of.view),
+                    )
                     for f in failing
                 ),
             )
-        ]  # fmt: skip
+        ]
     made: list[Block] = [Paragraph((of.assessment.lead(of.view),), lead=True)]
     missing = of.not_solved
     if missing is not None:
-        items = tuple(
-            (words.field_words(of.station, m.path),) for m in missing.missing
-        )
+        items = tuple((words.field_words(of.station, m.path),) for m in missing.missing)
         made.append(Warned("Not solved: these inputs are missing or not computed.", items))
     return made
 
@@ -60,18 +65,25 @@ def _requirements(of: MemoSource) -> Table | None:
     if not rows:
         return None
     horizons = tuple(
-        Column(" ".join(p for p in (str(h.year) if h.year else "", h.title.lower()) if p) or "horizon")
+        Column(
+            " ".join(p for p in (str(h.year) if h.year else "", h.title.lower()) if p)
+            or "horizon"
+        )
         for h in of.station.horizons
     )
     return Table(
-        "Requirements by horizon" + (", largest unit out" if any(r.grows for r in rows) else ""),
+        "Requirements by horizon"
+        + (", largest unit out" if any(r.grows for r in rows) else ""),
         (Column("Requirement", wide=True), *horizons, Column("Runs out")),
         tuple(
-            (requirement_title(row, of.view), *(_answer(cell, of) for cell in row.cells),
-             runs_out_words(row, of.station))
+            (
+                requirement_title(row, of.view),
+                *(_answer(cell, of) for cell in row.cells),
+                runs_out_words(row, of.station),
+            )
             for row in rows
         ),
-    )  # fmt: skip
+    )
 
 
 def _answer(cell: RequirementCell, of: MemoSource) -> Spans:

@@ -1,4 +1,4 @@
-"""The engineer's answers to findings: an answer stands beside its finding and never hides it."""
+"""The engineer's answers to findings; an answer never hides its finding."""
 
 from server.station.station import Station
 from server.studies.shapes import Finding
