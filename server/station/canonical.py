@@ -38,7 +38,8 @@ def number(value: float) -> str:
         raise ValueError(f"a number in a station must be finite; got {value}")
     if value == 0:
         return "0"
-    if float(value).is_integer() and abs(value) < 1e15:  # an int has no is_integer before Python 3.12
+    # an int has no is_integer before Python 3.12
+    if float(value).is_integer() and abs(value) < 1e15:
         return str(int(value))
     return repr(value)
 

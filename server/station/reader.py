@@ -116,16 +116,16 @@ def _tree(data: bytes) -> Tree:
             "a number of thousands of digits", "finite numbers",
             "The file has a number of thousands of digits; a number must be finite.",
         ) from None  # fmt: skip
+    value = _cleaned(value, 1)
     if not isinstance(value, dict):
         raise _whole(
             "JSON",
             "a station file",
             "The file is JSON, but not a station: it must begin with {.",
         )
-    value = _cleaned(value, 1)
     if pairs.twice:
         raise BadStation(_twice(value, pairs.twice))
-    return value if isinstance(value, dict) else {}
+    return value
 
 
 def _lower(text: str) -> str:
@@ -141,7 +141,7 @@ def _too_deep() -> BadStation:
 
 def _cleaned(value: JsonValue, depth: int) -> JsonValue:
     """Return the JSON with texts in NFC; refuse what is too deep or cannot be written again."""
-    if depth > DEEPEST:
+    if depth > DEEPEST and isinstance(value, dict | list):
         raise _too_deep()
     if isinstance(value, dict):
         for key, member in value.items():

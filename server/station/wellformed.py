@@ -234,9 +234,9 @@ class _Check:
         static, residual = test.static_pressure, test.residual_pressure
         if static is None or residual is None:
             return
-        before, while_open = UNITS.get(static.unit), UNITS.get(residual.unit)
-        if before is None or while_open is None:
+        if not {static.unit, residual.unit} <= set(symbols(Dimension.PRESSURE)):
             return
+        before, while_open = UNITS[static.unit], UNITS[residual.unit]
         if while_open.to_si(residual.value) >= before.to_si(static.value):
             given = with_unit(residual.value, while_open)
             limit = with_unit(static.value, before)

@@ -62,21 +62,22 @@ def test_a_text_is_read_as_its_field_wants_it(demo, path, text, value):
         (
             TOP,
             "20 kPa",
-            "Elevation of Top Row 31: A level is asked for, in m or ft; kPa is a unit of a pressure.",
+            "Elevation of Top Row 31: A level is asked for, in m or ft; kPa is a unit of "
+            "a pressure.",
             "a number in m or ft, -450 m to 9000 m",
         ),
         (
             TOP,
             "1,234",
-            "Elevation of Top Row 31: 1,234 may be 1234 or 1.234; write it without the comma, or "
-            "with a point.",
+            "Elevation of Top Row 31: 1,234 may be 1234 or 1.234; write it without the "
+            "comma, or with a point.",
             "a number in m or ft, -450 m to 9000 m",
         ),
         (
             "/zone/kind",
             "open",
-            "Kind of zone must be closed: no tank on the zone, a tank floats on it or closed with "
-            "a tank for fire; open was given.",
+            "Kind of zone must be closed: no tank on the zone, a tank floats on it or closed "
+            "with a tank for fire; open was given.",
             "closed: no tank on the zone, a tank floats on it or closed with a tank for fire",
         ),
         (
@@ -95,7 +96,8 @@ def test_a_text_is_read_as_its_field_wants_it(demo, path, text, value):
         (
             "/demands/daily_pattern/values",
             "1 x",
-            "Hourly factors: x cannot be read: x is not a number; write a number without a unit.",
+            "Hourly factors: x cannot be read: x is not a number; write a number without "
+            "a unit.",
             "a number without a unit",
         ),
     ],
