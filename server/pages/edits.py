@@ -136,8 +136,7 @@ def _stale(posted: Posted, base: Loaded, newest: Loaded) -> Refusal | None:
         posted.was is None
         or posted.keep
         or posted.op != "set"
-        or posted.source
-        or posted.look == "grid"
+        or posted.look in ("source", "grid")
     ):
         return None
     if not paths.has(base.station, posted.path):
@@ -206,7 +205,7 @@ def _refused(
     node = fields.find(posted.path)
     if posted.look == "grid":
         answer.grid(refusal)
-    elif posted.op == "set" and posted.source is None and node is not None and node.is_field:
+    elif posted.op == "set" and posted.look != "source" and node is not None and node.is_field:
         answer.fields = (posted.path,) if paths.has(sheet.station, posted.path) else ()
     answer.message = "" if answer.fields else refusal.sentence
     return answer.response(status)

@@ -200,7 +200,8 @@ def shown_value(station: Station, path: str, value: JsonValue) -> str:
     if isinstance(value, dict):
         if "rows" in value:
             rows = value["rows"]
-            return f"{len(rows)} rows" if isinstance(rows, list) else "a table"
+            count = len(rows) if isinstance(rows, list) else 0
+            return "1 row" if count == 1 else f"{count} rows"
         if "kind" in value:
             return ", ".join(str(part) for part in (value["kind"], value.get("text")) if part)
         unit = UNITS.get(str(value.get("unit")))
