@@ -16,7 +16,7 @@ from server.station.entry import Quantity
 from server.station.paths import put
 from server.station.reader import read_station, read_stored
 from server.station.station import Station
-from tests.station.conftest import DEMO
+from tests.conftest import DEMO_FILE as DEMO
 from tests.strategies import stations, whole_stations
 
 GOLDEN = Path(__file__).parent / "golden" / "station_v1.json"

@@ -12,7 +12,7 @@ from server.station.faults import BadStation
 from server.station.fields import find
 from server.station.reader import LARGEST_FILE, read_station, read_stored
 from server.station.station import Station
-from tests.station.conftest import DEMO
+from tests.conftest import DEMO_FILE as DEMO
 from tests.strategies import station_trees, whole_stations
 
 HEAD = {"format": "firmhead-station", "version": 1}
