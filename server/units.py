@@ -1,11 +1,11 @@
 """Units: a closed table of symbols per dimension, exact factors, and the two unit views.
 
-Nothing here knows a station. A value keeps the unit it was entered in; `to_si` gives the SI float
-the physics uses, `from_si` brings a result to the unit a person reads.
+Nothing here knows a station. A value keeps the unit it was entered in; `to_si` gives the SI
+float the physics uses, `from_si` brings a result to the unit a person reads.
 """
 
 from dataclasses import dataclass
-from enum import Enum
+from enum import StrEnum
 from fractions import Fraction
 from math import isfinite
 from typing import Literal
@@ -13,8 +13,8 @@ from typing import Literal
 View = Literal["si", "us"]
 
 
-class Dimension(str, Enum):
-    """What a number measures; two dimensions may share SI units and differ in how they are read."""
+class Dimension(StrEnum):
+    """What a number measures; two of them may share SI units and be read differently."""
 
     FLOW = "flow"
     LENGTH = "length"
@@ -39,7 +39,7 @@ class Dimension(str, Enum):
 
 @dataclass(frozen=True, slots=True)
 class Unit:
-    """One unit: its symbol in files, the way it is printed, its words, and its exact way to SI."""
+    """One unit: its symbol in files, how it is printed, its words, its exact way to SI."""
 
     symbol: str
     printed: str
@@ -107,13 +107,17 @@ _ALL = (
     Unit("%", "%", "per cent", Fraction(1, 100)),
     Unit("1", "", "as a number", Fraction(1)),
     Unit("kWh/m3", "kWh/m³", "kilowatt hours per cubic metre", Fraction(3_600_000)),
-    Unit("kWh/kgal_us", "kWh/kgal", "kilowatt hours per thousand US gallons",
-         3_600_000 / (1000 * US_GALLON)),
+    Unit(
+        "kWh/kgal_us",
+        "kWh/kgal",
+        "kilowatt hours per thousand US gallons",
+        3_600_000 / (1000 * US_GALLON),
+    ),
     Unit("kg/m3", "kg/m³", "kilograms per cubic metre", Fraction(1)),
     Unit("m2/s", "m²/s", "square metres per second", Fraction(1)),
     Unit("m2", "m²", "square metres", Fraction(1)),
     Unit("ft2", "ft²", "square feet", FOOT**2),
-)  # fmt: skip
+)
 UNITS: dict[str, Unit] = {unit.symbol: unit for unit in _ALL}
 
 # per dimension: symbols allowed, SI view, US view, decimals in each view
@@ -121,7 +125,11 @@ _LENGTHS = ("m", "ft", "mm", "in", "km")
 _TABLE: dict[Dimension, tuple[tuple[str, ...], str, str, int, int]] = {
     Dimension.FLOW: (
         ("L/s", "m3/h", "m3/d", "ML/d", "m3/s", "gpm_us", "gpm_imp", "mgd_us", "ft3/s"),
-        "L/s", "gpm_us", 1, 0),
+        "L/s",
+        "gpm_us",
+        1,
+        0,
+    ),
     Dimension.LENGTH: (_LENGTHS, "m", "ft", 0, 0),
     Dimension.LEVEL: (("m", "ft"), "m", "ft", 2, 2),
     Dimension.HEAD: (("m", "ft"), "m", "ft", 1, 1),
@@ -140,7 +148,7 @@ _TABLE: dict[Dimension, tuple[tuple[str, ...], str, str, int, int]] = {
     Dimension.DENSITY: (("kg/m3",), "kg/m3", "kg/m3", 1, 1),
     Dimension.VISCOSITY: (("m2/s",), "m2/s", "m2/s", 9, 9),
     Dimension.AREA: (("m2", "ft2"), "m2", "ft2", 1, 0),
-}  # fmt: skip
+}
 
 
 def symbols(dimension: Dimension) -> tuple[str, ...]:
@@ -179,7 +187,9 @@ def from_si(value: float, symbol: str) -> float:
     return UNITS[symbol].from_si(value)
 
 
-def shown(value: float | None, dimension: Dimension, view: View, decimals: int | None = None) -> str:
+def shown(
+    value: float | None, dimension: Dimension, view: View, decimals: int | None = None
+) -> str:
     """Return the SI `value` as a person reads it, without its unit; an en dash for None."""
     if value is None or value != value:
         return "–"

@@ -1,1 +1,1 @@
-"""The document as entered: models, paths, canonical bytes, edits. Knows units, nothing above."""
+"""The document as entered: models, paths, canonical bytes, edits; knows units, no more."""

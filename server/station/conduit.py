@@ -11,11 +11,19 @@ class FittingLoss(Record):
 
     by: Annotated[
         Literal["k", "kv", "cv", "equivalent_length", "loss_at_flow"],
-        Entry("Loss given by", "main-and-zone", "",
-              choices=(("k", "K"), ("kv", "Kv"), ("cv", "Cv"),
-                       ("equivalent_length", "equivalent length"),
-                       ("loss_at_flow", "a loss at a flow"))),
-    ] = "k"  # fmt: skip
+        Entry(
+            "Loss given by",
+            "main-and-zone",
+            "",
+            choices=(
+                ("k", "K"),
+                ("kv", "Kv"),
+                ("cv", "Cv"),
+                ("equivalent_length", "equivalent length"),
+                ("loss_at_flow", "a loss at a flow"),
+            ),
+        ),
+    ] = "k"
     value: Annotated[
         float | None, Entry("K, Kv or Cv", "main-and-zone", "", D.NUMBER, 0, 1e6)
     ] = None
@@ -42,26 +50,62 @@ class Roughness(Record):
 
     law: Annotated[
         Literal["colebrook", "hazen_williams"],
-        Entry("Friction law", "main-and-zone", "",
-              choices=(("colebrook", "Darcy-Weisbach, Colebrook-White"),
-                       ("hazen_williams", "Hazen-Williams"))),
-    ] = "colebrook"  # fmt: skip
+        Entry(
+            "Friction law",
+            "main-and-zone",
+            "",
+            choices=(
+                ("colebrook", "Darcy-Weisbach, Colebrook-White"),
+                ("hazen_williams", "Hazen-Williams"),
+            ),
+        ),
+    ] = "colebrook"
     new: Annotated[
         Quantity | None,
-        Entry("Roughness, new", "main-and-zone", "Lined iron about 0.1 mm (common practice).",
-              D.ROUGHNESS, 0, 0.02),
-    ] = None  # fmt: skip
+        Entry(
+            "Roughness, new",
+            "main-and-zone",
+            "Lined iron about 0.1 mm (common practice).",
+            D.ROUGHNESS,
+            0,
+            0.02,
+        ),
+    ] = None
     aged: Annotated[
         Quantity | None,
-        Entry("Roughness, aged", "main-and-zone", "At the design year; the larger decides peak hour.",
-              D.ROUGHNESS, 0, 0.02),
-    ] = None  # fmt: skip
+        Entry(
+            "Roughness, aged",
+            "main-and-zone",
+            "At the design year; the larger decides peak hour.",
+            D.ROUGHNESS,
+            0,
+            0.02,
+        ),
+    ] = None
     coefficient_new: Annotated[
-        float | None, Entry("C, new", "main-and-zone", "Hazen-Williams coefficient.", D.NUMBER, 20, 180, decimals=0)
-    ] = None  # fmt: skip
+        float | None,
+        Entry(
+            "C, new",
+            "main-and-zone",
+            "Hazen-Williams coefficient.",
+            D.NUMBER,
+            20,
+            180,
+            decimals=0,
+        ),
+    ] = None
     coefficient_aged: Annotated[
-        float | None, Entry("C, aged", "main-and-zone", "Hazen-Williams coefficient.", D.NUMBER, 20, 180, decimals=0)
-    ] = None  # fmt: skip
+        float | None,
+        Entry(
+            "C, aged",
+            "main-and-zone",
+            "Hazen-Williams coefficient.",
+            D.NUMBER,
+            20,
+            180,
+            decimals=0,
+        ),
+    ] = None
 
 
 class Reach(Record):
@@ -74,25 +118,54 @@ class Reach(Record):
     ] = None
     bore: Annotated[
         Quantity | None,
-        Entry("Bore", "main-and-zone", "Inside diameter, not the nominal size.", D.BORE, 0, 5, above=True),
-    ] = None  # fmt: skip
+        Entry(
+            "Bore",
+            "main-and-zone",
+            "Inside diameter, not the nominal size.",
+            D.BORE,
+            0,
+            5,
+            above=True,
+        ),
+    ] = None
     barrels: Annotated[int, Entry("Equal barrels", "main-and-zone", "", D.NUMBER, 1, 8)] = 1
     material: Annotated[str, Entry("Material", "main-and-zone")] = ""
     roughness: Annotated[Roughness, Part("Wall", "main-and-zone")] = Roughness()
     k: Annotated[
         float | None,
-        Entry("Sum of K", "main-and-zone", "All fittings of the reach not listed singly.", D.NUMBER, 0, 1e4),
-    ] = None  # fmt: skip
+        Entry(
+            "Sum of K",
+            "main-and-zone",
+            "All fittings of the reach not listed singly.",
+            D.NUMBER,
+            0,
+            1e4,
+        ),
+    ] = None
     fittings: Annotated[tuple[Fitting, ...], Part("Fittings", "main-and-zone", "Fitting")] = ()
     rating: Annotated[
         Quantity | None,
-        Entry("Pressure rating", "main-and-zone", "Gauge; no surge allowance inside.", D.PRESSURE, 0, 1e7,
-              above=True),
-    ] = None  # fmt: skip
+        Entry(
+            "Pressure rating",
+            "main-and-zone",
+            "Gauge; no surge allowance inside.",
+            D.PRESSURE,
+            0,
+            1e7,
+            above=True,
+        ),
+    ] = None
     end_level: Annotated[
         Quantity | None,
-        Entry("Pipe level at its end", "main-and-zone", "For the long section.", D.LEVEL, -450, 9000),
-    ] = None  # fmt: skip
+        Entry(
+            "Pipe level at its end",
+            "main-and-zone",
+            "For the long section.",
+            D.LEVEL,
+            -450,
+            9000,
+        ),
+    ] = None
 
 
 class Conduit(Record):
@@ -108,8 +181,16 @@ class Branch(Record):
         Quantity | None, Entry("Bore", "sets", "Inside diameter.", D.BORE, 0, 3, above=True)
     ] = None
     k: Annotated[
-        float | None, Entry("Sum of K", "sets", "On this bore; friction of short pipes included.", D.NUMBER, 0, 1e4)
-    ] = None  # fmt: skip
+        float | None,
+        Entry(
+            "Sum of K",
+            "sets",
+            "On this bore; friction of short pipes included.",
+            D.NUMBER,
+            0,
+            1e4,
+        ),
+    ] = None
 
 
 class DischargeBranch(Branch):
@@ -117,19 +198,27 @@ class DischargeBranch(Branch):
 
     full_open_velocity: Annotated[
         Quantity | None,
-        Entry("Check valve fully open above", "sets", "Assumed 1.5 m/s if left empty (common practice).",
-              D.SPEED, 0, 10),
-    ] = None  # fmt: skip
+        Entry(
+            "Check valve fully open above",
+            "sets",
+            "Assumed 1.5 m/s if left empty (common practice).",
+            D.SPEED,
+            0,
+            10,
+        ),
+    ] = None
     cracking_head: Annotated[
         Quantity | None,
         Entry("Check valve cracking head", "sets", "0 if left empty.", D.HEAD, 0, 20),
-    ] = None  # fmt: skip
+    ] = None
 
 
 class Leg(Record):
-    """A kind of leg: suction branch and discharge branch round a pump; slots name the leg they use."""
+    """A kind of leg: the branches before and after a pump; slots name the leg they use."""
 
     id: str
     title: Annotated[str, Entry("Leg", "sets")] = ""
     suction_branch: Annotated[Branch, Part("Suction branch", "sets")] = Branch()
-    discharge_branch: Annotated[DischargeBranch, Part("Discharge branch", "sets")] = DischargeBranch()
+    discharge_branch: Annotated[DischargeBranch, Part("Discharge branch", "sets")] = (
+        DischargeBranch()
+    )

@@ -17,7 +17,8 @@ class Demand(Record):
     maximum_day: Annotated[Quantity | None, _flow("Maximum day")] = None
     peak_hour: Annotated[Quantity | None, _flow("Peak hour", "In the year's worst day.")] = None
     minimum_night: Annotated[
-        Quantity | None, _flow("Minimum night", "Legitimate use plus leakage at night pressure; never zero.")
+        Quantity | None,
+        _flow("Minimum night", "Legitimate use plus leakage at night pressure; never zero."),
     ] = None
 
 
@@ -27,18 +28,30 @@ class Horizon(Record):
     id: str
     title: Annotated[str, Entry("Horizon", "demand", "Opening, design or a year between.")] = ""
     year: Annotated[int | None, Entry("Year", "demand", "", low=1950, high=2200)] = None
-    people: Annotated[int | None, Entry("People served", "demand", "", low=0, high=10_000_000)] = None
+    people: Annotated[
+        int | None, Entry("People served", "demand", "", low=0, high=10_000_000)
+    ] = None
     demand: Annotated[Demand, Part("Demand", "demand")] = Demand()
     pipes: Annotated[
         Literal["new", "aged"] | None,
-        Entry("Pipes in that year", "demand", "New at opening, aged at the design year if left empty.",
-              choices=(("new", "new"), ("aged", "aged"))),
-    ] = None  # fmt: skip
+        Entry(
+            "Pipes in that year",
+            "demand",
+            "New at opening, aged at the design year if left empty.",
+            choices=(("new", "new"), ("aged", "aged")),
+        ),
+    ] = None
     low_state: Annotated[
         Quantity | None,
-        Entry("Low state of the supply in that year", "demand", "The supply's own low state if left empty.",
-              D.PRESSURE, -2e6, 2e6),
-    ] = None  # fmt: skip
+        Entry(
+            "Low state of the supply in that year",
+            "demand",
+            "The supply's own low state if left empty.",
+            D.PRESSURE,
+            -2e6,
+            2e6,
+        ),
+    ] = None
 
 
 class Fire(Record):
@@ -47,25 +60,38 @@ class Fire(Record):
     id: str
     title: Annotated[str, Entry("Fire", "demand")] = ""
     point: Annotated[
-        str | None, Entry("Hydrant", "demand", "A hydrant of sheet 3.", refers_to="/zone/points")
+        str | None,
+        Entry("Hydrant", "demand", "A hydrant of sheet 3.", refers_to="/zone/points"),
     ] = None
     flow: Annotated[
-        Quantity | None, Entry("Fire flow", "demand", "By the adopted fire code.", D.FLOW, 0, 5, above=True)
+        Quantity | None,
+        Entry("Fire flow", "demand", "By the adopted fire code.", D.FLOW, 0, 5, above=True),
     ] = None
     duration: Annotated[
         Quantity | None, Entry("Duration", "demand", "", D.TIME, 0, 86400, above=True)
     ] = None
     beside: Annotated[
         Literal["average_day", "maximum_day", "peak_hour"],
-        Entry("Beside the demand of", "demand", "Usually the maximum day.",
-              choices=(("average_day", "average day"), ("maximum_day", "maximum day"),
-                       ("peak_hour", "peak hour"))),
-    ] = "maximum_day"  # fmt: skip
+        Entry(
+            "Beside the demand of",
+            "demand",
+            "Usually the maximum day.",
+            choices=(
+                ("average_day", "average day"),
+                ("maximum_day", "maximum day"),
+                ("peak_hour", "peak hour"),
+            ),
+        ),
+    ] = "maximum_day"
     carried_by: Annotated[
         Literal["pumps", "bypass", "storage"],
-        Entry("Carried by", "demand", "A recorded decision.",
-              choices=(("pumps", "the pumps"), ("bypass", "the bypass"), ("storage", "storage"))),
-    ] = "pumps"  # fmt: skip
+        Entry(
+            "Carried by",
+            "demand",
+            "A recorded decision.",
+            choices=(("pumps", "the pumps"), ("bypass", "the bypass"), ("storage", "storage")),
+        ),
+    ] = "pumps"
 
 
 class Scenario(Record):
@@ -79,26 +105,42 @@ class Scenario(Record):
     horizon: Annotated[str | None, Entry("Horizon", "demand", refers_to="/horizons")] = None
     demand: Annotated[
         Literal["average_day", "maximum_day", "peak_hour", "minimum_night", "none"] | None,
-        Entry("Demand", "demand", "",
-              choices=(("minimum_night", "minimum night"), ("average_day", "average day"),
-                       ("maximum_day", "maximum day"), ("peak_hour", "peak hour"),
-                       ("none", "none (shut-off)"))),
-    ] = None  # fmt: skip
+        Entry(
+            "Demand",
+            "demand",
+            "",
+            choices=(
+                ("minimum_night", "minimum night"),
+                ("average_day", "average day"),
+                ("maximum_day", "maximum day"),
+                ("peak_hour", "peak hour"),
+                ("none", "none (shut-off)"),
+            ),
+        ),
+    ] = None
     fire: Annotated[str | None, Entry("Fire", "demand", refers_to="/fires")] = None
     supply: Annotated[
         Literal["low", "normal", "high"],
-        Entry("Supply state shown", "demand", "All three are solved; the row shows this one.",
-              choices=(("low", "low"), ("normal", "normal"), ("high", "high"))),
-    ] = "normal"  # fmt: skip
+        Entry(
+            "Supply state shown",
+            "demand",
+            "All three are solved; the row shows this one.",
+            choices=(("low", "low"), ("normal", "normal"), ("high", "high")),
+        ),
+    ] = "normal"
     pipes: Annotated[
         Literal["new", "aged"],
         Entry("Pipes", "demand", "", choices=(("new", "new"), ("aged", "aged"))),
     ] = "aged"
     out: Annotated[
         Literal["none", "largest"],
-        Entry("Unit out", "demand", "The largest unit counts as missing.",
-              choices=(("none", "none"), ("largest", "the largest unit"))),
-    ] = "none"  # fmt: skip
+        Entry(
+            "Unit out",
+            "demand",
+            "The largest unit counts as missing.",
+            choices=(("none", "none"), ("largest", "the largest unit")),
+        ),
+    ] = "none"
 
 
 Pattern = tuple[float, ...]
@@ -117,5 +159,6 @@ class Demands(Record):
 
     daily_pattern: Annotated[DailyPattern, Part("Daily pattern", "demand")] = DailyPattern()
     basis: Annotated[
-        str, Entry("Basis of demand", "demand", "Method, factors and source, in words.", long=True)
+        str,
+        Entry("Basis of demand", "demand", "Method, factors and source, in words.", long=True),
     ] = ""

@@ -8,9 +8,17 @@ from pydantic import BaseModel, ConfigDict
 from server.units import Dimension
 
 Sheet = Literal[
-    "summary", "supply", "main-and-zone", "demand", "pumps", "sets", "duty", "criteria", "memo",
+    "summary",
+    "supply",
+    "main-and-zone",
+    "demand",
+    "pumps",
+    "sets",
+    "duty",
+    "criteria",
+    "memo",
     "history",
-]  # fmt: skip
+]
 Choices = tuple[tuple[str, str], ...]
 
 
@@ -18,8 +26,8 @@ Choices = tuple[tuple[str, str], ...]
 class Entry:
     """The one place where a field's label, unit, range and sheet are written.
 
-    `low` and `high` are in SI and belong to the range unless `above` is true (then `low` itself is
-    refused). `refers_to` is the path of the list whose ids the field may hold.
+    `low` and `high` are in SI and belong to the range unless `above` is true (then `low`
+    itself is refused). `refers_to` is the path of the list whose ids the field may hold.
     """
 
     title: str

@@ -22,7 +22,8 @@ class Identity(Record):
     place: Annotated[str, Entry("Place", "summary")] = ""
     client: Annotated[str, Entry("Water utility", "summary")] = ""
     purpose: Annotated[
-        str, Entry("Purpose", "summary", "What the station is for, in a few sentences.", long=True)
+        str,
+        Entry("Purpose", "summary", "What the station is for, in a few sentences.", long=True),
     ] = ""
 
 
@@ -47,7 +48,8 @@ class CriteriaRow(Record):
         Quantity | None, Entry("Limit", "criteria", "The profile's if left empty.")
     ] = None
     source: Annotated[
-        Source | None, Entry("Source of the limit", "criteria", "Code, standard or office rule.")
+        Source | None,
+        Entry("Source of the limit", "criteria", "Code, standard or office rule."),
     ] = None
     reason: Annotated[
         str, Entry("Reason for the departure", "criteria", "Printed in the memo.", long=True)
@@ -59,9 +61,13 @@ class Criteria(Record):
 
     profile: Annotated[
         Literal["si_municipal", "us_municipal"],
-        Entry("Profile of criteria", "criteria", "",
-              choices=(("si_municipal", "SI, municipal"), ("us_municipal", "US, municipal"))),
-    ] = "si_municipal"  # fmt: skip
+        Entry(
+            "Profile of criteria",
+            "criteria",
+            "",
+            choices=(("si_municipal", "SI, municipal"), ("us_municipal", "US, municipal")),
+        ),
+    ] = "si_municipal"
     rows: Annotated[tuple[CriteriaRow, ...], Part("Criteria", "criteria", "Criterion")] = ()
 
 
@@ -112,8 +118,11 @@ class Station(Record):
     pumps: Annotated[tuple[Pump, ...], Part("Pumps", "pumps", "Pump")] = ()
     sets: Annotated[tuple[PumpSet, ...], Part("Sets", "sets", "Set")] = ()
     proposed_set: Annotated[
-        str | None, Entry("Proposed set", "sets", "The set that the memo proposes.", refers_to="/sets")
+        str | None,
+        Entry("Proposed set", "sets", "The set that the memo proposes.", refers_to="/sets"),
     ] = None
     criteria: Annotated[Criteria, Part("Criteria", "criteria")] = Criteria()
-    answers: Annotated[tuple[Answer, ...], Part("Answers to findings", "summary", "Answer")] = ()
+    answers: Annotated[
+        tuple[Answer, ...], Part("Answers to findings", "summary", "Answer")
+    ] = ()
     memo: Annotated[Memo, Part("Memo", "memo")] = Memo()

@@ -1,7 +1,7 @@
 """Severities, cases, findings and the stamp that stands in front of every result."""
 
 from dataclasses import dataclass
-from enum import Enum
+from enum import StrEnum
 from typing import Literal
 
 from server.units import Dimension
@@ -12,7 +12,7 @@ PipeAge = Literal["new", "aged"]
 Path = str  # a field's or item's address in the document, "/zone/points/pt-c6n2vh/elevation"
 
 
-class Severity(str, Enum):
+class Severity(StrEnum):
     """How a finding weighs, worst first."""
 
     STOP = "stop"
@@ -25,7 +25,7 @@ class Severity(str, Enum):
 SEVERITY_ORDER: tuple[Severity, ...] = tuple(Severity)
 
 
-class Verdict(str, Enum):
+class Verdict(StrEnum):
     """The answer to one requirement."""
 
     MEETS = "meets"
@@ -35,7 +35,7 @@ class Verdict(str, Enum):
     NOT_APPLICABLE = "not_applicable"
 
 
-class Region(str, Enum):
+class Region(StrEnum):
     """Where a pump stands against its preferred operating region."""
 
     INSIDE = "inside"
@@ -80,7 +80,9 @@ class Finding:
     provided: Amount | None = None
     required: Amount | None = None
     others: tuple[Amount, ...] = ()
-    names: tuple[tuple[str, str], ...] = ()  # words the sentence needs, as ("point", "Top Row 31")
+    names: tuple[
+        tuple[str, str], ...
+    ] = ()  # words the sentence needs, as ("point", "Top Row 31")
     basis: str = "common_practice"
     mend: tuple[Path, ...] = ()
     because: str | None = None
