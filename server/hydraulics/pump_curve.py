@@ -10,6 +10,7 @@ from server.hydraulics.best_efficiency import BestEfficiencyPoint, efficiency_cu
 from server.hydraulics.errors import CurveRefused
 from server.hydraulics.piecewise_cubic import PiecewiseCubic, shape_preserving
 from server.hydraulics.pump_rows import Column, PumpRows, pump_rows
+from server.hydraulics.smoothed_head import Smoothing
 from server.hydraulics.specific_speed import specific_speed
 from server.hydraulics.water import GRAVITY
 
@@ -42,6 +43,8 @@ class PumpCurve:
         Stated by the maker, else fitted; None: unknown.
     fitted_best : BestEfficiencyPoint or None
         Top of the efficiency curve, kept for comparison.
+    smoothing : Smoothing or None
+        How the head is drawn where it is smoothed; None: through the rows.
     """
 
     rows: PumpRows
@@ -55,6 +58,12 @@ class PumpCurve:
     shutoff_power: float | None
     best: BestEfficiencyPoint | None
     fitted_best: BestEfficiencyPoint | None
+    smoothing: Smoothing | None = None
+
+    @property
+    def heads(self) -> FloatArray:
+        """Heads of the curve at the flows of the rows [m]."""
+        return self.rows.head if self.smoothing is None else self.smoothing.fitted
 
     @property
     def first_flow(self) -> float:
@@ -69,27 +78,29 @@ class PumpCurve:
     @property
     def last_head(self) -> float:
         """Head of the last row [m]."""
-        return float(self.rows.head[-1])
+        return float(self.heads[-1])
 
     @property
     def shutoff_head(self) -> float | None:
         """Head at zero flow; None when the first row is above zero flow [m]."""
-        return float(self.rows.head[0]) if self.rows.flow[0] == 0 else None
+        return float(self.heads[0]) if self.rows.flow[0] == 0 else None
 
     @property
     def peak_head(self) -> float:
         """Highest head of the curve [m]."""
-        return float(self.rows.head.max())
+        return (
+            float(self.rows.head.max()) if self.smoothing is None else self.smoothing.peak_head
+        )
 
     @property
     def falls_throughout(self) -> bool:
         """Whether head falls from every row to the next: asked of pumps in parallel."""
-        return bool(np.all(np.diff(self.rows.head) < 0))
+        return bool(np.all(np.diff(self.heads) < 0))
 
     @property
     def hump(self) -> float:
         """Height of the peak over the first row, zero when the first row is the highest [m]."""
-        return self.peak_head - float(self.rows.head[0])
+        return self.peak_head - float(self.heads[0])
 
     @property
     def rise_to_shutoff(self) -> float | None:
