@@ -134,7 +134,7 @@ class _Writer:
         notes = "".join(f'<p class="small soft">{escape(note)}</p>' for note in table.notes)
         # a table of few rows stays on one page; a long one breaks between rows and repeats
         # its head
-        css = "keep" if len(table.rows) <= 14 else "long"
+        css = "keep" if len(table.rows) <= 12 and table.kind != "inputs" else "long"
         css += f" {table.kind}" if table.kind else ""
         return (
             f'<div class="table {css}"><table><caption>{number}{escape(table.caption)}'

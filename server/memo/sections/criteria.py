@@ -11,9 +11,13 @@ from server.studies.shapes import Amount, Verdict
 def blocks(of: MemoSource) -> tuple[Block, ...]:
     """Return the section."""
     made: list[Block] = [Heading("Criteria and departures")]
-    judged = tuple(
-        r for r in of.assessment.compliance if r.verdict is not Verdict.NOT_APPLICABLE
+    # without a solved set nearly every row would only say so
+    left_out = {Verdict.NOT_APPLICABLE} | (
+        {Verdict.NOT_CHECKED} if of.judged is None else set()
     )
+    judged = tuple(r for r in of.assessment.compliance if r.verdict not in left_out)
+    if not judged:
+        made.append(Paragraph(("No criterion is judged: the proposed set is not solved.",)))
     if judged:
         made.append(
             Table(

@@ -12,6 +12,8 @@ from server.studies.findings.requirement_words import (
 from server.studies.findings.requirements import RequirementCell
 from server.studies.shapes import Severity, Verdict
 
+MOST_MISSING = 15  # listed on the first page; the section on what was not checked has all
+
 
 def blocks(of: MemoSource) -> tuple[Block, ...]:
     """Return the section."""
@@ -48,10 +50,20 @@ def _verdict(of: MemoSource) -> list[Block]:
             )
         ]
     made: list[Block] = [Paragraph((of.assessment.lead(of.view),), lead=True)]
-    missing = of.not_solved
-    if missing is not None:
-        items = tuple((words.field_words(of.station, m.path),) for m in missing.missing)
-        made.append(Warned("Not solved: these inputs are missing or not computed.", items))
+    absent = of.not_solved
+    if absent is not None:
+        fields = tuple(missing.path for missing in absent.missing)
+    elif of.judged is None:
+        fields = of.assessment.missing
+    else:
+        return made
+    names = [(words.field_words(of.station, path),) for path in fields[:MOST_MISSING]]
+    if len(fields) > MOST_MISSING:
+        names.append((f"and {len(fields) - MOST_MISSING} more",))
+    if names:
+        made.append(
+            Warned("Not solved: these inputs are missing or not computed.", tuple(names))
+        )
     return made
 
 
