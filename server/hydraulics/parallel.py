@@ -7,6 +7,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from server.hydraulics.arrays import BoolArray, FloatArray, IndexArray, StateArray
+from server.hydraulics.balance import energy_residual, residuals
 from server.hydraulics.errors import SolutionNotFound
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
@@ -47,8 +48,8 @@ class ParallelResult:
     last_row_flow: FloatArray  # (C,) [m3/s]
     last_row_surplus: FloatArray  # (C,) head of the set there over what the system asks [m]
     static_shortfall: FloatArray  # (C,) head missing at zero flow, zero unless BELOW_STATIC [m]
-    energy_residual: FloatArray  # (C,) [m]
-    mass_residual: FloatArray  # (C,) [m3/s]
+    energy_residual: FloatArray  # (C,) largest gap of a leg's head to the manifold's [m]
+    mass_residual: FloatArray  # (C,) gap of the legs' flows at that head to the flow [m3/s]
 
 
 def leg_flows(
@@ -155,11 +156,12 @@ def solve_parallel(
     _polish(flow, flows.state, legs, system, speed, every)
     total = flow.sum(axis=1)
     manifold = system.head(total, case=every)
-    energy = _energy_residual(flow, flows.state, manifold, legs, speed)
+    energy, mass = residuals(flow, flows.state, manifold, legs, speed)
 
     state = _set_state(flows.state, running, reaches)
     unique = ~np.any(running & ~np.array([leg.shares_uniquely for leg in legs]), axis=1)
-    missed = (state != State.END_OF_CURVE) & (energy > HEAD_TOLERANCE)
+    missed = (energy > HEAD_TOLERANCE) | (mass > FLOW_TOLERANCE * np.maximum(1.0, total))
+    missed &= state != State.END_OF_CURVE
     if np.any(missed & unique):
         raise SolutionNotFound(
             "legs in parallel", int(np.sum(missed & unique)), float(energy[missed].max())
@@ -179,7 +181,7 @@ def solve_parallel(
         last_row_surplus=last_surplus,
         static_shortfall=np.where(reaches | ~running.any(axis=1), 0.0, static - peaks),
         energy_residual=np.where(masked, np.nan, energy),
-        mass_residual=np.where(masked, np.nan, np.abs(total - flow.sum(axis=1))),
+        mass_residual=np.where(masked, np.nan, mass),
     )
 
 
@@ -257,7 +259,7 @@ def _polish(
     """
     for _ in range(3):
         head = system.head(flow.sum(axis=1), case=every)
-        residual = _energy_residual(flow, leg_state, head, legs, speed)
+        residual = energy_residual(flow, leg_state, head, legs, speed)
         rough = (residual > 1e-3 * HEAD_TOLERANCE) & (residual < _JUMP)
         rough &= ~np.any(leg_state == State.END_OF_CURVE, axis=1)
         if not rough.any():
@@ -274,23 +276,6 @@ def _polish(
         change = (miss / slope).sum(axis=1) / (1.0 - system_slope * (1.0 / slope).sum(axis=1))
         moved = q + (miss + (system_slope * change)[:, None]) / slope
         flow[rough] = np.where(moving, np.maximum(moved, 0.0), q)
-
-
-def _energy_residual(
-    flow: FloatArray,
-    leg_state: StateArray,
-    manifold_head: FloatArray,
-    legs: Sequence[LegCurve],
-    speed: FloatArray,
-) -> FloatArray:
-    """Return the largest gap between a running leg's head and the manifold head."""
-    worst = np.zeros(manifold_head.shape)
-    for n, leg in enumerate(legs):
-        s = speed[:, n]
-        x = np.clip(flow[:, n] / s, leg.first_flow, leg.last_flow)
-        gap = np.abs(s * s * leg.head(x) - manifold_head)
-        worst = np.maximum(worst, np.where(leg_state[:, n] == State.SOLVED, gap, 0.0))
-    return worst
 
 
 def _set_state(leg_state: StateArray, running: BoolArray, reaches: BoolArray) -> StateArray:

@@ -58,6 +58,15 @@ class PiecewiseCubic:
         t, (c0, c1, c2, _) = self._piece(np.where(inside, at, self.first))
         return np.where(inside, (3.0 * c0 * t + 2.0 * c1) * t + c2, np.nan)
 
+    def value_and_slope(self, x: ArrayLike) -> tuple[FloatArray, FloatArray]:
+        """Return value and derivative from one look into the rows, nan outside them."""
+        at = np.asarray(x, dtype=np.float64)
+        inside = self.covers(at)
+        t, (c0, c1, c2, c3) = self._piece(np.where(inside, at, self.first))
+        value = ((c0 * t + c1) * t + c2) * t + c3
+        slope = (3.0 * c0 * t + 2.0 * c1) * t + c2
+        return np.where(inside, value, np.nan), np.where(inside, slope, np.nan)
+
     def _piece(self, at: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Return the distance into the piece and its coefficients."""
         index = np.searchsorted(self.breaks[1:-1], at, side="right")
