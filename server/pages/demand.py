@@ -25,7 +25,18 @@ HORIZON = (
     "low_state",
 )
 FIRE = ("title", "point", "flow", "duration", "beside", "carried_by")
-SCENARIO = ("title", "on", "horizon", "demand", "fire", "supply", "pipes", "out")
+SCENARIO = (
+    "title",
+    "on",
+    "horizon",
+    "demand",
+    "fire",
+    "supply",
+    "tank_state",
+    "pipes",
+    "barrel_out",
+    "out",
+)
 
 
 @dataclass(frozen=True, slots=True)

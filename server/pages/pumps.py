@@ -24,6 +24,7 @@ PUMP = (
     "allowable_region/low",
     "allowable_region/high",
     "minimum_flow",
+    "least_diameter",
     "npsh_exponent",
     "motor_efficiency",
     "drive_efficiency",

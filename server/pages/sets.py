@@ -23,16 +23,23 @@ LEG = (
     "discharge_branch/full_open_velocity",
     "discharge_branch/cracking_head",
 )
-SLOT = ("title", "role", "pump", "curve", "leg", "drive", "from_horizon")
+SLOT = ("title", "role", "pump", "curve", "diameter", "leg", "drive", "from_horizon")
 STAGE = ("start", "stop")
 SPEEDS = ("lowest_speed", "highest_speed", "running_rule")
-SETTINGS = ("pressure", "point", "flow", "pressure_at_no_flow")
+SETTINGS = (
+    "pressure",
+    "point",
+    "flow",
+    "pressure_at_no_flow",
+    "valve_loss",
+    "valve_loss_at",
+)
 # what each kind of control holds; the rest is folded away
 BY_CONTROL: dict[str, tuple[str, ...]] = {
     "zone_point_pressure": ("pressure", "point"),
     "discharge_pressure": ("pressure",),
     "flow_compensated": ("pressure", "pressure_at_no_flow", "flow"),
-    "reducing_valve": ("pressure",),
+    "reducing_valve": ("pressure", "point", "valve_loss", "valve_loss_at"),
     "held_flow": ("flow",),
 }
 TRIPS = (
@@ -42,6 +49,8 @@ TRIPS = (
     "low_suction_delay",
     "high_discharge_trip",
     "high_discharge_delay",
+    "low_level_alarm",
+    "high_level_trip",
     "relief_pressure",
 )
 STANDBY = ("kind", "transfer_time", "carries")

@@ -132,6 +132,24 @@ class Scenario(Record):
         Literal["new", "aged"],
         Entry("Pipes", "demand", "", choices=(("new", "new"), ("aged", "aged"))),
     ] = "aged"
+    tank_state: Annotated[
+        Literal["low", "normal", "top"] | None,
+        Entry(
+            "Level of the zone tank",
+            "demand",
+            "Where a tank floats on the zone: normal if left empty; top is hardest to fill.",
+            choices=(("low", "low"), ("normal", "normal"), ("top", "top")),
+        ),
+    ] = None
+    barrel_out: Annotated[
+        str | None,
+        Entry(
+            "One barrel out of",
+            "demand",
+            "A reach of the discharge main with two or more barrels.",
+            refers_to="/discharge_main/reaches",
+        ),
+    ] = None
     out: Annotated[
         Literal["none", "largest"],
         Entry(

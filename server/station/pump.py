@@ -130,6 +130,18 @@ class Pump(Record):
     allowable_region: Annotated[AllowableRegion, Part("Allowable region", "pumps")] = (
         AllowableRegion()
     )
+    least_diameter: Annotated[
+        Quantity | None,
+        Entry(
+            "Least impeller diameter",
+            "pumps",
+            "The maker's; 75 % of the tested one is the least if left empty.",
+            D.BORE,
+            0,
+            3,
+            above=True,
+        ),
+    ] = None
     minimum_flow: Annotated[
         Quantity | None,
         Entry(

@@ -30,6 +30,18 @@ class Slot(Record):
             refers_to="/pumps/*/curves",
         ),
     ] = None
+    diameter: Annotated[
+        Quantity | None,
+        Entry(
+            "Impeller diameter",
+            "sets",
+            "The curve's own if left empty; else trimmed, or read between tested ones.",
+            D.BORE,
+            0,
+            3,
+            above=True,
+        ),
+    ] = None
     leg: Annotated[str | None, Entry("Leg", "sets", refers_to="/legs")] = None
     drive: Annotated[
         Literal["variable", "fixed"],
@@ -108,11 +120,35 @@ class Control(Record):
         str | None, Entry("Held point", "sets", "A point of sheet 3.", refers_to="/zone/points")
     ] = None
     flow: Annotated[
-        Quantity | None, Entry("Held flow", "sets", "", D.FLOW, 0, 10, above=True)
+        Quantity | None,
+        Entry(
+            "Flow",
+            "sets",
+            "The flow that is held; under a set point that rises, the flow it is full at.",
+            D.FLOW,
+            0,
+            10,
+            above=True,
+        ),
     ] = None
     pressure_at_no_flow: Annotated[
         Quantity | None,
         Entry("Set point at no flow", "sets", "Gauge.", D.PRESSURE, 0, 5e6, above=True),
+    ] = None
+    valve_loss: Annotated[
+        Quantity | None,
+        Entry(
+            "Loss of the reducing valve, fully open",
+            "sets",
+            "At the flow beside; it grows with the square of flow.",
+            D.HEAD,
+            0,
+            100,
+        ),
+    ] = None
+    valve_loss_at: Annotated[
+        Quantity | None,
+        Entry("At that flow", "sets", "Flow of that loss.", D.FLOW, 0, 10, above=True),
     ] = None
     lowest_speed: Annotated[
         Quantity | None,
@@ -180,6 +216,21 @@ class Trips(Record):
     ] = None
     high_discharge_delay: Annotated[
         Quantity | None, Entry("High-discharge trip delay", "sets", "", D.TIME, 0, 3600)
+    ] = None
+    low_level_alarm: Annotated[
+        Quantity | None,
+        Entry("Low-level alarm, zone tank", "sets", "None if left empty.", D.LEVEL, -450, 9000),
+    ] = None
+    high_level_trip: Annotated[
+        Quantity | None,
+        Entry(
+            "High-level trip, zone tank",
+            "sets",
+            "It stops the pumps before the tank overflows.",
+            D.LEVEL,
+            -450,
+            9000,
+        ),
     ] = None
     relief_pressure: Annotated[
         Quantity | None,
