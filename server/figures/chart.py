@@ -205,10 +205,10 @@ def round_ticks(low: float, high: float, most: int = 9) -> tuple[float, ...]:
     """
     if not high > low:
         return (low,)
-    step = 10.0 ** np.floor(np.log10((high - low) / most))
-    for factor in (1.0, 2.0, 5.0, 10.0, 20.0):
-        if np.floor(high / (step * factor)) - np.ceil(low / (step * factor)) + 1 <= most:
-            step *= factor
+    base = 10.0 ** np.floor(np.log10((high - low) / most))
+    for factor in (1.0, 2.0, 5.0, 10.0):
+        step = float(base * factor)
+        first, last = int(np.ceil(low / step - 1e-9)), int(np.floor(high / step + 1e-9))
+        if last - first + 1 <= most:
             break
-    first, last = int(np.ceil(low / step - 1e-9)), int(np.floor(high / step + 1e-9))
     return tuple(float(f"{i * step:.10g}") for i in range(first, last + 1))

@@ -23,6 +23,8 @@ from server.figures.names import LETTERS, Name, leader_end, names_of
 from server.figures.svg import Palette, Value, element, points, short, value, words
 from server.units import View, display_unit
 
+HATCH = 9.0  # between the lines of a hatched region, along the flow axis [px]
+
 
 def to_svg(
     chart: Chart,
@@ -53,7 +55,7 @@ def to_svg(
         The element, without a header: it stands in a page or, with one, in a file.
     """
     layout = lay_out(chart, view, width=width, scale=scale)
-    parts = [_definitions(chart, layout, palette)]
+    parts = [_definitions(chart, layout)]
     for index in range(len(chart.panels)):
         parts.append(_panel(chart, index, layout.panels[index], view, palette))
     parts.append(_flow_axis(chart, layout, view, palette))
@@ -70,7 +72,7 @@ def to_svg(
     )
 
 
-def _definitions(chart: Chart, layout: Layout, palette: Palette) -> str:
+def _definitions(chart: Chart, layout: Layout) -> str:
     clips = [
         element(
             "clipPath",
@@ -85,16 +87,7 @@ def _definitions(chart: Chart, layout: Layout, palette: Palette) -> str:
         )
         for index, place in enumerate(layout.panels)
     ]
-    hatch = element(
-        "pattern",
-        element("path", d="M0 0V7", stroke=palette["water"], stroke_width=1, opacity=0.4),
-        id=f"hatch-{chart.key}",
-        width=7,
-        height=7,
-        patternUnits="userSpaceOnUse",
-        patternTransform="rotate(45)",
-    )
-    return element("defs", *clips, hatch)
+    return element("defs", *clips)
 
 
 def _panel(chart: Chart, index: int, place: PanelPlace, view: View, palette: Palette) -> str:
@@ -236,19 +229,53 @@ def _area(
     area: Area, chart: Chart, axis: Axis, place: PanelPlace, view: View, palette: Palette
 ) -> str:
     look = LOOKS[area.role]
-    fill = f"url(#hatch-{chart.key})" if look.hatched else palette[look.colour]
     xs, ys = shown_points(area.x, chart.x, view), shown_points(area.y, axis, view)
-    return "".join(
-        element(
-            "polygon",
-            data_area=area.key,
-            points=points(run),
-            fill=fill,
-            stroke="none",
-            opacity=look.opacity,
+    parts: list[str] = []
+    for number, run in enumerate(_runs(xs, ys, place)):
+        shape = points(run)
+        if not look.hatched:
+            colour = palette[look.colour]
+            parts.append(
+                element(
+                    "polygon",
+                    data_area=area.key,
+                    points=shape,
+                    fill=colour,
+                    stroke="none",
+                    opacity=look.opacity,
+                )
+            )
+            continue
+        # lines inside a clip, not a pattern: printing would turn a pattern into a picture
+        clip = f"hatch-{chart.key}-{area.key}-{number}"
+        parts.append(element("clipPath", element("polygon", points=shape), id=clip))
+        parts.append(element("polygon", data_area=area.key, points=shape, fill="none"))
+        parts.append(
+            element(
+                "path",
+                d=_hatch(run),
+                clip_path=f"url(#{clip})",
+                stroke=palette[look.colour],
+                stroke_width=0.8,
+                opacity=0.45,
+            )
         )
-        for run in _runs(xs, ys, place)
-    )
+    return "".join(parts)
+
+
+def _hatch(run: list[tuple[float, float]]) -> str:
+    """Return lines rising to the right over the box round an outline."""
+    xs, ys = [x for x, _ in run], [y for _, y in run]
+    left, right, top, bottom = min(xs), max(xs), min(ys), max(ys)
+    high = bottom - top
+    # counted from a common origin, so that the lines of neighbouring regions meet
+    first = int((left + top) // HATCH) + 1
+    last = int((right + bottom) // HATCH)
+    lines = []
+    for number in range(first, last + 1):
+        foot = number * HATCH - bottom
+        lines.append(f"M{short(foot)} {short(bottom)}l{short(high)} {short(-high)}")
+    return "".join(lines)
 
 
 def _marker(

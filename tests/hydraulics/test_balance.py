@@ -24,21 +24,21 @@ def at(head):
 
 
 def test_a_flow_that_is_wrong_by_a_step_is_seen_as_that_step():
-    flow, state = at(40.0)
+    flow, state = at(48.0)
     spoilt = flow + [[1e-5, -1e-5]]
-    energy, mass = residuals(spoilt, state, np.array([40.0]), LEGS, SPEED)
+    energy, mass = residuals(spoilt, state, np.array([48.0]), LEGS, SPEED)
 
     assert mass[0] == pytest.approx(2e-5, rel=0.02)  # they do not cancel
     slopes = SPEED[0] * [
         float(k.curve.slope(q)) for k, q in zip(LEGS, (flow / SPEED)[0], strict=True)
     ]
     assert energy[0] == pytest.approx(1e-5 * np.abs(slopes).max(), rel=0.02)
-    assert energy_residual(spoilt, state, np.array([40.0]), LEGS, SPEED)[0] == energy[0]
+    assert energy_residual(spoilt, state, np.array([48.0]), LEGS, SPEED)[0] == energy[0]
 
 
 def test_flows_read_off_the_curves_have_no_residual():
-    flow, state = at(40.0)
-    energy, mass = residuals(flow, state, np.array([40.0]), LEGS, SPEED)
+    flow, state = at(48.0)
+    energy, mass = residuals(flow, state, np.array([48.0]), LEGS, SPEED)
 
     assert energy[0] < 1e-12
     assert mass[0] < 1e-14

@@ -49,7 +49,7 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
             )
         )
     else:
-        made.append(Paragraph(("None: every limit is that of the profile.",)))
+        made.append(Paragraph(("There are none: every limit is that of the profile.",)))
     made.append(
         Paragraph(
             (
