@@ -62,6 +62,7 @@ def cases_of(of: LoweredSet) -> Cases:
                 np.bool_
             ),
             shift=np.concatenate([shifts(of, s.low_shift) for s in of.scenarios]),
+            way=_each(of.scenarios, [s.way for s in of.scenarios]).astype(np.intp),
         ),
         running=tuple(running),
         jockeys=tuple(jockeys),

@@ -40,6 +40,10 @@ class SlotFacts:
     role: str
     pump: str | None
     curve: str | None
+    fixed: bool  # without a drive: at its tested speed
+    diameter: float | None  # of the impeller, where one is stated [m]
+    trim_ratio: float | None  # trimmed over tested diameter; None: not trimmed
+    smoothing_residual: float | None  # [m] of the row furthest from a smoothed curve
     best_efficiency_flow: float | None  # [m3/s] at tested speed; None when unknown
     best_efficiency: float | None
     shutoff_head: float | None  # [m] at tested speed

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike
 
+from server.hydraulics.set_point import compensated_pressure
 from server.studies.lowering.lowered import Floats, LoweredSet
 
 
@@ -20,6 +21,7 @@ class Draw:
     fire_point: ArrayLike  # index into points, -1 none
     aged: ArrayLike  # whether the pipes are aged
     shift: Floats  # of the supply's curve, nan where that state is not stated [Pa]
+    way: ArrayLike = 0  # which of the station's ways: all barrels, or one out
 
     @property
     def flow(self) -> Floats:
@@ -43,23 +45,77 @@ def system_heads(of: LoweredSet, draw: Draw) -> SystemHeads:
 
     In a closed zone the flow is imposed, so all of this is known before any pump is.
     """
-    flow, viscosity = draw.flow, of.water.kinematic_viscosity
+    flow = draw.flow
     supply = of.supply.grade(flow, draw.shift)
-    lost = of.route.reach_losses(flow, draw.aged, viscosity)
+    lost = reach_losses(of, flow, draw.aged, draw.way)
     suction = supply - lost[..., : of.suction_reaches].sum(axis=-1)
     main = lost[..., of.suction_reaches :].sum(axis=-1)
     zone = of.points.loss(draw.domestic, draw.fire, draw.fire_point)
-    held = of.control.pressure / of.water.weight
-    if of.control.point < 0:
-        asked = of.control.discharge_gauge_level + held
-    else:
-        asked = (
-            of.points.elevation[of.control.point] + held + main + zone[..., of.control.point]
-        )
     return SystemHeads(
         supply_grade=supply, suction_grade=suction, main_loss=main, zone_loss=zone,
-        required_head=asked - suction,
+        required_head=_asked(of, draw, main, zone) - suction,
     )  # fmt: skip
+
+
+def reach_losses(of: LoweredSet, flow: Floats, aged: ArrayLike, way: ArrayLike) -> Floats:
+    """Return the head lost in each reach, suction line first, (..., R) [m]."""
+    viscosity = of.water.kinematic_viscosity
+    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
+    lost = of.ways[0].reach_losses(flow, aged, viscosity)
+    for i, line in enumerate(of.ways[1:], start=1):
+        rows = which == i
+        if rows.any():
+            old = np.broadcast_to(np.asarray(aged, dtype=np.bool_), flow.shape)
+            lost[rows] = line.reach_losses(flow[rows], old[rows], viscosity)
+    return lost
+
+
+def reach_velocities(of: LoweredSet, flow: Floats, way: ArrayLike) -> Floats:
+    """Return the velocity in each reach, suction line first, (..., R) [m/s]."""
+    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
+    velocity = of.ways[0].velocities(flow)
+    for i, line in enumerate(of.ways[1:], start=1):
+        rows = which == i
+        if rows.any():
+            velocity[rows] = line.velocities(flow[rows])
+    return velocity
+
+
+def _asked(of: LoweredSet, draw: Draw, main: Floats, zone: Floats) -> Floats:
+    """Return the grade at the discharge manifold that the control, else the zone, asks for.
+
+    Behind a reducing valve where there is one. Fixed speed holds nothing: there it is the
+    grade that the requirements of the points need.
+    """
+    control, points = of.control, of.points
+    if control.kind == "fixed_speed":
+        return main + np.max(_required_grade(of, draw) + zone, axis=-1)
+    held = set_pressure(of, draw.flow) / of.water.weight
+    if control.point < 0:
+        return np.asarray(control.discharge_gauge_level + held)
+    at = control.point
+    return np.asarray(points.elevation[at] + held + main + zone[..., at])
+
+
+def set_pressure(of: LoweredSet, flow: Floats) -> Floats:
+    """Return the set point at a station flow [Pa]; only a flow-compensated one moves."""
+    control = of.control
+    if control.kind != "flow_compensated":
+        return np.full(flow.shape, control.pressure)
+    return compensated_pressure(
+        flow, at_no_flow=control.pressure_at_no_flow, at_full_flow=control.pressure,
+        full_flow=control.flow,
+    )  # fmt: skip
+
+
+def _required_grade(of: LoweredSet, draw: Draw) -> Floats:
+    """Return the grade that each point needs, -inf where it asks for nothing, (..., P) [m]."""
+    points = of.points
+    flowing = np.asarray(draw.fire_point)[..., None] == np.arange(len(points.facts))
+    burning = (np.asarray(draw.fire) > 0)[..., None] | flowing
+    least = np.where(burning, np.where(flowing, points.least_residual, points.least_fire),
+                     points.least_normal)  # fmt: skip
+    return np.asarray(points.elevation + least / of.water.weight)
 
 
 def required_head(of: LoweredSet, flow: Floats, aged: ArrayLike, shift: ArrayLike) -> Floats:

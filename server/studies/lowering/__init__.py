@@ -10,6 +10,7 @@ from server.studies.lowering.control import control as control_of
 from server.studies.lowering.lowered import LoweredSet, Scenario
 from server.studies.lowering.needs import Needs
 from server.studies.lowering.pipes import route
+from server.studies.lowering.tank import zone_tank
 from server.studies.shapes import PipeAge
 
 
@@ -37,10 +38,13 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
     of_water = supply.water(station.site, needs)
     of_supply = supply.supply(station, of_water, needs)
     of_bypass = supply.bypass(station, needs)
-    points = zone.points(station, needs)
-    scenarios = zone.scenarios(station, needs)
+    points = zone.points(station, limits, needs)
+    tank = zone_tank(station, needs)
+    floats = tank is not None and not tank.fire_only
+    barrels_out = zone.barrels_out(station, needs)
+    scenarios = zone.scenarios(station, barrels_out, needs)
     way = route(station, _ages(scenarios), needs)
-    control = control_of(station, pump_set, points.facts, limits, needs)
+    control = control_of(station, pump_set, points.facts, limits, floats, needs)
     units, slots = pumps.units_and_slots(
         station, pump_set, limits, control.highest_speed, of_water.density, needs
     )
@@ -53,6 +57,7 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
         water=of_water,
         supply=of_supply,
         route=way,
+        ways=(way, *(way.with_barrel_out(_place(station, reach)) for reach in barrels_out)),
         suction_reaches=len(station.suction_line.reaches),
         points=points,
         units=units,
@@ -62,8 +67,15 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
         scenarios=scenarios,
         growth=growth,
         bypass=of_bypass,
+        tank=tank,
         needs_missing=_pairs(needs.leaves_out),
     )
+
+
+def _place(station: Station, reach: str) -> int:
+    """Return the place of a reach of the discharge main along suction line and main."""
+    places = [each.id for each in station.discharge_main.reaches]
+    return len(station.suction_line.reaches) + places.index(reach)
 
 
 def _ages(scenarios: Iterable[Scenario]) -> set[PipeAge]:

@@ -1,6 +1,7 @@
 """The station as the studies see it: SI floats, arrays and hydraulics objects, no document."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from typing import Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -16,6 +17,16 @@ from server.studies.shapes import PipeAge, SupplyState
 Floats = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 Indices = NDArray[np.intp]
+SupplyKind = Literal["main", "tank", "grade_line"]
+ControlKind = Literal[
+    "zone_point_pressure",
+    "discharge_pressure",
+    "flow_compensated",
+    "fixed_speed",
+    "reducing_valve",
+    "levels",
+    "held_flow",
+]
 ZONE_EXPONENT = 1.852  # of the flow in zone losses [-]
 
 
@@ -43,12 +54,16 @@ class Water:
 class Supply:
     """The supply with its three states as shifts of one curve; nan for a state not stated."""
 
+    kind: SupplyKind
     source: FlowTestSupply | FixedGradeSupply
     draw_in_test: float  # of the station itself on the test day [m3/s]
     shift: Floats  # (3,) low, normal, high [Pa]
     water: Water
     connection_level: float  # nan when absent [m]
     suction_gauge_level: float  # nan when absent [m]
+    cut_out: float = float("nan")  # shift of a tank's fourth state, where the pumps stop [Pa]
+    outlet_level: float = float("nan")  # of a tank's outlet lip [m]
+    outlet_bore: float = float("nan")  # [m]
 
     def grade(self, draw: ArrayLike, shift: ArrayLike) -> Floats:
         """Return the grade at the connection for a draw and a state's shift."""
@@ -85,9 +100,25 @@ class Line:
         """Return the velocity in each reach, shape (..., R)."""
         return np.concatenate([c.velocities(flow) for c in self.aged or self.new], axis=-1)
 
+    def with_barrel_out(self, reach: int) -> "Line":
+        """Return the line with one barrel of a reach shut; the reach must have two or more."""
+        return replace(
+            self, new=_less_one_barrel(self.new, reach), aged=_less_one_barrel(self.aged, reach)
+        )
+
     def knows(self, age: PipeAge) -> bool:
         """Return whether every reach has a wall at that age."""
         return bool(self.aged if age == "aged" else self.new)
+
+
+def _less_one_barrel(conduits: tuple[Conduit, ...], reach: int) -> tuple[Conduit, ...]:
+    """Return conduits with one barrel of a reach shut, reaches counted through all of them."""
+    changed = []
+    for one in conduits:
+        inside = 0 <= reach < one.reaches
+        changed.append(one.with_barrel_out(reach) if inside else one)
+        reach -= one.reaches
+    return tuple(changed)
 
 
 def _lost(conduits: tuple[Conduit, ...], flow: Floats, viscosity: float) -> Floats:
@@ -104,6 +135,9 @@ class ZonePoints:
     coefficient: Floats  # (P,) c in h = c (Q_domestic + a Q_fire)^1.852
     fire_share: Floats  # (P,) a
     branch_coefficient: Floats  # (P,) of the hydrant's own branch, 0 where there is none
+    least_normal: Floats  # (P,) pressure asked without fire, -inf where none is [Pa]
+    least_fire: Floats  # (P,) during a fire, at a point that is not the hydrant [Pa]
+    least_residual: Floats  # (P,) at the operating hydrant [Pa]
 
     def loss(self, domestic: ArrayLike, fire: ArrayLike, fire_point: ArrayLike) -> Floats:
         """Return the loss from the end of the main to each point, shape (..., P)."""
@@ -116,7 +150,7 @@ class ZonePoints:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Unit:
-    """A pump in its leg; slots with the same pump, curve and leg share one."""
+    """A pump in its leg; slots with the same pump, curve, diameter, leg and drive share one."""
 
     curve: PumpCurve
     leg: LegCurve  # the curve less the loss of both branches
@@ -128,6 +162,7 @@ class Unit:
     full_open_velocity: float  # of the check valve [m/s]
     full_open_assumed: bool
     npsh_exponent: float
+    fixed: bool  # without a drive: it runs at its tested speed
     motor_efficiency: float  # nan when absent
     drive_efficiency: float
 
@@ -144,13 +179,28 @@ class Slot:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Control:
-    """What is held: a pressure at a point of the zone, or at the discharge gauge."""
+    """What is held, where and between which speeds."""
 
+    kind: ControlKind
     point: int  # index into points, -1: the discharge gauge
-    pressure: float  # [Pa]
+    pressure: float  # nan where no pressure is held [Pa]
     discharge_gauge_level: float  # nan when absent [m]
     lowest_speed: float
     highest_speed: float
+    flow: float = float("nan")  # held, or at which a rising set point is full [m3/s]
+    pressure_at_no_flow: float = float("nan")  # of a rising set point [Pa]
+    valve_loss: float = 0.0  # of a reducing valve wide open, over flow squared [m/(m3/s)2]
+    stages: tuple[tuple[float, float], ...] = ()  # start and stop level of each, nan if absent
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class ZoneTank:
+    """A tank at the end of the main."""
+
+    levels: Floats  # (3,) low, normal, top; nan where absent [m]
+    area: float  # nan when absent [m2]
+    fire_only: bool  # shut off the zone by a check valve until the grade falls below it
+    draw_at: float  # chainage at which the demand is drawn, nan: at the tank [m]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -168,6 +218,8 @@ class Scenario:
     pipes: PipeAge
     largest_out: bool
     low_shift: float  # of the supply's low state in that year [Pa]
+    tank_state: int = 1  # 0 low, 1 normal, 2 top
+    way: int = 0  # which of the ways of the station: all barrels, or one out
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -177,6 +229,7 @@ class Growth:
     id: str
     order: int
     year: int | None
+    maximum_day: float | None
     peak_hour: float | None
     fires: tuple[
         tuple[str, float, float, int], ...
@@ -199,6 +252,7 @@ class LoweredSet:
     water: Water
     supply: Supply
     route: Line  # suction line, then discharge main: one flow, so one reading gives both
+    ways: tuple[Line, ...]  # the route, and the route with one barrel out, as scenarios ask
     suction_reaches: int  # how many of its reaches lie before the pumps
     points: ZonePoints
     units: tuple[Unit, ...]
@@ -208,4 +262,10 @@ class LoweredSet:
     scenarios: tuple[Scenario, ...]
     growth: tuple[Growth, ...]
     bypass: Bypass | None
+    tank: ZoneTank | None  # None in a closed zone
     needs_missing: tuple[tuple[str, str], ...]
+
+    @property
+    def floats(self) -> bool:
+        """Whether a tank floats on the zone, so that the flow follows from the pumps."""
+        return self.tank is not None and not self.tank.fire_only

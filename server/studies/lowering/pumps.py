@@ -5,26 +5,23 @@ from functools import lru_cache
 
 import numpy as np
 
-from server.hydraulics.errors import CurveRefused
 from server.hydraulics.leg_curve import LegCurve, leg_curve
-from server.hydraulics.pump_curve import PumpCurve, pump_curve
+from server.hydraulics.pump_curve import PumpCurve
 from server.station.conduit import Leg
-from server.station.pump import Curve, CurveTable, Pump
+from server.station.pump import Pump
 from server.station.pump_set import PumpSet
 from server.station.pump_set import Slot as EnteredSlot
 from server.station.station import Station
 from server.studies.duty_result import SlotFacts
 from server.studies.limits import StudyLimits
+from server.studies.lowering.curves import KEPT, SlotCurve, slot_curve
 from server.studies.lowering.lowered import Slot, Unit
-from server.studies.lowering.needs import NOT_IN_THIS_VERSION, Needs, si_or_none
+from server.studies.lowering.needs import Needs, si_or_none
 from server.studies.lowering.pipes import branches
-from server.units import to_si
 
 DRIVE_EFFICIENCY = 0.97  # default where none is entered, criteria.md [-]
 NPSH_EXPONENT = 2.0
-COLUMNS = ("flow", "head", "efficiency", "shaft_power", "npsh_required")
 MOST_COMBINATIONS = 512  # numbers running that are looked at
-KEPT = 64  # curves of pumps kept between lowerings
 POWER_READINGS = 241  # readings of a curve for its largest power
 
 
@@ -44,7 +41,7 @@ def units_and_slots(
     legs = {leg.id: leg for leg in station.legs}
     order = {horizon.id: i for i, horizon in enumerate(station.horizons)}
     units: list[Unit] = []
-    index: dict[tuple[str, str, str], int] = {}
+    index: dict[tuple[str, str, float | None, str, bool], int] = {}
     slots = []
     for slot in pump_set.slots:
         path = f"{base}/{slot.id}"
@@ -53,16 +50,15 @@ def units_and_slots(
             needs.stop(f"{path}/pump")
         if leg is None:
             needs.stop(f"{path}/leg")
-        if slot.drive == "fixed":
-            needs.stop(f"{path}/drive", NOT_IN_THIS_VERSION)
         if pump is None or leg is None:
             continue
-        curve = _curve_of(pump, slot, path, needs)
+        curve = slot_curve(pump, slot, path, needs)
         if curve is None:
             continue
-        key = (pump.id, curve.id, leg.id)
+        fixed = slot.drive == "fixed"
+        key = (pump.id, curve.entered.id, curve.diameter, leg.id, fixed)
         if key not in index:
-            unit = _unit(pump, curve, leg, needs)
+            unit = _unit(pump, curve.curve, leg, fixed, needs)
             if unit is None:
                 continue
             index[key] = len(units)
@@ -80,31 +76,25 @@ def units_and_slots(
     return tuple(units), tuple(slots)
 
 
-def _curve_of(pump: Pump, slot: EnteredSlot, path: str, needs: Needs) -> Curve | None:
-    if not pump.curves:
-        needs.stop(f"/pumps/{pump.id}/curves")
-        return None
-    if slot.curve is None:
-        return pump.curves[0]
-    found = next((curve for curve in pump.curves if curve.id == slot.curve), None)
-    if found is None:
-        needs.stop(f"{path}/curve")
-    return found
-
-
-def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
+def _unit(
+    pump: Pump, lowered: PumpCurve, leg: Leg, fixed: bool, needs: Needs
+) -> Unit | None:
     """Return a pump in its leg, None when its curve cannot be had."""
-    lowered = _curve(pump, curve, needs)
     suction, discharge, suction_bore, discharge_bore, cracking, open_at, assumed = branches(
         leg, needs
     )
     path = f"/pumps/{pump.id}"
     motor = needs.part(f"{path}/motor_efficiency", pump.motor_efficiency)
-    drive = needs.default(f"{path}/drive_efficiency", pump.drive_efficiency, DRIVE_EFFICIENCY)
+    # straight on the line nothing is lost in a drive
+    drive = 1.0
+    if not fixed:
+        drive = needs.default(
+            f"{path}/drive_efficiency", pump.drive_efficiency, DRIVE_EFFICIENCY
+        )
     region = pump.allowable_region
     needs.part(f"{path}/allowable_region/low", region.low)
     needs.part(f"{path}/allowable_region/high", region.high)
-    if lowered is None or not math.isfinite(suction + discharge):
+    if not math.isfinite(suction + discharge):
         return None
     return Unit(
         curve=lowered,
@@ -116,51 +106,10 @@ def _unit(pump: Pump, curve: Curve, leg: Leg, needs: Needs) -> Unit | None:
         cracking_head=cracking,
         full_open_velocity=open_at,
         full_open_assumed=assumed,
+        fixed=fixed,
         npsh_exponent=NPSH_EXPONENT if pump.npsh_exponent is None else pump.npsh_exponent,
         motor_efficiency=motor,
         drive_efficiency=drive,
-    )
-
-
-def _curve(pump: Pump, curve: Curve, needs: Needs) -> PumpCurve | None:
-    path = f"/pumps/{pump.id}/curves/{curve.id}"
-    speed = needs.must(f"/pumps/{pump.id}/speed", pump.speed)
-    if curve.fit == "smoothed":
-        needs.stop(f"{path}/fit", NOT_IN_THIS_VERSION)
-    if not curve.table.rows:
-        needs.stop(f"{path}/table")
-        return None
-    if not math.isfinite(speed):
-        return None
-    eyes = 2 if pump.kind == "double_suction" else 1
-    try:
-        lowered = _fitted(
-            curve.table, si_or_none(curve.best_efficiency_flow), speed, pump.stages, eyes
-        )
-    except CurveRefused as refused:
-        stated = refused.reason == "bep_outside_rows"
-        needs.stop(f"{path}/{'best_efficiency_flow' if stated else 'table'}", refused.reason)
-        return None
-    _say_what_the_rows_lack(f"{path}/table", lowered, needs)
-    return lowered
-
-
-@lru_cache(maxsize=KEPT)
-def _fitted(
-    table: CurveTable, best_flow: float | None, speed: float, stages: int, eyes: int
-) -> PumpCurve:
-    """Return the curve through a table; kept, as most edits leave the pumps alone."""
-    columns = _columns(table)
-    return pump_curve(
-        columns["flow"] or [],
-        head=columns["head"],
-        tested_speed=speed * 60.0,  # a minute, as specific speed counts it
-        efficiency=columns["efficiency"],
-        shaft_power=columns["shaft_power"],
-        npsh_required=columns["npsh_required"],
-        bep_flow=best_flow,
-        stages=stages,
-        eyes=eyes,
     )
 
 
@@ -169,32 +118,10 @@ def _leg(curve: PumpCurve, loss: float) -> LegCurve:
     return leg_curve(curve, loss=loss)
 
 
-def _say_what_the_rows_lack(path: str, curve: PumpCurve, needs: Needs) -> None:
-    if curve.npsh_curve is None:
-        needs.leave_out(path, "no_npsh_rows")
-    if curve.efficiency_curve is None and curve.power_curve is None:
-        needs.leave_out(path, "no_efficiency_rows")
-    if curve.best is None:
-        needs.leave_out(path, "best_efficiency_unknown")
-    if curve.shutoff_head is None:
-        needs.leave_out(path, "no_shutoff_row")
-
-
-def _columns(table: CurveTable) -> dict[str, list[float | None] | None]:
-    """Return the columns of the table in SI; a column without a unit is not in the table."""
-    present = [name for name in COLUMNS if getattr(table.units, name)]
-    columns: dict[str, list[float | None] | None] = dict.fromkeys(COLUMNS)
-    for place, name in enumerate(present):
-        unit = getattr(table.units, name)
-        cells = [row[place] if place < len(row) else None for row in table.rows]
-        columns[name] = [None if cell is None else to_si(cell, unit) for cell in cells]
-    return columns
-
-
 def _facts(
     slot: EnteredSlot,
     pump: Pump,
-    curve: Curve,
+    curve: SlotCurve,
     unit: Unit,
     limits: StudyLimits,
     highest_speed: float,
@@ -208,7 +135,13 @@ def _facts(
         title=slot.title,
         role=slot.role,
         pump=pump.id,
-        curve=curve.id,
+        curve=curve.entered.id,
+        fixed=unit.fixed,
+        diameter=curve.diameter,
+        trim_ratio=curve.trim_ratio,
+        smoothing_residual=(
+            None if of.smoothing is None else of.smoothing.largest_residual
+        ),
         best_efficiency_flow=None if of.best is None else of.best.flow,
         best_efficiency=None if of.best is None else of.best.efficiency,
         shutoff_head=of.shutoff_head,
@@ -218,7 +151,9 @@ def _facts(
         minimum_flow=limits.minimum_flow if minimum is None else minimum,
         minimum_flow_assumed=minimum is None,
         motor_power=si_or_none(pump.motor_power),
-        largest_shaft_power=_largest_power(of, highest_speed, density),
+        largest_shaft_power=_largest_power(
+            of, 1.0 if unit.fixed else highest_speed, density
+        ),
         motor_efficiency=si_or_none(pump.motor_efficiency),
         drive_efficiency=None if math.isnan(unit.drive_efficiency) else unit.drive_efficiency,
         specific_speed=of.specific_speed,

@@ -12,9 +12,9 @@ from server.hydraulics.water import (
     vapour_pressure,
 )
 from server.station.station import Station
-from server.station.supply import FlowTest, GradeLine, Site
+from server.station.supply import FlowTest, GradeLine, Site, SupplyTank
 from server.studies.lowering.lowered import Bypass, Floats, Supply, Water
-from server.studies.lowering.needs import NAN, NOT_IN_THIS_VERSION, Needs
+from server.studies.lowering.needs import NAN, Needs
 
 FRICTION_TEMPERATURE = 10.0  # default where none is entered, criteria.md [degC]
 HIGHEST_TEMPERATURE = 20.0  # default where none is entered [degC]
@@ -42,11 +42,13 @@ def supply(station: Station, of: Water, needs: Needs) -> Supply | None:
     entered = station.supply
     source: FlowTestSupply | FixedGradeSupply | None = None
     shift: Floats = np.full(3, NAN)
-    draw = 0.0
+    draw, cut_out, outlet, bore = 0.0, NAN, NAN, NAN
     if entered.kind is None:
         needs.stop("/supply/kind")
     elif entered.kind == "tank":
-        needs.stop("/supply/kind", NOT_IN_THIS_VERSION)
+        source, shift, cut_out = _tank(entered.tank, of, needs)
+        outlet = needs.part("/supply/tank/outlet_level", entered.tank.outlet_level)
+        bore = needs.part("/supply/tank/outlet_bore", entered.tank.outlet_bore)
     elif entered.kind == "main":
         source, draw = _tested_main(entered.flow_tests, needs)
         states = entered.states
@@ -59,13 +61,16 @@ def supply(station: Station, of: Water, needs: Needs) -> Supply | None:
             needs.stop("/supply/states/low")
     else:
         source, shift = _grade_line(entered.grade_line, of, needs)
-    connection = needs.part("/supply/connection_level", entered.connection_level)
+    connection = NAN
+    if entered.kind != "tank":
+        connection = needs.part("/supply/connection_level", entered.connection_level)
     gauge = needs.part("/site/suction_gauge_level", station.site.suction_gauge_level)
-    if source is None:
+    if source is None or entered.kind is None:
         return None
     return Supply(
-        source=source, draw_in_test=draw, shift=shift, water=of,
+        kind=entered.kind, source=source, draw_in_test=draw, shift=shift, water=of,
         connection_level=connection, suction_gauge_level=gauge,
+        cut_out=cut_out, outlet_level=outlet, outlet_bore=bore,
     )  # fmt: skip
 
 
@@ -115,12 +120,38 @@ def _grade_line(
         needs.part(f"{path}/normal", entered.normal),
         needs.part(f"{path}/high", entered.high),
     ])  # fmt: skip
-    known = levels[np.isfinite(levels)]
-    if not known.size:
+    base = _base(levels)
+    if base is None:
         needs.stop(f"{path}/low")
         return None, levels
-    base = float(levels[1]) if np.isfinite(levels[1]) else float(known[0])
-    return FixedGradeSupply(grade_level=base), (levels - base) * of.density * GRAVITY
+    return FixedGradeSupply(grade_level=base), (levels - base) * of.weight
+
+
+def _tank(
+    entered: SupplyTank, of: Water, needs: Needs
+) -> tuple[FixedGradeSupply | None, Floats, float]:
+    """Return a tank at its normal level or the first stated, its states and its cut-out."""
+    path = "/supply/tank"
+    levels = np.array([
+        needs.part(f"{path}/low", entered.low),
+        needs.part(f"{path}/normal", entered.normal),
+        needs.part(f"{path}/top", entered.top),
+    ])  # fmt: skip
+    cut_out = needs.part(f"{path}/cut_out", entered.cut_out)
+    base = _base(levels)
+    if base is None:
+        needs.stop(f"{path}/low")
+        return None, levels, NAN
+    shift = (levels - base) * of.weight
+    return FixedGradeSupply(grade_level=base), shift, (cut_out - base) * of.weight
+
+
+def _base(levels: Floats) -> float | None:
+    """Return the normal level, else the first stated one."""
+    known = levels[np.isfinite(levels)]
+    if not known.size:
+        return None
+    return float(levels[1]) if np.isfinite(levels[1]) else float(known[0])
 
 
 def bypass(station: Station, needs: Needs) -> Bypass | None:
