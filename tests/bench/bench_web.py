@@ -85,7 +85,7 @@ def saved_edit() -> list[Measurement]:
             value=median(spent),
             unit="ms",
             budget=EDIT_BUDGET,
-            note=f"median of {EDITS}, least {min(spent):.0f}, processor {median(worked):.0f} ms, "
+            note=f"median of {EDITS}, least {min(spent):.0f}, CPU {median(worked):.0f} ms, "
             f"{len(text) / 1000:.0f} kB",
         )
     ]
