@@ -81,7 +81,7 @@
 
   // columns of a table: what is chosen is kept for this browser, else it follows the width
   function columns() {
-    for (const chooser of document.querySelectorAll("[data-columns]")) {
+    for (const chooser of document.querySelectorAll("fieldset[data-columns]")) {
       const table = document.getElementById(chooser.dataset.columns);
       if (!table) continue;
       const key = `columns ${chooser.dataset.columns}`;
@@ -99,7 +99,7 @@
     for (const cell of table.querySelectorAll(`[data-group="${box.value}"]`)) cell.hidden = !box.checked;
   }
   document.addEventListener("change", (event) => {
-    const chooser = event.target.closest && event.target.closest("[data-columns]");
+    const chooser = event.target.closest && event.target.closest("fieldset[data-columns]");
     if (!chooser) return;
     const table = document.getElementById(chooser.dataset.columns);
     toggle(table, event.target);

@@ -5,7 +5,6 @@ import numpy as np
 from server.hydraulics.states import State
 from server.studies.assess import Assessment
 from server.studies.duty_result import DutyResult
-from server.studies.findings.criteria import criteria_of
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import SUPPLY_STATES, SupplyState
 
@@ -18,7 +17,7 @@ def judged_set(assessment: Assessment, set_id: str | None) -> JudgedSet | None:
     entered = next((s for s in assessment.station.sets if s.id == set_id), None)
     if not isinstance(result, DutyResult) or entered is None:
         return None
-    return JudgedSet(assessment.station, criteria_of(assessment.station), entered, result)
+    return JudgedSet(assessment.station, assessment.criteria, entered, result)
 
 
 def case_index(

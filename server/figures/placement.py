@@ -7,6 +7,7 @@ or the one that lies on the fewest line points when it cannot be free of lines.
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -118,37 +119,54 @@ def _place(
 ) -> Placed:
     wide, high = text_width(name.text, size, bold=True) + 4, size * 1.25
     best: tuple[float, Placed] | None = None
-    for which, (x, y) in enumerate(name.points):
-        for step in range(1, name.farthest + 1):
-            for side, shift in _TRIES:
-                middle_x = min(
-                    max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2
-                )
-                middle_y = y + side * (
-                    high * (0.4 + 0.22 * step)
-                    if name.line >= 0
-                    else marker + high * (0.2 + 0.75 * step)
-                )
-                box = Box(
-                    middle_x - wide / 2,
-                    middle_y - high / 2,
-                    middle_x + wide / 2,
-                    middle_y + high / 2,
-                )
-                if box.top < bounds.top or box.bottom > bounds.bottom:
-                    continue
-                if any(box.meets(other, 1.0) for other in standing):
-                    continue
-                cost = step + (0.3 if side < 0 else 0.0) + 1.6 * abs(shift) + 0.15 * which
-                if best is not None and cost >= best[0]:
-                    continue
-                cost += _crowding(box, lines, name.line)
-                if best is None or cost < best[0]:
-                    best = cost, Placed(middle_x, middle_y, which, box)
+    for cost, which, step, side, shift in _tries(len(name.points), name.farthest):
+        if best is not None and cost >= best[0]:
+            break  # what follows is farther still
+        x, y = name.points[which]
+        away = high * (0.4 + 0.22 * step)
+        if name.line < 0:
+            away = marker + high * (0.2 + 0.75 * step)
+        middle_x = min(max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2)
+        middle_y = y + side * away
+        half_wide, half_high = wide / 2, high / 2
+        box = Box(
+            middle_x - half_wide,
+            middle_y - half_high,
+            middle_x + half_wide,
+            middle_y + half_high,
+        )
+        if box.top < bounds.top or box.bottom > bounds.bottom:
+            continue
+        if any(box.meets(other, 1.0) for other in standing):
+            continue
+        whole = cost + _crowding(box, lines, name.line)
+        if best is None or whole < best[0]:
+            best = whole, Placed(middle_x, middle_y, which, box)
     if best is None:  # no room at all: under the point, so that no name is lost
         x, y = name.points[0]
-        return Placed(x, y + marker + high, 0, Box(x - wide / 2, y, x + wide / 2, y + high))
+        box = Box(x - wide / 2, y, x + wide / 2, y + high)
+        return Placed(x, y + marker + high, 0, box)
     return best[1]
+
+
+@lru_cache(maxsize=64)
+def _tries(points: int, farthest: int) -> tuple[tuple[float, int, int, int, float], ...]:
+    """Return places to try, the nearest first: cost, point, step, side and shift."""
+    return tuple(
+        sorted(
+            (
+                step + (0.3 if side < 0 else 0.0) + 1.6 * abs(shift) + 0.15 * which,
+                which,
+                step,
+                side,
+                shift,
+            )
+            for which in range(points)
+            for step in range(1, farthest + 1)
+            for side in (1, -1)
+            for shift in (0.0, 0.5, -0.5, 0.9, -0.9)
+        )
+    )
 
 
 def _crowding(box: Box, lines: NDArray[np.float64], own: int) -> float:
@@ -163,6 +181,3 @@ def _crowding(box: Box, lines: NDArray[np.float64], own: int) -> float:
     if own >= 0 and int(line[np.argmin(away)]) != own:
         cost += 12.0
     return cost
-
-
-_TRIES = tuple((side, shift) for side in (1, -1) for shift in (0.0, 0.5, -0.5, 0.9, -0.9))

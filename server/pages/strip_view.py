@@ -158,7 +158,7 @@ def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[Find
             css=SEVERITY_CSS[finding.severity],
             grade=words.severity_words(finding.severity),
             sentence=words.sentence(finding, sheet.station, sheet.view),
-            basis=words.basis(finding, sheet.station),
+            basis=_basis(sheet, finding),
             mends=tuple(
                 (words.field_words(sheet.station, path), sheet.field_href(path))
                 for path in finding.mend[:MOST_MENDS]
@@ -168,6 +168,12 @@ def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[Find
         )
         for finding in findings
     )
+
+
+def _basis(sheet: OpenedSheet, finding: Finding) -> str:
+    """Return what a finding rests on; of a criterion, its source in this station."""
+    criterion = sheet.assessment.criteria.get(finding.basis)
+    return words.basis(finding) if criterion is None else criterion.source
 
 
 def _judged(sheet: OpenedSheet) -> JudgedSet | None:

@@ -1,4 +1,4 @@
-"""The memo: what a reviewer must find in it; of the demo, of an unsolved and an empty station."""
+"""The memo: what a reviewer must find in it; of the demo, an unsolved, an empty station."""
 
 import re
 from html.parser import HTMLParser

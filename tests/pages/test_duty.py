@@ -1,9 +1,10 @@
 """The Duty sheet: a row a scenario, the worst of three states, the figure and its numbers.
 
 Sources
-    demo    values of the independent scalar calculator: design peak hour 36.0 L/s at 50.3 m,
-            three mains at 82.2 % of best efficiency; average day, design 98.4 % at normal and 103.3 %
-            at high supply; design fire 119 kPa in the street main, set point not held.
+    demo    values of the independent scalar calculator: design peak hour 36.0 L/s at
+            50.3 m, three mains at 82.2 % of best efficiency; average day, design 98.4 % at
+            normal and 103.3 % at high supply; design fire 119 kPa in the street main, set
+            point not held.
 """
 
 import csv
@@ -12,8 +13,12 @@ import json
 import re
 
 import pytest
+from fastapi.testclient import TestClient
 
+from server.app import create_app
+from server.demo import load_demo
 from server.pages.duty import GROUPS
+from server.settings import Settings
 
 
 def table(answer, element="duty-table"):
@@ -31,9 +36,25 @@ def table(answer, element="duty-table"):
     return rows
 
 
-@pytest.fixture
-def duty(client, demo_id):
-    answer = client.get(f"/stations/{demo_id}/duty")
+@pytest.fixture(scope="module")
+def served(tmp_path_factory):
+    """Return a client and the demo's id, for tests that change nothing."""
+    app = create_app(Settings(tmp_path_factory.mktemp("duty")))
+    headers = {"Sec-Fetch-Site": "same-origin"}
+    with TestClient(app, base_url="http://127.0.0.1", headers=headers) as client:
+        yield client, load_demo(app.state.store)[0]
+
+
+@pytest.fixture(scope="module")
+def ask(served):
+    """Return the answer of an address of the demo station."""
+    client, station = served
+    return lambda address, **query: client.get(f"/stations/{station}/{address}", params=query)
+
+
+@pytest.fixture(scope="module")
+def duty(ask):
+    answer = ask("duty")
     assert answer.status_code == 200
     return answer
 
@@ -105,8 +126,8 @@ def test_an_unsolved_set_lists_what_is_missing_with_links(client, demo_id, send)
     assert 'id="duty-table"' not in answer.text
 
 
-def test_the_table_comes_as_csv_with_units_in_its_heads(client, demo_id):
-    answer = client.get(f"/stations/{demo_id}/tables/duty.csv", params={"units": "us"})
+def test_the_table_comes_as_csv_with_units_in_its_heads(ask):
+    answer = ask("tables/duty.csv", units="us")
     rows = list(csv.DictReader(io.StringIO(answer.text.lstrip("\ufeff"))))
 
     assert answer.headers["content-type"].startswith("text/csv")
@@ -127,23 +148,23 @@ def test_a_name_that_looks_like_a_formula_stays_a_name(client, demo_id, send):
 
 
 @pytest.mark.parametrize("chart", ["duty", "head", "supply", "strip"])
-def test_each_chart_has_its_own_address(client, demo_id, chart):
-    answer = client.get(f"/stations/{demo_id}/charts/{chart}.svg")
+def test_each_chart_has_its_own_address(ask, chart):
+    answer = ask(f"charts/{chart}.svg")
 
     assert answer.status_code == 200
     assert answer.headers["content-type"].startswith("image/svg+xml")
     assert "var(--" not in answer.text
 
 
-def test_a_chart_comes_as_data(client, demo_id):
-    answer = client.get(f"/stations/{demo_id}/charts/head.json")
+def test_a_chart_comes_as_data(ask):
+    answer = ask("charts/head.json")
 
     assert answer.json()["layout"]["yaxis"]["range"][0] == 0
 
 
 @pytest.mark.parametrize("address", ["charts/no.svg", "charts/no.json", "tables/no.csv"])
-def test_a_chart_or_table_that_is_not_one_is_told(client, demo_id, address):
-    answer = client.get(f"/stations/{demo_id}/{address}")
+def test_a_chart_or_table_that_is_not_one_is_told(ask, address):
+    answer = ask(address)
 
     assert answer.status_code == 404
     assert "There are" in answer.text
