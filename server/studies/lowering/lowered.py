@@ -200,7 +200,7 @@ class ZoneTank:
     levels: Floats  # (3,) low, normal, top; nan where absent [m]
     area: float  # nan when absent [m2]
     fire_only: bool  # shut off the zone by a check valve until the grade falls below it
-    draw_at: float  # chainage at which the demand is drawn, nan: at the tank [m]
+    before_draw: Floats  # (R,) share of each reach of the main before the demand is drawn
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -3,7 +3,7 @@
 import numpy as np
 
 from server.station.station import Station
-from server.studies.lowering.lowered import ZoneTank
+from server.studies.lowering.lowered import Floats, ZoneTank
 from server.studies.lowering.needs import NAN, Needs
 
 TANK_STATES = ("low", "normal", "top")
@@ -31,14 +31,32 @@ def zone_tank(station: Station, needs: Needs) -> ZoneTank | None:
         needs.leave_out("/zone/tank/top")
     area = needs.part("/zone/tank/area", entered.area)
     fire_only = zone.kind == "both" and entered.use == "fire_only"
-    draw_at = NAN
-    if entered.demand_at is not None:
-        draw_at = entered.demand_at.si
-        path = "/zone/tank/demand_at"
-        lengths = [reach.length for reach in station.discharge_main.reaches]
-        whole = sum(length.si for length in lengths if length is not None)
-        if fire_only:
-            needs.leave_out(path, NOT_BESIDE_FIRE)
-        elif draw_at > whole * (1.0 + 1e-9) and None not in lengths:
-            needs.stop(path, PAST_THE_MAIN)
-    return ZoneTank(levels=np.array(levels), area=area, fire_only=fire_only, draw_at=draw_at)
+    if fire_only and entered.demand_at is not None:
+        needs.leave_out("/zone/tank/demand_at", NOT_BESIDE_FIRE)
+    return ZoneTank(
+        levels=np.array(levels),
+        area=area,
+        fire_only=fire_only,
+        before_draw=_before_draw(station, fire_only, needs),
+    )
+
+
+def _before_draw(station: Station, fire_only: bool, needs: Needs) -> Floats:
+    """Return the share of each reach of the main that lies before the draw: 1 at the tank.
+
+    By laid length: fittings of a reach that is cut are shared by length too.
+    """
+    drawn = station.zone.tank.demand_at
+    lengths = np.array([
+        NAN if reach.length is None else reach.length.si
+        for reach in station.discharge_main.reaches
+    ])  # fmt: skip
+    if drawn is None or fire_only or not np.isfinite(lengths).all():
+        return np.ones(lengths.size)
+    ends = np.cumsum(lengths)
+    if lengths.size and drawn.si > ends[-1] * (1.0 + 1e-9):
+        needs.stop("/zone/tank/demand_at", PAST_THE_MAIN)
+    along = np.where(lengths > 0, lengths, 1.0)
+    share = np.clip((drawn.si - (ends - lengths)) / along, 0.0, 1.0)
+    # a reach of no length, fittings only, lies before the draw where it ends there
+    return np.where(lengths > 0, share, (ends <= drawn.si).astype(np.float64))

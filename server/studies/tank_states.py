@@ -1,0 +1,177 @@
+"""States of every combination against a tank that floats on the zone: the flow follows.
+
+The tank fixes the grade at the end of the main; the demand is drawn there or part-way, and what
+the pumps do not carry the tank feeds. Pumps without a drive, or started by level, run at one
+speed; a held flow asks the drives for the speed that passes it.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from server.hydraulics.case_system import TabledSystem
+from server.hydraulics.combinations import solve_combinations, spread
+from server.hydraulics.held_flow import hold_flow
+from server.hydraulics.states import State
+from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
+from server.studies.set_states import RawStates, SetStates, states_of
+from server.studies.system_heads import Draw, reach_losses, reach_velocities
+
+LEAST_FLOW = 1e-3  # the slopes of a system are tabled up to this flow at least [m3/s]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class TankWay:
+    """The way from the supply to the tank for C draws: the level and the draw of each."""
+
+    of: LoweredSet
+    draw: Draw  # arrays (C,)
+    level: Floats  # (C,) of the tank; nan where that state is not stated [m]
+
+    @property
+    def known(self) -> Flags:
+        """Where supply state and tank level are stated, (C,)."""
+        shift = np.asarray(self.draw.shift, dtype=np.float64)
+        return np.asarray(np.isfinite(shift) & np.isfinite(self.level), dtype=np.bool_)
+
+    def grades(self, flow: Floats, case: Indices) -> "WayGrades":
+        """Return grades and losses for station flows of cases, any one shape."""
+        of, draw = self.of, self.draw
+        assert of.tank is not None  # a floating tank
+        aged = np.asarray(draw.aged, dtype=np.bool_)[case]
+        way = np.asarray(draw.way, dtype=np.intp)[case]
+        supply = of.supply.grade(flow, draw.shift[case])
+        lost = reach_losses(of, flow, aged, way)
+        suction, main = lost[..., : of.suction_reaches], lost[..., of.suction_reaches :]
+        before = of.tank.before_draw
+        to_tank = flow - draw.flow[case]
+        after: Floats = np.zeros(flow.shape)
+        if np.any(before < 1.0):
+            beyond = reach_losses(of, to_tank, aged, way)[..., of.suction_reaches :]
+            after = beyond @ (1.0 - before)
+        return WayGrades(
+            supply_grade=supply,
+            suction_grade=supply - suction.sum(axis=-1),
+            before_draw=main @ before,
+            draw_grade=self.level[case] + after,
+            tank_flow=to_tank,
+        )
+
+    def head(self, flow: Floats, case: Indices) -> Floats:
+        """Return the head asked between the manifolds [m]."""
+        return self.grades(flow, case).required_head
+
+    def system(self) -> TabledSystem:
+        """Return the way as a system curve; cases that are not stated ask for no head."""
+        known = self.known
+        ends = [unit.curve.last_flow for unit in self.of.units]
+        slots = [ends[slot.unit] for slot in self.of.slots]
+
+        def asked(flow: Floats, case: Indices) -> Floats:
+            # not nan: the root of an unknown case is looked for beside the others and dropped
+            return np.where(known[case], self.head(flow, case), 0.0)
+
+        return TabledSystem(
+            function=asked,
+            case_count=known.size,
+            largest_flow=max(sum(slots, 0.0), LEAST_FLOW),
+        )
+
+    def velocities(self, flow: Floats, case: Indices) -> Floats:
+        """Return the velocity in each reach: the faster part of one with the draw in it."""
+        of = self.of
+        assert of.tank is not None
+        way = np.asarray(self.draw.way, dtype=np.intp)[case]
+        all_way = reach_velocities(of, flow, way)
+        before = np.concatenate([np.ones(of.suction_reaches), of.tank.before_draw])
+        if np.all(before >= 1.0):
+            return all_way
+        beyond = np.abs(reach_velocities(of, flow - self.draw.flow[case], way))
+        faster = np.where(before > 0, np.maximum(all_way, beyond), beyond)
+        return np.where(before >= 1.0, all_way, faster)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class WayGrades:
+    """Grades on the way to the tank, one shape."""
+
+    supply_grade: Floats  # [m]
+    suction_grade: Floats  # at the suction manifold [m]
+    before_draw: Floats  # loss from the discharge manifold to the draw [m]
+    draw_grade: Floats  # where the demand is drawn: at the tank, or part-way [m]
+    tank_flow: Floats  # into the tank, negative when it feeds [m3/s]
+
+    @property
+    def required_head(self) -> Floats:
+        """Head asked between the manifolds [m]."""
+        return self.draw_grade + self.before_draw - self.suction_grade
+
+
+def tank_way(of: LoweredSet, draw: Draw, tank_state: Indices) -> TankWay:
+    """Return the way to the tank for some draws.
+
+    Parameters
+    ----------
+    of : LoweredSet
+        A set on a zone with a floating tank.
+    draw : Draw
+        Arrays (C,).
+    tank_state : ndarray of int, shape (C,)
+        0 low, 1 normal, 2 top.
+    """
+    assert of.tank is not None
+    return TankWay(of=of, draw=draw, level=of.tank.levels[tank_state])
+
+
+def full_speeds(of: LoweredSet) -> Floats:
+    """Return the speed of each slot with nothing held: tested speed, or the drives' highest."""
+    top = of.control.highest_speed
+    return np.array([1.0 if of.units[slot.unit].fixed else top for slot in of.slots])
+
+
+def tank_states(
+    of: LoweredSet, combinations: Flags, way: TankWay
+) -> tuple[SetStates, WayGrades]:
+    """Return the states of K combinations in the C cases of a way, and the grades there."""
+    legs = [of.units[slot.unit].leg for slot in of.slots]
+    system, known = way.system(), way.known
+    shape = (known.size, *combinations.shape)
+    speeds = full_speeds(of)
+    if of.control.kind == "held_flow":
+        fixed = np.array([of.units[slot.unit].fixed for slot in of.slots], dtype=np.bool_)
+        held = hold_flow(
+            of.control.flow, system=system, legs=legs, combinations=combinations,
+            lowest_speed=of.control.lowest_speed, highest_speed=of.control.highest_speed,
+            variable=~fixed,
+        )  # fmt: skip
+        ends = solve_combinations(
+            legs, system=system, combinations=combinations, speeds=speeds
+        )
+        raw = RawStates(
+            state=held.state, flow=held.flow, head=held.head, leg_flow=held.leg_flow,
+            speed=held.speed, held_shut=held.held_shut, cannot_start=held.cannot_start,
+            last_row_flow=ends.last_row_flow, last_row_speed=np.full(shape[:2], np.nan),
+            energy_residual=held.energy_residual, mass_residual=held.mass_residual,
+        )  # fmt: skip
+    else:
+        found = solve_combinations(
+            legs, system=system, combinations=combinations, speeds=speeds
+        )
+        ends = found
+        raw = RawStates(
+            state=found.state, flow=found.flow, head=found.manifold_head,
+            leg_flow=found.leg_flow, speed=spread(speeds, shape),
+            held_shut=combinations & (found.leg_state == State.HELD_SHUT),
+            cannot_start=found.cannot_start,
+            last_row_flow=found.last_row_flow,
+            last_row_speed=np.full(shape[:2], of.control.highest_speed),
+            energy_residual=found.energy_residual, mass_residual=found.mass_residual,
+        )  # fmt: skip
+    raw.lack[:] = np.where(ends.static_shortfall > 0, ends.static_shortfall, 0.0)
+    past = raw.state == State.END_OF_CURVE
+    raw.lack[past] = -ends.last_row_surplus[past]
+    states = states_of(of, combinations, raw, known)
+    case = np.broadcast_to(np.arange(known.size)[:, None], states.flow.shape)
+    # at a combination without a state the grades are those at rest, and never shown
+    flow = np.where(np.isfinite(states.flow), states.flow, 0.0)
+    return states, way.grades(flow, case)
