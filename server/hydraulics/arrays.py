@@ -19,6 +19,16 @@ def finite(name: str, value: ArrayLike, unit: str) -> FloatArray:
     return array
 
 
+def not_infinite(name: str, value: ArrayLike, unit: str) -> FloatArray:
+    """Return `value` as floats, nan for what is not known; ValueError if any is infinite."""
+    array = np.asarray(value, dtype=np.float64)
+    if np.any(np.isinf(array)):
+        raise ValueError(
+            f"{name} must not be infinite; got {_first(array, np.isinf(array))} {unit}"
+        )
+    return array
+
+
 def within(name: str, value: ArrayLike, low: float, high: float, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it lies outside `low` to `high`."""
     array = finite(name, value, unit)

@@ -1,12 +1,12 @@
 """A line of pipe reaches in series, at one age."""
 
 from dataclasses import dataclass, replace
-from enum import StrEnum
+from enum import IntEnum, StrEnum
 
 import numpy as np
 from numpy.typing import ArrayLike
 
-from server.hydraulics.arrays import BoolArray, FloatArray, finite, read_only
+from server.hydraulics.arrays import BoolArray, FloatArray, StateArray, finite, read_only
 from server.hydraulics.fittings import minor_head_loss
 from server.hydraulics.friction import colebrook_head_loss, hazen_williams_head_loss
 
@@ -154,14 +154,54 @@ class Conduit:
         speed = np.abs(self.velocities(flow))
         if self.law is FrictionLaw.DARCY_WEISBACH:
             return np.zeros(speed.shape, dtype=np.bool_)
-        reach_wrong = (
-            (self.bore < SMALLEST_HAZEN_WILLIAMS_BORE)
-            | (self.bore > LARGEST_HAZEN_WILLIAMS_BORE)
-            | (self.resistance < LEAST_HAZEN_WILLIAMS_COEFFICIENT)
-        )
-        return np.asarray(
-            reach_wrong | (speed > FASTEST_HAZEN_WILLIAMS_VELOCITY), dtype=np.bool_
-        )
+        found = hazen_williams_range(speed, bore=self.bore, coefficient=self.resistance)
+        return np.asarray(found != HazenWilliamsRange.INSIDE, dtype=np.bool_)
+
+
+class HazenWilliamsRange(IntEnum):
+    """Whether Hazen-Williams is used where it was fitted, and what lies outside."""
+
+    INSIDE = 0
+    BORE = 1
+    VELOCITY = 2
+    COEFFICIENT = 3
+
+
+def hazen_williams_range(
+    velocity: ArrayLike, *, bore: ArrayLike, coefficient: ArrayLike
+) -> StateArray:
+    """Return where Hazen-Williams is used outside its range, and by what.
+
+    Parameters
+    ----------
+    velocity : array_like, shape (...)
+        Velocity in the pipe, either way. [m/s]
+    bore : array_like, shape (...)
+        Inside diameter. [m]
+    coefficient : array_like, shape (...)
+        Coefficient C. [-]
+
+    Returns
+    -------
+    ndarray of int8, broadcast shape
+        Codes of `HazenWilliamsRange`: bore before velocity before coefficient.
+
+    References
+    ----------
+    .. [1] Common practice: bore 50 to 1850 mm, to 3 m/s, C of 100 or more; limits in print
+       differ.
+    """
+    speed, diameter, c = np.broadcast_arrays(
+        *(np.asarray(each, dtype=np.float64) for each in (velocity, bore, coefficient))
+    )
+    codes = np.zeros(speed.shape, dtype=np.int8)
+    codes[c < LEAST_HAZEN_WILLIAMS_COEFFICIENT] = HazenWilliamsRange.COEFFICIENT
+    codes[np.abs(speed) > FASTEST_HAZEN_WILLIAMS_VELOCITY] = HazenWilliamsRange.VELOCITY
+    outside = (diameter < SMALLEST_HAZEN_WILLIAMS_BORE) | (
+        diameter > LARGEST_HAZEN_WILLIAMS_BORE
+    )
+    codes[outside] = HazenWilliamsRange.BORE
+    return codes
 
 
 def conduit(

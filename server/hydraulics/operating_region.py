@@ -17,6 +17,7 @@ HIGH_SPECIFIC_SPEED = 87.0  # 4500 in US units [rev/min, m3/s, m]
 PREFERRED = (70.0, 120.0)  # preferred region [% of best efficiency flow]
 PREFERRED_HIGH = (80.0, 115.0)  # the same above the high specific speed [%]
 ASSUMED_MINIMUM = 0.25  # of best efficiency flow, where the maker states no minimum [-]
+LAST_DIGITS = 1e-9  # of an end: the last digits of a unit's factor put no flow outside [-]
 HEAT_CAPACITY = 4186.0  # of water [J/(kg K)]
 
 
@@ -63,43 +64,50 @@ def per_cent_of_best(flow: ArrayLike, *, speed: ArrayLike, best_flow: ArrayLike)
     return np.asarray(100.0 * np.asarray(flow, dtype=np.float64) / (ratio * best), np.float64)
 
 
-def preferred_ends(specific_speed: ArrayLike) -> tuple[FloatArray, FloatArray]:
+def preferred_ends(
+    specific_speed: ArrayLike,
+    *,
+    ordinary: tuple[float, float] = PREFERRED,
+    narrow: tuple[float, float] = PREFERRED_HIGH,
+    narrow_above: float = HIGH_SPECIFIC_SPEED,
+) -> tuple[FloatArray, FloatArray]:
     """Return the lower and the upper end of the preferred region by specific speed.
 
     Parameters
     ----------
     specific_speed : array_like, shape (...)
-        Per stage and per eye. [rev/min, m3/s, m]
+        Per stage and per eye; nan where unknown counts as ordinary. [rev/min, m3/s, m]
+    ordinary, narrow : tuple of two float
+        Lower and upper end, at ordinary and at high specific speed. [% or ratio]
+    narrow_above : float
+        Specific speed above which the narrow region holds. [rev/min, m3/s, m]
 
     Returns
     -------
     tuple of two ndarray, shape (...)
-        Lower and upper end. [% of best efficiency flow]
+        Lower and upper end. [% of best efficiency flow, or ratio]
 
     References
     ----------
     .. [1] ANSI/HI 9.6.3 as quoted in trade articles; the ends above ns 87 differ between them.
     """
-    high = np.asarray(specific_speed, dtype=np.float64) > HIGH_SPECIFIC_SPEED
-    return (
-        np.where(high, PREFERRED_HIGH[0], PREFERRED[0]),
-        np.where(high, PREFERRED_HIGH[1], PREFERRED[1]),
-    )
+    high = np.asarray(specific_speed, dtype=np.float64) > narrow_above
+    return np.where(high, narrow[0], ordinary[0]), np.where(high, narrow[1], ordinary[1])
 
 
 def region(
-    per_cent: ArrayLike, *, lower: ArrayLike, upper: ArrayLike, edge: float = EDGE
+    share: ArrayLike, *, lower: ArrayLike, upper: ArrayLike, edge: float = EDGE
 ) -> StateArray:
     """Return where a flow stands against a region, judged unrounded, ends inside.
 
     Parameters
     ----------
-    per_cent : array_like, shape (...)
-        Per cent of best efficiency flow; nan where unknown. [%]
+    share : array_like, shape (...)
+        Share of best efficiency flow; nan where unknown. [% or ratio, as the ends are]
     lower, upper : array_like, shape (...)
-        Ends of the region; nan where unknown. [%]
+        Ends of the region; nan where unknown. [% or ratio]
     edge : float
-        Distance from an end, inside, that counts as the edge. [%]
+        Distance from an end, inside, that counts as the edge. [% or ratio]
 
     Returns
     -------
@@ -107,11 +115,12 @@ def region(
         Codes of `Region`.
     """
     at, low, high = np.broadcast_arrays(
-        *(np.asarray(a, dtype=np.float64) for a in (per_cent, lower, upper))
+        *(np.asarray(a, dtype=np.float64) for a in (share, lower, upper))
     )
+    last_digits = LAST_DIGITS * np.abs(high)
     codes = np.full(at.shape, Region.INSIDE, dtype=np.int8)
     codes[(at < low + edge) | (at > high - edge)] = Region.EDGE
-    codes[(at < low) | (at > high)] = Region.OUTSIDE
+    codes[(at < low - last_digits) | (at > high + last_digits)] = Region.OUTSIDE
     codes[np.isnan(at) | np.isnan(low) | np.isnan(high)] = Region.UNKNOWN
     return codes
 

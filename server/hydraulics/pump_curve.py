@@ -170,12 +170,25 @@ class PumpCurve:
         q, rho = np.broadcast_arrays(np.asarray(flow, dtype=np.float64), np.asarray(density))
         if self.power_curve is not None:
             return self.power_curve(q)
-        efficiency = self.efficiency(q)
+        efficiency = self._rising_efficiency(q)
         known = (q > 0) & (efficiency > 0)
         water = rho * GRAVITY * q * self.head(q)
         power = np.where(known, water / np.where(known, efficiency, 1.0), np.nan)
         shut = np.nan if self.shutoff_power is None else self.shutoff_power
         return np.where(q == 0, shut, power)
+
+    def _rising_efficiency(self, flow: FloatArray) -> FloatArray:
+        """Return the efficiency, before its first row above zero no lower than a straight line.
+
+        A column that starts flat gives next to no efficiency there, and a power without end
+        that the rows do not show. One that starts steep, as it should, stays as it is.
+        """
+        given = self.rows.flow[np.isfinite(self.rows.efficiency) & (self.rows.efficiency > 0)]
+        efficiency = self.efficiency(flow)
+        if not given.size or given[0] <= 0:
+            return efficiency
+        line = float(self.efficiency(given[0])) * flow / given[0]
+        return np.where(flow < given[0], np.maximum(efficiency, line), efficiency)
 
     def power_disagreement(self, *, density: float = COLD_WATER_DENSITY) -> FloatArray:
         """Return power typed over power from the typed efficiency, less 1, for each row.

@@ -20,3 +20,5 @@ class State(IntEnum):
     """No leg reaches the head asked at zero flow: nothing flows."""
     NOT_AVAILABLE = 6
     """No result can be had: the slot is absent, or the curve has no row there."""
+    NO_WATER = 7
+    """The water column breaks before the pump: there is nothing to pump."""

@@ -3,7 +3,7 @@
 import numpy as np
 from numpy.typing import ArrayLike
 
-from server.hydraulics.arrays import FloatArray, finite, not_negative, positive
+from server.hydraulics.arrays import FloatArray, not_infinite, not_negative, positive
 from server.hydraulics.fittings import velocity
 from server.hydraulics.water import GRAVITY
 
@@ -22,13 +22,13 @@ def npsh_available(
     Parameters
     ----------
     suction_grade : array_like, shape (...)
-        Grade (total head, gauge) at the suction manifold. [m]
+        Grade (total head, gauge) at the suction manifold; nan where not known. [m]
     eye_level : array_like, shape (...)
-        Elevation of the eye of the first stage. [m]
+        Elevation of the eye of the first stage; nan where not known. [m]
     branch_loss : array_like, shape (...)
-        Head lost from the manifold to the eye, zero or more. [m]
+        Head lost from the manifold to the eye, zero or more; nan where nothing runs. [m]
     atmospheric_pressure : array_like, shape (...)
-        Absolute pressure of the air, above zero. [Pa]
+        Absolute pressure of the air, above zero; nan where not known. [Pa]
     vapour_pressure : array_like, shape (...)
         Absolute vapour pressure at the highest water temperature, zero or more. [Pa]
     density : array_like, shape (...)
@@ -37,7 +37,7 @@ def npsh_available(
     Returns
     -------
     ndarray, broadcast shape
-        NPSH available. [m]
+        NPSH available; nan where one of its terms is not known. [m]
 
     Raises
     ------
@@ -59,11 +59,20 @@ def npsh_available(
     >>> round(float(lift), 3)
     12.312
     """
-    air = positive("atmospheric_pressure", atmospheric_pressure, "Pa")
+    air = not_infinite("atmospheric_pressure", atmospheric_pressure, "Pa")
+    if np.any(air <= 0):
+        raise ValueError(
+            f"atmospheric_pressure must be above zero; got {float(np.nanmin(air)):g} Pa"
+        )
     vapour = not_negative("vapour_pressure", vapour_pressure, "Pa")
     weight = positive("density", density, "kg/m3") * GRAVITY
-    lost = not_negative("branch_loss", branch_loss, "m")
-    static = finite("suction_grade", suction_grade, "m") - finite("eye_level", eye_level, "m")
+    lost = not_infinite("branch_loss", branch_loss, "m")
+    if np.any(lost < 0):
+        raise ValueError(
+            f"branch_loss must not be below zero; got {float(np.nanmin(lost)):g} m"
+        )
+    grade = not_infinite("suction_grade", suction_grade, "m")
+    static = grade - not_infinite("eye_level", eye_level, "m")
     return np.asarray((air - vapour) / weight + static - lost, dtype=np.float64)
 
 

@@ -125,8 +125,7 @@ def _npsh_excess(
     suction_grade: Floats,
 ) -> Floats:
     """Return the least NPSH available over what criteria ask, nan where it is not known [m]."""
-    speed, water = of.control.highest_speed, of.water
-    vapour = (water.atmosphere - water.vapour_pressure) / water.weight
+    speed = of.control.highest_speed
     least = np.full(suction_grade.shape, np.inf)
     for t, x in enumerate(each):
         if not np.any(units.count[:, t]):
@@ -135,9 +134,7 @@ def _npsh_excess(
         required = affinity.npsh_required(
             one.curve, flow, speed=speed, exponent=one.npsh_exponent
         )
-        available = (
-            vapour + suction_grade - one.suction_coefficient * flow * flow - of.eye_level
-        )
+        available = of.npsh_available(suction_grade, one.suction_coefficient * flow * flow)
         asked = np.maximum(limits.npsh_ratio * required, required + limits.npsh_margin)
         least = np.where(units.count[:, t] > 0, np.minimum(least, available - asked), least)
     return least

@@ -8,8 +8,8 @@ slot order. The first that
  3 else comes nearest: fewest supply states past the end of a curve, least pressure missing at
    the worst state, least pressure in excess, largest flow at the end of the curve.
 A combination with a unit held shut in any state is never chosen, nor one whose state cannot be
-told. Supply states that are not stated are left out of "all". One set for all states, because
-the operator switches by flow and does not know the state of the supply.
+told. Supply states that are not stated, or give no water, are left out of "all". One set for
+all states, because the operator switches by flow and does not know the state of the supply.
 """
 
 from collections.abc import Sequence
@@ -22,6 +22,7 @@ from server.studies.cases import STATES
 from server.studies.lowering.lowered import Flags, Floats, Indices, Slot
 
 NONE = 4
+BARRED = (State.HELD_SHUT, State.NOT_AVAILABLE, State.NO_WATER)
 
 
 def choose(
@@ -45,7 +46,7 @@ def choose(
     available : ndarray of bool, shape (C, K)
         Combinations that a case allows; C is scenarios by three supply states.
     known : ndarray of bool, shape (C,)
-        Cases whose supply state is stated.
+        Cases whose supply state is stated and gives water.
     state : ndarray of int8, shape (C, K)
         `State` of each.
     share : ndarray, shape (C, K, N)
@@ -70,7 +71,7 @@ def choose(
     solved = state == State.SOLVED
     inside = solved & _all_inside(share, preferred, combinations)
     allowed = solved & _all_inside(share, allowable, combinations)
-    barred = (state == State.HELD_SHUT) | (state == State.NOT_AVAILABLE) | ~available
+    barred = np.isin(state, BARRED) | ~available
     told = known[:, None]
     possible = _every(~barred | ~told) & _some(told & np.ones_like(barred))
     classes = np.full(possible.shape, NONE, dtype=np.int8)

@@ -6,13 +6,24 @@ edge).
 """
 
 from dataclasses import dataclass, field
+from enum import IntEnum
 
 import numpy as np
 from numpy.typing import NDArray
 
-from server.studies.shapes import Case, Stamp
+from server.studies.shapes import Case, PipeAge, Stamp
 
 Floats = NDArray[np.float64]
+Places = NDArray[np.int8]
+
+
+class Place(IntEnum):
+    """Where the water column breaks on the suction side; the nearest to the supply is told."""
+
+    NOWHERE = 0
+    CONNECTION = 1
+    SUCTION_GAUGE = 2
+    PUMP_EYE = 3
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,9 +56,12 @@ class SlotFacts:
     trim_ratio: float | None  # trimmed over tested diameter; None: not trimmed
     smoothing_residual: float | None  # [m] of the row furthest from a smoothed curve
     best_efficiency_flow: float | None  # [m3/s] at tested speed; None when unknown
+    best_efficiency_flow_by_rows: float | None  # [m3/s] top of the rows, beside a stated one
     best_efficiency: float | None
     shutoff_head: float | None  # [m] at tested speed
     last_flow: float  # [m3/s] last row
+    preferred_low: float  # ratio of best-efficiency flow, by the criteria
+    preferred_high: float
     allowable_low: float | None  # ratio of best-efficiency flow
     allowable_high: float | None
     minimum_flow: float  # ratio of best-efficiency flow
@@ -100,8 +114,9 @@ class DutyResult:
     lowest_speed: float
     highest_speed: float
     density: float
-    # [Pa] gauge, -(p_atm - p_v), below which there is no water; None without an altitude
-    lowest_pressure: float | None
+    # [Pa] gauge, -(p_atm - p_v), below which there is no water; without an altitude by the
+    # heaviest air there is
+    lowest_pressure: float
     cases: tuple[Case, ...]  # C
     shown: NDArray[np.bool_]  # (C,) the scenario's own supply state
     is_fire: NDArray[np.bool_]  # (C,) judged by the fire requirements
@@ -128,10 +143,14 @@ class DutyResult:
     wire_power: Floats  # (C, K, N) [W]
     point_pressure: Floats  # (C, K, P) gauge [Pa]
     point_grade: Floats  # (C, K, P) [m]
+    # (C, K, P) below a vacuum: no water there, and no pressure or grade stated
+    point_without_water: NDArray[np.bool_]
+    suction_breaks_at: Places  # (C,) Place without water on the suction side
     supply_grade: Floats  # (C,) grade of the supply at the demanded flow [m]
     connection_pressure: Floats  # (C,) gauge, at ground level at the connection [Pa]
     suction_pressure: Floats  # (C,) at the suction gauge [Pa]
     suction_grade: Floats  # (C,) at the suction manifold [m]
+    discharge_without_water: NDArray[np.bool_]  # (C, K) below a vacuum at the discharge gauge
     discharge_grade: Floats  # (C, K) at the discharge manifold [m]
     discharge_pressure: Floats  # (C, K) at the discharge gauge [Pa]
     zone_entry_grade: Floats  # (C, K) at the end of the main [m]
@@ -141,7 +160,10 @@ class DutyResult:
     discharge_branch_velocity: Floats  # (C, K, N) [m/s]
     pressure_per_speed: Floats  # (C, K) change of the held pressure for 1 % of speed [Pa]
     zero_flow_speed: Floats  # (C, K) speed that holds the set point at no flow, ratio
-    flow_at_end: Floats  # (C, K) first pump at its last row, top speed [m3/s]
+    # (C, K) first pump at its last row, at the speed that holds the head asked or the limit of
+    # speed before it [m3/s]
+    flow_at_end: Floats
+    speed_at_end: Floats  # (C, K) that speed, ratio
     energy_residual: Floats  # (C, K) [m]
     mass_residual: Floats  # (C, K) [m3/s]
     made: "MadeCases"
@@ -183,8 +205,28 @@ class AfterTrip:
     lost: tuple[str | None, ...]  # slot id that tripped
     state: NDArray[np.int8]  # (C,)
     best_efficiency_share: Floats  # (C,) largest among the units left
+    region_end: Floats  # (C,) upper end of the preferred region of that unit, same ratio
+    npsh_available: Floats  # (C,) of the unit left with the least margin [m]
+    npsh_required: Floats  # (C,) [m]
     point_pressure: Floats  # (C, P)
+    point_without_water: NDArray[np.bool_]  # (C, P)
     flow_at_end: Floats  # (C,) [m3/s]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class OnePumpAlone:
+    """Each of U kinds of pump alone at top speed and low supply, as far out as it can run."""
+
+    slots: tuple[str, ...]  # first slot of each kind
+    pipes: PipeAge
+    flow: Floats  # (U,) nan where it gives nothing into the zone at all [m3/s]
+    to_last_row: NDArray[np.bool_]  # (U,) else the zone, wide open, takes no more
+    suction_breaks_at: Places  # (U,) Place without water
+    suction_pressure: Floats  # (U,) at the suction gauge [Pa]
+    best_efficiency_share: Floats  # (U,)
+    npsh_available: Floats  # (U,) [m]
+    npsh_required: Floats  # (U,) [m]
+    shaft_power: Floats  # (U,) [W]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -226,5 +268,6 @@ class MadeCases:
     zero_flow: ZeroFlow | None = None
     station_off: StationOff | None = None
     after_trip: AfterTrip | None = None
+    one_pump_alone: OnePumpAlone | None = None
     handover: Handover | None = None
     firm_capacity: tuple[FirmCapacity, ...] = field(default=())

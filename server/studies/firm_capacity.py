@@ -16,6 +16,7 @@ from server.studies.lowering.lowered import Floats, Growth, LoweredSet
 from server.studies.set_ends import CommonSpeed
 
 PEAK_HOUR, FIRE = "peak_hour", "maximum_day_fire"
+SAME = 1e-6  # of a capacity: what roots are sought to, with room
 Counts = tuple[int, ...]  # how many of each unit
 
 
@@ -54,9 +55,9 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
             return solved[working(of, some), one.physics]
 
         without = [(left([i for i in installed if i != out]), out) for out in installed]
-        # among equals the last in slot order counts as the one that is out
-        worst, out = min(without, key=lambda pair: (pair[0].by_all, pair[0].by_head, -pair[1]))
+        worst, out = worst_out(without)
         by_head = min((pair[0] for pair in without), key=lambda capacity: capacity.by_head)
+        not_counted = dict.fromkeys(name for each, _ in without for name in each.not_counted)
         found.append(
             FirmCapacity(
                 requirement=one.name,
@@ -71,10 +72,23 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
                 all_running=left(installed).by_head,
                 best_efficiency_share=by_head.share,
                 runs_out=_runs_out(of, one, worst.by_all),
-                not_counted=worst.not_counted,
+                not_counted=tuple(not_counted),
             )
         )
     return tuple(found)
+
+
+def worst_out(without: Sequence[tuple[Capacity, int]]) -> tuple[Capacity, int]:
+    """Return the least capacity and the unit that is out: by all limits, then by head.
+
+    Where the suction side limits them all, capacities differ by rounding only: the choice goes
+    on by head, and among equals the last in slot order counts as the one that is out.
+    """
+    least = min(capacity.by_all for capacity, _ in without)
+    left = [pair for pair in without if pair[0].by_all <= least * (1 + SAME)]
+    least = min(capacity.by_head for capacity, _ in left)
+    left = [pair for pair in left if pair[0].by_head <= least * (1 + SAME)]
+    return max(left, key=lambda pair: pair[1])
 
 
 def _solve(

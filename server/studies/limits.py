@@ -2,6 +2,9 @@
 
 from dataclasses import dataclass
 
+import numpy as np
+
+from server.hydraulics.operating_region import preferred_ends
 from server.station.station import Station
 from server.studies.findings.criteria import criteria_of
 
@@ -34,12 +37,16 @@ class StudyLimits:
 
     def preferred_region(self, specific_speed: float | None) -> tuple[float, float]:
         """Return the preferred region at a metric specific speed, as ratios of BEP flow."""
-        if specific_speed is not None and specific_speed > self.high_specific_speed:
-            return (
+        low, high = preferred_ends(
+            np.nan if specific_speed is None else specific_speed,
+            ordinary=(self.preferred_low, self.preferred_high),
+            narrow=(
                 self.preferred_low_high_specific_speed,
                 self.preferred_high_high_specific_speed,
-            )
-        return self.preferred_low, self.preferred_high
+            ),
+            narrow_above=self.high_specific_speed,
+        )
+        return float(low), float(high)
 
 
 def limits_of(station: Station) -> StudyLimits:

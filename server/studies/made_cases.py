@@ -1,6 +1,7 @@
 """Cases always made besides the scenarios: shut zone, station off, trip, hand-over."""
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -10,7 +11,8 @@ from server.studies.combinations import Mask
 from server.studies.duty_result import AfterTrip, Handover, MadeCases, StationOff, ZeroFlow
 from server.studies.firm_capacity import firm_capacity
 from server.studies.limits import StudyLimits
-from server.studies.lowering.lowered import Floats, Indices, LoweredSet
+from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
+from server.studies.one_pump_alone import one_pump_alone
 from server.studies.set_ends import CommonSpeed, preferred_flows
 from server.studies.set_states import SetStates
 from server.studies.system_heads import SystemHeads, point_pressures, required_head
@@ -18,16 +20,25 @@ from server.studies.system_heads import SystemHeads, point_pressures, required_h
 LAST = 10**6  # order of a horizon after all: every slot is installed
 
 
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Left:
+    """What the units left by a trip do: they are themselves one of the combinations."""
+
+    pressure: Floats  # (C, K, P) [Pa]
+    without_water: Flags  # (C, K, P)
+    npsh_available: Floats  # (C, K, N) [m]
+
+
 def made_cases(
     of: LoweredSet, limits: StudyLimits, cases: Cases, heads: SystemHeads,
-    units: CommonSpeed, masks: Sequence[Mask], states: SetStates, pressure: Floats,
-    chosen: Indices, flow_at_end: Floats,
+    units: CommonSpeed, masks: Sequence[Mask], states: SetStates, left: Left, chosen: Indices,
 ) -> MadeCases:  # fmt: skip
     """Return the made cases of a set whose scenario cases are solved."""
     return MadeCases(
         zero_flow=zero_flow(of, masks),
         station_off=station_off(of, cases, heads),
-        after_trip=after_trip(of, cases, masks, states, pressure, chosen, flow_at_end),
+        after_trip=after_trip(of, cases, masks, states, left, chosen),
+        one_pump_alone=one_pump_alone(of),
         handover=handover(of, units, masks),
         firm_capacity=firm_capacity(of, limits),
     )
@@ -59,19 +70,29 @@ def zero_flow(of: LoweredSet, masks: Sequence[Mask]) -> ZeroFlow | None:
     top = control.highest_speed**2
     held = static + np.maximum(speed**2 * holding, 0.0)
     of_largest, of_all = static + top * shutoff[biggest], static + top * float(np.max(shutoff))
-    none = np.zeros((shift.size, len(of.points.facts)))
     return ZeroFlow(
-        point_pressure_held=point_pressures(of, held, none)[1],
+        point_pressure_held=_at_points(of, held),
         speed_held=speed,
         discharge_pressure_largest=_at_gauge(of, of_largest),
-        point_pressure_largest=point_pressures(of, of_largest, none)[1],
+        point_pressure_largest=_at_points(of, of_largest),
         discharge_pressure_all=_at_gauge(of, of_all),
-        point_pressure_all=point_pressures(of, of_all, none)[1],
+        point_pressure_all=_at_points(of, of_all),
     )
 
 
 def _at_gauge(of: LoweredSet, grade: Floats) -> Floats:
-    return of.water.weight * (grade - of.control.discharge_gauge_level)
+    return _pressure(of, of.water.weight * (grade - of.control.discharge_gauge_level))
+
+
+def _at_points(of: LoweredSet, grade: Floats) -> Floats:
+    """Return the pressure at each point with nothing flowing, (3, P)."""
+    none = np.zeros((grade.size, len(of.points.facts)))
+    return _pressure(of, point_pressures(of, grade, none)[1])
+
+
+def _pressure(of: LoweredSet, computed: Floats) -> Floats:
+    """Return a pressure where it can be one: nan below a vacuum."""
+    return np.where(computed < of.water.lowest_pressure, np.nan, computed)
 
 
 def station_off(of: LoweredSet, cases: Cases, heads: SystemHeads) -> StationOff:
@@ -93,8 +114,8 @@ def station_off(of: LoweredSet, cases: Cases, heads: SystemHeads) -> StationOff:
 
 
 def after_trip(
-    of: LoweredSet, cases: Cases, masks: Sequence[Mask], states: SetStates, pressure: Floats,
-    chosen: Indices, flow_at_end: Floats,
+    of: LoweredSet, cases: Cases, masks: Sequence[Mask], states: SetStates, left: Left,
+    chosen: Indices,
 ) -> AfterTrip:  # fmt: skip
     """Return the state of what is left when the largest running unit trips.
 
@@ -105,25 +126,33 @@ def after_trip(
     where = {mask: k for k, mask in enumerate(masks)}
     running = np.zeros(size, dtype=np.intp)
     state = np.full(size, State.NOT_AVAILABLE, dtype=np.int8)
-    share, end = np.full(size, np.nan), np.full(size, np.nan)
+    share, region_end, end, available, required = np.full((5, size), np.nan)
     points = np.full((size, len(of.points.facts)), np.nan)
+    dry = np.zeros(points.shape, dtype=np.bool_)
     lost: list[str | None] = []
     for c, k in enumerate(chosen):
         tripped = largest(of.slots, masks[k]) if k >= 0 else None
         lost.append(None if tripped is None else of.slots[tripped].facts.id)
-        left = tuple(i for i in masks[k] if i != tripped) if k >= 0 else ()
-        running[c] = len(left)
-        if not left:
+        rest = [i for i in masks[k] if i != tripped] if k >= 0 else []
+        running[c] = len(rest)
+        if not rest:
             continue
-        at = where[left]
+        at = where[tuple(rest)]
         state[c] = states.state[c, at]
-        of_left = states.slot["best_efficiency_share"][c, at, list(left)]
-        share[c] = np.max(of_left)
-        points[c] = pressure[c, at]
-        end[c] = flow_at_end[at]
+        far = rest[int(np.argmax(states.slot["best_efficiency_share"][c, at, rest]))]
+        share[c] = states.slot["best_efficiency_share"][c, at, far]
+        region_end[c] = of.slots[far].preferred[1]
+        margin = left.npsh_available[c, at, rest] - states.slot["npsh_required"][c, at, rest]
+        least = rest[int(np.argmin(margin))]
+        available[c] = left.npsh_available[c, at, least]
+        required[c] = states.slot["npsh_required"][c, at, least]
+        points[c], dry[c] = left.pressure[c, at], left.without_water[c, at]
+        end[c] = states.flow_at_end[c, at]
     return AfterTrip(
         cases=cases.cases, running=running, lost=tuple(lost), state=state,
-        best_efficiency_share=share, point_pressure=points, flow_at_end=end,
+        best_efficiency_share=share, region_end=region_end, npsh_available=available,
+        npsh_required=required, point_pressure=points, point_without_water=dry,
+        flow_at_end=end,
     )  # fmt: skip
 
 

@@ -1,30 +1,36 @@
 """The results of a station as JSON: the same bytes from the command and from the API.
 
 Every number is SI, its unit in its key. A float without meaning becomes null, and the object
-that holds it says why: the combination's state, "held_shut" for a unit that passes nothing, or
-"input_missing", with the missing paths under the set's `inputs_missing`.
+that holds it says why: the combination's state, "held_shut" for a unit that passes nothing,
+"no_water" where the computed pressure lies below a vacuum, or "input_missing", with the missing
+paths under the set's `inputs_missing`.
 """
 
 import json
-import math
-from collections.abc import Mapping
 from typing import cast
 
 from server import __version__
 from server.hydraulics.states import State
 from server.station.station import Station
 from server.studies.assess import Assessment
-from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.duty_result import DutyResult, NotSolved, Place
 from server.studies.findings import words
 from server.studies.findings.criteria import Criterion
 from server.studies.results_made import (
     after_trip_json,
     firm_capacity_json,
     handover_json,
+    one_pump_alone_json,
     station_off_json,
     zero_flow_json,
 )
-from server.studies.results_numbers import case_key, or_null
+from server.studies.results_numbers import (
+    MISSING,
+    NO_WATER,
+    case_key,
+    null_or_why,
+    or_null,
+)
 from server.studies.results_shape import (
     AmountJson,
     CaseJson,
@@ -63,8 +69,12 @@ SI_UNITS: dict[Dimension, str] = {
     Dimension.AREA: "m2",
 }
 # states in which the hydraulics give no numbers at all
-_WITHOUT_NUMBERS = (State.END_OF_CURVE, State.BELOW_STATIC, State.NOT_AVAILABLE)
-MISSING = "input_missing"
+_WITHOUT_NUMBERS = (
+    State.END_OF_CURVE,
+    State.BELOW_STATIC,
+    State.NOT_AVAILABLE,
+    State.NO_WATER,
+)
 
 
 def results_bytes(assessment: Assessment) -> bytes:
@@ -161,6 +171,7 @@ def _solved(result: DutyResult) -> SolvedSetJson:
         "zero_flow": zero_flow_json(result),
         "station_off": station_off_json(result),
         "after_trip": after_trip_json(result),
+        "one_pump_alone": one_pump_alone_json(result),
         "handover": handover_json(result),
         "firm_capacity": firm_capacity_json(result),
     }
@@ -168,7 +179,12 @@ def _solved(result: DutyResult) -> SolvedSetJson:
 
 def _case(result: DutyResult, c: int) -> CaseJson:
     chosen, fire_point = int(result.chosen[c]), int(result.fire_point[c])
-    numbers = _numbers(
+    place = Place(int(result.suction_breaks_at[c]))
+    main, suction = (
+        NO_WATER if broken else MISSING
+        for broken in (place is Place.CONNECTION, place is not Place.NOWHERE)
+    )
+    numbers = null_or_why(
         {
             "demand_m3_s": result.demand[c],
             "fire_flow_m3_s": result.fire_flow[c],
@@ -179,7 +195,11 @@ def _case(result: DutyResult, c: int) -> CaseJson:
             "suction_grade_m": result.suction_grade[c],
         },
         MISSING,
-    )
+        {
+            "supply_grade_m": main, "connection_pressure_pa": main, "required_head_m": suction,
+            "suction_pressure_pa": suction, "suction_grade_m": suction,
+        },
+    )  # fmt: skip
     case = {
         "case": case_key(result.cases[c]),
         "shown": bool(result.shown[c]),
@@ -204,7 +224,7 @@ def _combination(result: DutyResult, c: int, k: int) -> CombinationJson:
         "running": [result.slots[n].id for n in running],
         "state": state.name.lower(),
         "set_point_held": bool(result.set_point_held[c, k]),
-        **_numbers(
+        **null_or_why(
             {
                 "flow_m3_s": result.flow[c, k],
                 "station_head_m": result.station_head[c, k],
@@ -215,10 +235,17 @@ def _combination(result: DutyResult, c: int, k: int) -> CombinationJson:
                 "pressure_per_one_per_cent_speed_pa": result.pressure_per_speed[c, k],
                 "zero_flow_speed_ratio": result.zero_flow_speed[c, k],
                 "flow_at_end_of_curve_m3_s": result.flow_at_end[c, k],
+                "speed_at_end_of_curve_ratio": result.speed_at_end[c, k],
                 "energy_residual_m": result.energy_residual[c, k],
                 "mass_residual_m3_s": result.mass_residual[c, k],
             },
             without,
+            {
+                "discharge_pressure_pa": NO_WATER
+                if result.discharge_without_water[c, k]
+                else without,
+                "held_pressure_pa": NO_WATER if _held_is_dry(result, c, k) else without,
+            },
         ),
         "units": [_unit(result, c, k, n, without) for n in running],
         "points": [_point(result, c, k, p, without) for p in range(len(result.points))],
@@ -226,12 +253,20 @@ def _combination(result: DutyResult, c: int, k: int) -> CombinationJson:
     return cast(CombinationJson, combination)
 
 
+def _held_is_dry(result: DutyResult, c: int, k: int) -> bool:
+    """Return whether the place whose pressure is held has no water."""
+    ids = [point.id for point in result.points]
+    if result.held_point in ids:
+        return bool(result.point_without_water[c, k, ids.index(result.held_point)])
+    return bool(result.discharge_without_water[c, k])
+
+
 def _unit(result: DutyResult, c: int, k: int, n: int, without: str) -> UnitJson:
     # a leg held shut by the others passes exactly nothing, and its pump has no duty
     because = "held_shut" if result.leg_flow[c, k, n] == 0 else without
     unit = {
         "slot": result.slots[n].id,
-        **_numbers(
+        **null_or_why(
             {
                 "speed_ratio": result.speed[c, k, n],
                 "flow_m3_s": result.leg_flow[c, k, n],
@@ -251,23 +286,15 @@ def _unit(result: DutyResult, c: int, k: int, n: int, without: str) -> UnitJson:
 
 
 def _point(result: DutyResult, c: int, k: int, p: int, without: str) -> PointJson:
+    because = NO_WATER if result.point_without_water[c, k, p] else without
     point = {
         "point": result.points[p].id,
-        **_numbers(
+        **null_or_why(
             {
                 "pressure_pa": result.point_pressure[c, k, p],
                 "grade_m": result.point_grade[c, k, p],
             },
-            without,
+            because,
         ),
     }
     return cast(PointJson, point)
-
-
-def _numbers(values: Mapping[str, float], because: str) -> dict[str, object]:
-    """Return the numbers under their keys, null where one has no meaning, and then why."""
-    found: dict[str, object] = {name: or_null(value) for name, value in values.items()}
-    absent = [name for name, value in values.items() if not math.isfinite(value)]
-    if absent:
-        found["null_because"] = dict.fromkeys(absent, because)
-    return found

@@ -1,16 +1,31 @@
 """The cases that are always made, as JSON data."""
 
+from typing import cast
+
+import numpy as np
+from numpy.typing import NDArray
+
 from server.hydraulics.states import State
-from server.studies.duty_result import DutyResult
-from server.studies.results_numbers import by_point, case_key, or_null
+from server.studies.duty_result import DutyResult, Place
+from server.studies.results_numbers import (
+    MISSING,
+    NO_WATER,
+    by_point,
+    case_key,
+    null_or_why,
+    or_null,
+)
 from server.studies.results_shape import (
     AfterTripJson,
     FirmCapacityJson,
     HandoverJson,
+    OnePumpAloneJson,
     StationOffJson,
     ZeroFlowJson,
 )
 from server.studies.shapes import SUPPLY_STATES
+
+Flags = NDArray[np.bool_]
 
 
 def zero_flow_json(result: DutyResult) -> list[ZeroFlowJson] | None:
@@ -39,7 +54,7 @@ def station_off_json(result: DutyResult) -> list[StationOffJson] | None:
         return None
     found: list[StationOffJson] = []
     for c, case in enumerate(made.cases):
-        dry = [p.id for p, drains in zip(result.points, made.drains[c], strict=True) if drains]
+        dry = _dry(result, made.drains[c])
         pressures = by_point(result, made.arithmetic_pressure[c])
         found.append(
             {
@@ -64,11 +79,43 @@ def after_trip_json(result: DutyResult) -> list[AfterTripJson] | None:
             "units_left": int(made.running[c]),
             "state": State(int(made.state[c])).name.lower(),
             "best_efficiency_share_ratio": or_null(made.best_efficiency_share[c]),
+            "npsh_available_m": or_null(made.npsh_available[c]),
+            "npsh_required_m": or_null(made.npsh_required[c]),
             "point_pressure_pa": by_point(result, made.point_pressure[c]),
+            "without_water": _dry(result, made.point_without_water[c]),
             "flow_at_end_of_curve_m3_s": or_null(made.flow_at_end[c]),
         }
         for c, case in enumerate(made.cases)
     ]
+
+
+def one_pump_alone_json(result: DutyResult) -> list[OnePumpAloneJson] | None:
+    """Return each kind of pump alone, run out; None if low supply is not stated."""
+    made = result.made.one_pump_alone
+    if made is None:
+        return None
+    found = []
+    for u, slot in enumerate(made.slots):
+        dry = Place(int(made.suction_breaks_at[u])) is not Place.NOWHERE
+        row = {
+            "slot": slot,
+            "pipes": made.pipes,
+            "ends_at": "last_row" if made.to_last_row[u] else "open_zone",
+            **null_or_why(
+                {
+                    "flow_m3_s": made.flow[u],
+                    "suction_pressure_pa": made.suction_pressure[u],
+                    "best_efficiency_share_ratio": made.best_efficiency_share[u],
+                    "npsh_available_m": made.npsh_available[u],
+                    "npsh_required_m": made.npsh_required[u],
+                    "shaft_power_w": made.shaft_power[u],
+                },
+                MISSING,
+                {"suction_pressure_pa": NO_WATER, "npsh_available_m": NO_WATER} if dry else {},
+            ),
+        }
+        found.append(cast(OnePumpAloneJson, row))
+    return found
 
 
 def handover_json(result: DutyResult) -> list[HandoverJson] | None:
@@ -99,14 +146,20 @@ def firm_capacity_json(result: DutyResult) -> list[FirmCapacityJson]:
             "required_flow_m3_s": or_null(each.required_flow),
             "by_head_m3_s": or_null(each.by_head),
             "by_head_limit": each.by_head_limit,
-            "by_all_m3_s": or_null(each.by_all),
-            "by_all_limit": each.by_all_limit,
+            # with a limit that could not be counted it would only be a number too large
+            "by_all_m3_s": None if each.not_counted else or_null(each.by_all),
+            "by_all_limit": "not_checked" if each.not_counted else each.by_all_limit,
+            "not_counted": list(each.not_counted),
             "unit_out": each.unit_out,
             "all_running_m3_s": or_null(each.all_running),
             "runs_out_year": each.runs_out,
         }
         for each in result.made.firm_capacity
     ]
+
+
+def _dry(result: DutyResult, without: Flags) -> list[str]:
+    return [point.id for point, dry in zip(result.points, without, strict=True) if dry]
 
 
 def _slots(result: DutyResult, combination: int) -> list[str]:

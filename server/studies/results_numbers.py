@@ -1,11 +1,14 @@
 """Numbers and cases of a result as JSON data."""
 
 import math
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 
 from server.studies.duty_result import DutyResult
 from server.studies.results_shape import CaseKeyJson
 from server.studies.shapes import Case
+
+MISSING = "input_missing"  # why a number is null, where no state says it
+NO_WATER = "no_water"
 
 
 def or_null(value: float) -> float | None:
@@ -30,3 +33,24 @@ def by_point(result: DutyResult, values: Iterable[float]) -> dict[str, float | N
     return {
         point.id: or_null(value) for point, value in zip(result.points, values, strict=True)
     }
+
+
+def null_or_why(
+    values: Mapping[str, float], because: str, of: Mapping[str, str] | None = None
+) -> dict[str, object]:
+    """Return the numbers under their keys, null where one has no meaning, and then why.
+
+    Parameters
+    ----------
+    values : mapping
+        Numbers by key.
+    because : str
+        Why one of them has no meaning.
+    of : mapping, optional
+        Another reason, by key.
+    """
+    found: dict[str, object] = {name: or_null(value) for name, value in values.items()}
+    absent = [name for name, value in values.items() if not math.isfinite(value)]
+    if absent:
+        found["null_because"] = {name: (of or {}).get(name, because) for name in absent}
+    return found

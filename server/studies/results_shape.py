@@ -108,6 +108,7 @@ class CombinationJson(TypedDict):
     pressure_per_one_per_cent_speed_pa: float | None
     zero_flow_speed_ratio: float | None
     flow_at_end_of_curve_m3_s: float | None
+    speed_at_end_of_curve_ratio: float | None
     energy_residual_m: float | None
     mass_residual_m3_s: float | None
     units: list[UnitJson]
@@ -169,8 +170,27 @@ class AfterTripJson(TypedDict):
     units_left: int
     state: str
     best_efficiency_share_ratio: float | None
+    npsh_available_m: float | None
+    npsh_required_m: float | None
     point_pressure_pa: dict[str, float | None]
+    without_water: list[str]
     flow_at_end_of_curve_m3_s: float | None
+
+
+@with_config(CLOSED)
+class OnePumpAloneJson(TypedDict):
+    """One kind of pump alone at top speed and low supply, run out as far as it goes."""
+
+    slot: str
+    pipes: Literal["new", "aged"]
+    ends_at: Literal["last_row", "open_zone"]
+    flow_m3_s: float | None
+    suction_pressure_pa: float | None
+    best_efficiency_share_ratio: float | None
+    npsh_available_m: float | None
+    npsh_required_m: float | None
+    shaft_power_w: float | None
+    null_because: NotRequired[dict[str, str]]
 
 
 @with_config(CLOSED)
@@ -196,6 +216,7 @@ class FirmCapacityJson(TypedDict):
     by_head_limit: str
     by_all_m3_s: float | None
     by_all_limit: str
+    not_counted: list[str]
     unit_out: str
     all_running_m3_s: float | None
     runs_out_year: int | None
@@ -219,6 +240,7 @@ class SolvedSetJson(TypedDict):
     zero_flow: list[ZeroFlowJson] | None
     station_off: list[StationOffJson] | None
     after_trip: list[AfterTripJson] | None
+    one_pump_alone: list[OnePumpAloneJson] | None
     handover: list[HandoverJson] | None
     firm_capacity: list[FirmCapacityJson]
 

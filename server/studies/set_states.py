@@ -26,6 +26,8 @@ class SetStates:
     state: NDArray[np.int8]
     station_head: Floats  # [m]
     head_per_per_cent: Floats  # change of head at this flow for 1 % of speed [m]
+    flow_at_end: Floats  # of the set with the first unit at its last row [m3/s]
+    speed_at_end: Floats  # speed there: the one that holds the head asked, or its limit
     energy_residual: Floats  # [m]
     mass_residual: Floats  # [m3/s]
     slot: dict[str, Floats]  # the quantities of PER_SLOT
@@ -72,6 +74,8 @@ def solve_states(
         state=state,
         station_head=held.head * blank,
         head_per_per_cent=held.head_per_per_cent * blank,
+        flow_at_end=held.last_row_flow * blank,
+        speed_at_end=held.last_row_speed * blank,
         energy_residual=held.energy_residual * blank,
         mass_residual=held.mass_residual * blank,
         slot=slot,

@@ -10,7 +10,11 @@ from server.units import Dimension
 
 # codes of readings that inform about a criterion without judging it
 INFORMING = frozenset({"pressure_by_speed", "region_edge", "region_outside_in_fire"})
-NO_SUCH_CASE = ("npsh-margin-outside-min", "power-disagreement-max")
+NO_SUCH_CASE = (
+    "npsh-margin-outside-min",
+    "power-disagreement-max",
+    "best-efficiency-difference-max",
+)
 # rules judged by a finding rather than by one number against another
 BY_FINDING = frozenset({"station-off-pressure-min", "gap-narrow"})
 NOT_COMPUTED = {
@@ -76,8 +80,10 @@ def _row(
     else:
         worst = min(readings, key=lambda r: r.relative_margin)
     return ComplianceRow(
-        criterion, worst.verdict, worst.required, worst.provided, worst.case, worst.subject
-    )
+        criterion, worst.verdict, limit if worst.without_number else worst.required,
+        worst.provided, worst.case, worst.subject,
+        "no water there" if worst.without_number else "",
+    )  # fmt: skip
 
 
 def _by_finding(

@@ -10,6 +10,10 @@ INPUT_CODES: tuple[FindingCode, ...] = (
          "The slow-down limiter at {required} acts in {case}, where the suction falls to "
          "{provided}: what "
          "flow is then left is not computed in this version{also}."),
+    code("firm_not_checked", "firm capacity not checked", "supply",
+         "Firm capacity of {set} is not checked against every limit of the suction side, "
+         "because "
+         "{absent_words}."),
     code("station_off_not_checked", "station off not checked", "sets",
          "With the station off, at {point} {water_words} ({case}). Not checked further, "
          "because {standby_words}."),

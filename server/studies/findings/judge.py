@@ -5,13 +5,16 @@ from dataclasses import dataclass
 from server.station.station import Station
 from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.findings.criteria import Criterion
+from server.studies.findings.judge_after_trip import judge_after_trip
 from server.studies.findings.judge_capacity import judge_capacity
 from server.studies.findings.judge_control import judge_control
 from server.studies.findings.judge_inputs import judge_inputs, judge_missing
+from server.studies.findings.judge_npsh import judge_npsh
 from server.studies.findings.judge_pipes import judge_pipes
 from server.studies.findings.judge_pressures import judge_pressures
 from server.studies.findings.judge_pumps import judge_pumps
 from server.studies.findings.judge_region import judge_region
+from server.studies.findings.judge_shut_off import judge_shut_off, levels_not_given
 from server.studies.findings.judge_staging import judge_staging
 from server.studies.findings.judge_suction import judge_suction
 from server.studies.findings.judge_supply import draws_of, judge_supply
@@ -20,7 +23,9 @@ from server.studies.findings.reading import Reading, broken, findings_from
 from server.studies.findings.registry import order_of
 from server.studies.shapes import SEVERITY_ORDER, Finding
 
-REQUIREMENTS = frozenset({"pressure_low", "fire_pressure_low", "hydrant_residual_low"})
+REQUIREMENTS = frozenset(
+    {"pressure_low", "fire_pressure_low", "hydrant_residual_low", "no_water_at_point"}
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,24 +68,25 @@ def judge(
 
 def _of_set(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
     """Return readings and direct findings of one set."""
-    readings, findings = judge_pressures(judged)
+    readings = judge_pressures(judged)
     failing = frozenset(
         reading.case
         for reading in readings
         if reading.case is not None and reading.code in REQUIREMENTS and broken(reading)
     )
     suction = judge_suction(judged)
-    readings.extend(suction)
+    for more in (suction, judge_npsh(judged), judge_shut_off(judged), judge_region(judged)):
+        readings.extend(more)
+    findings = [*levels_not_given(judged), *judge_staging(judged)]
     for more, found in (
-        judge_region(judged),
         judge_control(judged, failing),
         judge_capacity(judged, suction),
+        judge_after_trip(judged),
         judge_pumps(judged),
         judge_pipes(judged),
     ):
         readings.extend(more)
         findings.extend(found)
-    findings.extend(judge_staging(judged))
     return readings, findings
 
 

@@ -35,7 +35,45 @@ def judge_capacity(
     readings = [firm_reading(judged, firm, told) for firm in judged.result.made.firm_capacity]
     readings.append(_units(judged))
     off = judged.result.made.station_off
-    return readings, [] if off is None else list(_station_off(judged, off))
+    findings = list(_not_checked(judged))
+    return readings, findings if off is None else [*findings, *_station_off(judged, off)]
+
+
+def _not_checked(judged: JudgedSet) -> Iterator[Finding]:
+    """Yield that a limit could not be counted: then a capacity that seems enough may not be."""
+    open_ = [firm for firm in judged.result.made.firm_capacity if is_open(firm)]
+    if not open_:
+        return
+    limits = dict.fromkeys(name for firm in open_ for name in firm.not_counted)
+    yield Finding(
+        code="firm_not_checked", severity=Severity.NOT_CHECKED, subject=judged.path,
+        pump_set=judged.id, criterion=judged.criterion("firm-units-out"),
+        governing=firm_case(judged, open_[0]),
+        cases=tuple(firm_case(judged, firm) for firm in open_),
+        names=(("set", judged.title),), basis="firm-units-out",
+        mend=tuple(path for name in limits for path in _fields_of(judged, name)),
+        because="absent",
+    )  # fmt: skip
+
+
+def is_open(firm: FirmCapacity) -> bool:
+    """Return whether a capacity is enough by the limits that are known, but not by all."""
+    return bool(firm.not_counted) and firm.by_all >= firm.required_flow
+
+
+def _fields_of(judged: JudgedSet, limit: str) -> tuple[Path, ...]:
+    """Return the absent fields for want of which a limit could not be counted."""
+    bases: tuple[Path, ...] = {
+        "connection": ("/supply/connection_level",),
+        "suction_gauge": ("/site/suction_gauge_level",),
+        "npsh": ("/site/eye_level", "/site/altitude", "/pumps/"),
+    }.get(limit, (f"/zone/points/{limit.removeprefix('point:')}/",))
+    return tuple(
+        path
+        for path, reason in judged.result.needs_missing
+        if path.startswith(bases)
+        and reason == ("no_npsh_rows" if path.startswith("/pumps/") else "absent")
+    )
 
 
 def firm_case(judged: JudgedSet, firm: FirmCapacity) -> Case:
@@ -53,7 +91,7 @@ def firm_reading(judged: JudgedSet, firm: FirmCapacity, told: bool) -> Reading:
         code="told_elsewhere" if by_suction and told else FIRM_CODES[firm.requirement],
         severity=Severity.FAIL, subject=judged.path, pump_set=judged.id,
         criterion=judged.criterion("firm-units-out"), case=firm_case(judged, firm),
-        provided=amount("firm", firm.by_all, D.FLOW),
+        provided=amount("firm", None if is_open(firm) else firm.by_all, D.FLOW),
         required=amount("required", firm.required_flow, D.FLOW), sense="at_least",
         others=(amount("by_head", firm.by_head, D.FLOW),
                 amount("short", firm.required_flow - firm.by_all, D.FLOW)),

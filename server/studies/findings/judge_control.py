@@ -6,7 +6,7 @@ import numpy as np
 
 from server.hydraulics.states import State
 from server.studies.findings.judged_set import JudgedSet, amount
-from server.studies.findings.reading import Reading, broken
+from server.studies.findings.reading import Reading, Sense, broken
 from server.studies.shapes import Case, Finding, Path, Severity
 from server.units import Dimension as D
 
@@ -76,33 +76,28 @@ def _held_words(judged: JudgedSet) -> str:
 def _trips(judged: JudgedSet) -> Iterator[Reading]:
     """Yield suction and discharge pressures against the trips: a trip that acts is a stop."""
     trips, result = judged.entered.trips, judged.result
-    for c, k in judged.stated:
-        for field, quantity, pressure, sense in (
-            (
-                "low_suction_trip",
-                trips.low_suction_trip,
-                result.suction_pressure[c],
-                "at_least",
-            ),
-            (
-                "high_discharge_trip",
-                trips.high_discharge_trip,
-                result.discharge_pressure[c, k],
-                "at_most",
-            ),
-        ):
-            if quantity is None:
-                continue
-            path = f"{judged.path}/trips/{field}"
-            yield Reading(
-                code="trip_reached", severity=Severity.STOP, subject=path, pump_set=judged.id,
-                criterion=None, case=judged.case(c),
-                provided=amount("pressure", float(pressure), D.PRESSURE, 0),
-                required=amount("trip", quantity.si, D.PRESSURE),
-                sense="at_least" if sense == "at_least" else "at_most", mend=(path,),
-                names=(("set", judged.title),
-                       ("side", "suction" if sense == "at_least" else "discharge")),
-            )  # fmt: skip
+    if trips.low_suction_trip is not None:
+        for c in judged.supplied:
+            yield _trip(judged, c, "low_suction_trip", trips.low_suction_trip.si,
+                        float(result.suction_pressure[c]), "at_least")  # fmt: skip
+    if trips.high_discharge_trip is not None:
+        for c, k in judged.stated:
+            yield _trip(judged, c, "high_discharge_trip", trips.high_discharge_trip.si,
+                        float(result.discharge_pressure[c, k]), "at_most")  # fmt: skip
+
+
+def _trip(
+    judged: JudgedSet, c: int, field: str, level: float, pressure: float, sense: Sense
+) -> Reading:
+    path = f"{judged.path}/trips/{field}"
+    return Reading(
+        code="trip_reached", severity=Severity.STOP, subject=path, pump_set=judged.id,
+        criterion=None, case=judged.case(c),
+        provided=amount("pressure", pressure, D.PRESSURE, 0),
+        required=amount("trip", level, D.PRESSURE), sense=sense, mend=(path,),
+        names=(("set", judged.title),
+               ("side", "suction" if sense == "at_least" else "discharge")),
+    )  # fmt: skip
 
 
 def _limiter(judged: JudgedSet) -> Iterator[Finding]:
@@ -111,7 +106,7 @@ def _limiter(judged: JudgedSet) -> Iterator[Finding]:
     if level is None:
         return
     path = f"{judged.path}/trips/low_suction_slow_down"
-    acting = [c for c, _ in judged.stated if judged.result.suction_pressure[c] < level.si]
+    acting = [c for c in judged.supplied if judged.result.suction_pressure[c] < level.si]
     if acting:
         worst = min(acting, key=lambda c: float(judged.result.suction_pressure[c]))
         yield Finding(

@@ -4,17 +4,20 @@ from collections.abc import Iterator
 
 import numpy as np
 
+from server.hydraulics.conduit import HazenWilliamsRange, hazen_williams_range
+from server.hydraulics.fittings import FULL_OPEN_VELOCITY
 from server.station.conduit import Reach
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import Reading
 from server.studies.shapes import Case, Finding, Path, Severity
 from server.units import Dimension as D
 
-# Hazen-Williams is an empirical fit: outside these the loss is not to be trusted
-HAZEN_WILLIAMS_BORE = (0.050, 1.850)  # [m]
-HAZEN_WILLIAMS_VELOCITY = 3.0  # [m/s]
-HAZEN_WILLIAMS_C = 100.0
-FULL_OPEN_ASSUMED = 1.5  # [m/s] common practice
+_RANGE_WORDS: dict[int, str] = {
+    HazenWilliamsRange.INSIDE: "",
+    HazenWilliamsRange.BORE: "bore",
+    HazenWilliamsRange.VELOCITY: "velocity",
+    HazenWilliamsRange.COEFFICIENT: "coefficient",
+}
 
 
 def judge_pipes(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
@@ -38,7 +41,8 @@ def _velocity(
 
 def _lines(judged: JudgedSet) -> Iterator[Reading]:
     result, station = judged.result, judged.station
-    for c, _ in judged.stated:
+    # in a closed zone the demand is imposed, so lines are judged by it whatever the pumps do
+    for c in judged.supplied:
         for r, reach in enumerate(station.suction_line.reaches):
             path = f"/suction_line/reaches/{reach.id}"
             yield _velocity(judged, "suction_line_fast", "suction-line-velocity-max", path,
@@ -110,17 +114,15 @@ def _hazen_williams(judged: JudgedSet) -> Iterator[Finding]:
 
 
 def _outside_law(reach: Reach, fastest: float) -> str:
-    bore = 0.0 if reach.bore is None else reach.bore.si
-    lowest_c = min(
-        (c for c in (reach.roughness.coefficient_new,
-                     reach.roughness.coefficient_aged) if c is not None),
-        default=HAZEN_WILLIAMS_C,
-    )  # fmt: skip
-    if not HAZEN_WILLIAMS_BORE[0] <= bore <= HAZEN_WILLIAMS_BORE[1]:
-        return "bore"
-    if fastest > HAZEN_WILLIAMS_VELOCITY:
-        return "velocity"
-    return "coefficient" if lowest_c < HAZEN_WILLIAMS_C else ""
+    """Return in one word what puts a reach outside the range of Hazen-Williams, else ""."""
+    typed = (reach.roughness.coefficient_new, reach.roughness.coefficient_aged)
+    known = [coefficient for coefficient in typed if coefficient is not None]
+    found = hazen_williams_range(
+        fastest,
+        bore=np.nan if reach.bore is None else reach.bore.si,
+        coefficient=min(known, default=np.nan),
+    )
+    return _RANGE_WORDS[int(found)]
 
 
 def _check_valves(judged: JudgedSet) -> Iterator[Finding]:
@@ -139,7 +141,7 @@ def _check_valves(judged: JudgedSet) -> Iterator[Finding]:
         if leg.id not in per_leg:
             continue
         typed = leg.discharge_branch.full_open_velocity
-        needed = FULL_OPEN_ASSUMED if typed is None else typed.si
+        needed = FULL_OPEN_VELOCITY if typed is None else typed.si
         below = sorted(v for v in per_leg[leg.id] if v[0] < needed)
         if not below or np.isnan(below[0][0]):
             continue

@@ -25,6 +25,7 @@ def judge_pumps(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
         seen.add(path)
         readings.extend(_shape(judged, n, path))
         readings.extend(_motor(judged, n))
+        readings.extend(_best_efficiency(judged, n, path))
         pump, curve = _entered(judged, n)
         if pump is not None and curve is not None:
             readings.extend(_rows(judged, n, path, curve))
@@ -70,6 +71,23 @@ def _shape(judged: JudgedSet, n: int, path: Path) -> Iterator[Reading]:
                        amount("last", slot.last_flow / slot.best_efficiency_flow, D.RATIO, 0),
                        amount("required", judged.limit("curve-last-row-min"), D.RATIO, 0), True,
                        table, path)  # fmt: skip
+
+
+def _best_efficiency(judged: JudgedSet, n: int, path: Path) -> Iterator[Reading]:
+    """Yield how far the maker's best-efficiency flow lies from that of the rows."""
+    slot, field = judged.slots[n], f"{path}/best_efficiency_flow"
+    _, curve = _entered(judged, n)
+    if curve is None or curve.best_efficiency_flow is None:
+        return
+    stated, by_rows = slot.best_efficiency_flow, slot.best_efficiency_flow_by_rows
+    if stated is None or by_rows is None:
+        return  # the rows show no top: what is stated is all there is
+    key = "best-efficiency-difference-max"
+    yield _reading(judged, n, "best_efficiency_disagrees", Severity.CAUTION, key,
+                   amount("difference", abs(stated / by_rows - 1.0), D.RATIO, 1),
+                   amount("required", judged.limit(key), D.RATIO, 0), False,
+                   (field, f"{path}/table"),
+                   path).varied(others=(amount("by_rows", by_rows, D.FLOW),))  # fmt: skip
 
 
 def _motor(judged: JudgedSet, n: int) -> Iterator[Reading]:

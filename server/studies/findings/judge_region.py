@@ -2,20 +2,22 @@
 
 from collections.abc import Iterator
 
+import numpy as np
+
 from server.hydraulics.states import State
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import Reading, Sense
-from server.studies.shapes import Finding, Path, Region, Severity
+from server.studies.shapes import Path, Region, Severity
 from server.units import Dimension as D
 
 
-def judge_region(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
-    """Return readings of every running pump, and the cases that have no duty."""
-    readings: list[Reading] = []
+def judge_region(judged: JudgedSet) -> list[Reading]:
+    """Return readings of every running pump, and of the cases that have no duty."""
+    readings = list(_without_duty(judged))
     for c, k in judged.stated:
         for n, title in judged.running_kinds(c, k):
             readings.extend(_of_pump(judged, c, k, n, title))
-    return readings, list(_without_duty(judged))
+    return readings
 
 
 def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[Reading]:
@@ -44,7 +46,7 @@ def _of_pump(judged: JudgedSet, c: int, k: int, n: int, title: str) -> Iterator[
         provided=amount("share", share, D.RATIO, _decimals(share, high)),
         required=amount("required", high, D.RATIO, 0), mend=_mend(judged, n, left=False),
     )  # fmt: skip
-    if not fire and judged.region(n, share) is Region.EDGE:
+    if not fire and judged.region_in(c, k, n) is Region.EDGE:
         yield _edge(judged, common, share, low, high)
     yield from _further_ends(judged, common, n, share)
 
@@ -100,47 +102,47 @@ def _further_ends(
     )  # fmt: skip
 
 
-def _without_duty(judged: JudgedSet) -> Iterator[Finding]:
-    """Yield one finding for each way in which cases have no duty."""
-    groups: dict[str, list[int]] = {}
-    for c in judged.unstated:
-        groups.setdefault(_why(judged, c), []).append(c)
-    for code, cases in groups.items():
-        cases.sort(key=lambda c: -float(judged.result.demand[c]))
-        worst = cases[0]
-        end = _flow_at_end(judged, worst)
-        yield Finding(
+def _without_duty(judged: JudgedSet) -> Iterator[Reading]:
+    """Yield the cases without a duty, the largest demand first, each with why."""
+    result = judged.result
+    for c in sorted(judged.unstated, key=lambda c: -float(result.demand[c])):
+        code = _why(judged, c)
+        if code is None:
+            continue  # there is no water to pump: the suction side tells it
+        end, speed = _end(judged, c)
+        demand = float(result.demand[c])
+        yield Reading(
             code=code, severity=Severity.STOP, subject=judged.path, pump_set=judged.id,
-            governing=judged.case(worst), cases=tuple(judged.case(c) for c in cases),
-            provided=amount("flow_at_end", end, D.FLOW),
-            required=amount("demand", float(judged.result.demand[worst]), D.FLOW),
-            names=(("set", judged.title),), basis="physics", mend=_mend_no_duty(judged, code),
+            criterion=None, case=judged.case(c), provided=amount("flow_at_end", end, D.FLOW),
+            required=amount("demand", demand, D.FLOW), sense="at_least",
+            without_number=code != "end_of_curve" or not end < demand,
+            others=(amount("speed", speed, D.RATIO, 0),), names=(("set", judged.title),),
+            mend=_mend_no_duty(judged, code),
         )  # fmt: skip
 
 
-def _why(judged: JudgedSet, c: int) -> str:
+def _why(judged: JudgedSet, c: int) -> str | None:
     result = judged.result
     k = int(result.chosen[c])
-    states = (
-        {State(int(result.state[c, k]))}
-        if k >= 0
-        else {
-            State(int(s))
-            for s, on in zip(result.state[c], result.available[c], strict=True)
-            if on
-        }
-    )
+    seen = result.state[c, k : k + 1] if k >= 0 else result.state[c, result.available[c]]
+    states = {State(int(state)) for state in seen}
+    if State.NO_WATER in states:
+        return None
     if State.END_OF_CURVE in states:
         return "end_of_curve"
     # a combination with a unit held shut is never chosen: all that may run have one
     return "held_shut" if states & {State.BELOW_STATIC, State.HELD_SHUT} else "no_unit"
 
 
-def _flow_at_end(judged: JudgedSet, c: int) -> float:
-    ends = judged.result.flow_at_end[c]
-    on = judged.result.available[c]
-    known = [float(end) for end, used in zip(ends, on, strict=True) if used and end == end]
-    return max(known, default=float("nan"))
+def _end(judged: JudgedSet, c: int) -> tuple[float, float]:
+    """Return the flow at which the curves end, and at which speed, of what would run."""
+    result, k = judged.result, int(judged.result.chosen[c])
+    if k < 0:
+        ends = np.where(result.available[c], result.flow_at_end[c], np.nan)
+        if not np.isfinite(ends).any():
+            return float("nan"), float("nan")
+        k = int(np.nanargmax(ends))
+    return float(result.flow_at_end[c, k]), float(result.speed_at_end[c, k])
 
 
 def _mend_no_duty(judged: JudgedSet, code: str) -> tuple[Path, ...]:

@@ -1,27 +1,21 @@
-"""Changes of the running set: hand-over between numbers of units, a unit lost in service."""
+"""Changes of the running set: hand-over between numbers of units, and gaps between them."""
 
 from collections.abc import Iterator
 
 import numpy as np
 
-from server.hydraulics.states import State
-from server.studies.duty_result import AfterTrip, Floats, Handover
-from server.studies.findings.case_words import scenario_title
-from server.studies.findings.judged_set import STATED, JudgedSet, amount
-from server.studies.shapes import SUPPLY_STATES, Case, Finding, Severity
+from server.studies.duty_result import Floats, Handover
+from server.studies.findings.judged_set import JudgedSet, amount
+from server.studies.shapes import SUPPLY_STATES, Finding, Severity
 from server.units import Dimension as D
 
 MADE_HANDOVER = "hand-over"
 
 
 def judge_staging(judged: JudgedSet) -> list[Finding]:
-    """Return the gaps and hand-overs, and what the units left by a trip do."""
-    found: list[Finding] = []
-    if judged.result.made.handover is not None:
-        found.extend(_handovers(judged, judged.result.made.handover))
-    if judged.result.made.after_trip is not None:
-        found.extend(_after_trip(judged, judged.result.made.after_trip))
-    return found
+    """Return the gaps and hand-overs between numbers of units."""
+    handover = judged.result.made.handover
+    return [] if handover is None else list(_handovers(judged, handover))
 
 
 def _handovers(judged: JudgedSet, handover: Handover) -> Iterator[Finding]:
@@ -104,57 +98,3 @@ def _by_share(judged: JudgedSet, handover: Handover, h: int) -> Finding:
         basis="physics",
         mend=(f"{judged.curve_path(before)}/table", f"{judged.curve_path(n)}/table"),
     )  # fmt: skip
-
-
-def _after_trip(judged: JudgedSet, after: AfterTrip) -> Iterator[Finding]:
-    """Yield the cases in which the units left pass the end of their curve.
-
-    That they leave their preferred region is no finding: fewest units run, so one less is
-    always to the right of it. How far they go while still on the curve is told beside.
-    """
-    states = {
-        i: State(int(after.state[i])) for i in range(len(after.cases)) if after.running[i] > 0
-    }
-    ended = [i for i, state in states.items() if state is State.END_OF_CURVE]
-    if not ended:
-        return
-    on_curve = [i for i, state in states.items() if state in STATED]
-    furthest = max(on_curve, key=lambda i: float(after.best_efficiency_share[i]), default=None)
-    worst = max(ended, key=lambda i: _demand(judged, after.cases[i]))
-    share = float("nan") if furthest is None else float(after.best_efficiency_share[furthest])
-    beside = share > judged.limit("preferred-region-high")
-    names = dict(_trip_names(judged, after, worst))
-    if beside and furthest is not None and not names["state"]:
-        names["state"] = "beside"
-        names["share_case"] = scenario_title(judged.station, after.cases[furthest])
-    yield Finding(
-        code="after_trip_end_of_curve", severity=Severity.CAUTION, subject=judged.path,
-        pump_set=judged.id, governing=after.cases[worst],
-        cases=tuple(after.cases[i] for i in ended),
-        provided=amount("flow_at_end", float(after.flow_at_end[worst]), D.FLOW),
-        required=amount("demand", _demand(judged, after.cases[worst]), D.FLOW),
-        others=(amount("share", share, D.RATIO, 0),), names=tuple(names.items()),
-        basis="physics",
-        mend=(*_tables(judged), f"{judged.path}/slots"),
-    )  # fmt: skip
-
-
-def _trip_names(judged: JudgedSet, after: AfterTrip, i: int) -> tuple[tuple[str, str], ...]:
-    standby = [slot.title for slot in judged.slots if slot.role == "standby"]
-    lost = {slot.id: slot.title for slot in judged.slots}.get(after.lost[i] or "", "a unit")
-    return (
-        ("set", judged.title), ("lost", lost), ("left", str(int(after.running[i]))),
-        ("standby", " or ".join(standby)), ("state", "" if standby else "no-standby"),
-    )  # fmt: skip
-
-
-def _demand(judged: JudgedSet, case: Case) -> float:
-    for c, each in enumerate(judged.result.cases):
-        if (each.scenario, each.supply) == (case.scenario, case.supply):
-            return float(judged.result.demand[c])
-    return float("nan")
-
-
-def _tables(judged: JudgedSet) -> tuple[str, ...]:
-    order = sorted(range(len(judged.slots)), key=lambda n: judged.slots[n].role == "jockey")
-    return tuple(dict.fromkeys(f"{judged.curve_path(n)}/table" for n in order))

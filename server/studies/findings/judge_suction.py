@@ -1,20 +1,28 @@
-"""The suction side: supplying main, suction gauge, supplying zone, NPSH, suction lift."""
+"""The suction side: supplying main, suction gauge, suction lift, and where no water is left.
+
+In a closed zone the demand is imposed: what it leaves of the supply is known, and judged,
+whether or not the pumps have a duty.
+"""
 
 from collections.abc import Iterator
 
-from server.studies.duty_result import FirmCapacity
+from server.studies.duty_result import FirmCapacity, Place
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import TOLD_ELSEWHERE, Reading, broken
-from server.studies.shapes import Amount, Path, Severity
+from server.studies.shapes import Amount, Case, Path, Severity
 from server.units import Dimension as D
 
 SUCTION_LIMITS = ("connection", "suction_gauge")
+_PLACES = {
+    Place.CONNECTION: "the connection to the supplying main",
+    Place.SUCTION_GAUGE: "the suction gauge",
+    Place.PUMP_EYE: "the pump eye",
+}
 
 
 def judge_suction(judged: JudgedSet) -> list[Reading]:
     """Return the readings of the suction side in every case."""
-    readings = [*_main_and_gauge(judged), *_net_head(judged), *_lift(judged)]
-    return readings
+    return [*_without_water(judged), *_main_and_gauge(judged), *_lift(judged)]
 
 
 def suction_capacity(judged: JudgedSet) -> FirmCapacity | None:
@@ -28,6 +36,63 @@ def suction_capacity(judged: JudgedSet) -> FirmCapacity | None:
     return max(short, key=lambda firm: firm.required_flow - firm.by_all, default=None)
 
 
+def no_water(judged: JudgedSet, case: Case, place: Place) -> Reading:
+    """Return that there is no water to pump, and where: no number can say by how much."""
+    bores = judged.suction_bores
+    mend = {
+        Place.CONNECTION: (low_state(judged), "/supply/connection_level"),
+        Place.SUCTION_GAUGE: (low_state(judged), *bores, "/site/suction_gauge_level"),
+        Place.PUMP_EYE: (low_state(judged), "/site/eye_level", *bores),
+    }[place]
+    return Reading(
+        code="no_water_at_suction", severity=Severity.STOP, subject="/supply",
+        pump_set=judged.id, criterion=None, case=case, sense="at_least", without_number=True,
+        provided=amount("pressure", None, D.PRESSURE),
+        required=amount("required", judged.result.lowest_pressure, D.PRESSURE), mend=mend,
+        names=(("place", _PLACES[place]), ("set", judged.title)),
+    )  # fmt: skip
+
+
+def _without_water(judged: JudgedSet) -> Iterator[Reading]:
+    """Yield the cases without water to pump, the largest demand first, and what they break."""
+    criteria = [
+        judged.criterion(key)
+        for key in ("suction-main-minimum", "suction-gauge-minimum", "suction-lift-max")
+    ]
+    for c in sorted(judged.dry, key=lambda c: -float(judged.result.demand[c])):
+        reading = no_water(judged, judged.case(c), judged.dry[c])
+        yield reading
+        for criterion in criteria:
+            yield reading.varied(code=TOLD_ELSEWHERE, criterion=criterion)
+
+
+def _below_atmosphere(judged: JudgedSet, c: int) -> Iterator[Reading]:
+    """Yield a suction side that sucks at its pipes, at the place nearest to the supply."""
+    for pressure, place in (
+        (float(judged.result.connection_pressure[c]), Place.CONNECTION),
+        (float(judged.result.suction_pressure[c]), Place.SUCTION_GAUGE),
+    ):
+        if pressure < 0:
+            yield below_atmosphere(
+                judged, judged.case(c), "/supply", _PLACES[place], pressure,
+                (low_state(judged), *judged.suction_bores),
+            )  # fmt: skip
+            return
+
+
+def below_atmosphere(
+    judged: JudgedSet, case: Case, subject: Path, place: str, pressure: float,
+    mend: tuple[Path, ...],
+) -> Reading:  # fmt: skip
+    """Return that a pressure is below that of the air: dirty water can be drawn in."""
+    return Reading(
+        code="below_atmosphere", severity=Severity.FAIL, subject=subject, pump_set=judged.id,
+        criterion=None, case=case, provided=amount("pressure", pressure, D.PRESSURE, 0),
+        required=amount("required", 0.0, D.PRESSURE), sense="at_least", mend=mend,
+        names=(("place", place), ("set", judged.title)), at_limit_share=0.0,
+    )  # fmt: skip
+
+
 def _main_and_gauge(judged: JudgedSet) -> Iterator[Reading]:
     """Yield one reading a case: the worse of main and gauge, so that one cause is one finding.
 
@@ -35,13 +100,14 @@ def _main_and_gauge(judged: JudgedSet) -> Iterator[Reading]:
     under its limit, with the gauge beside it, else under the gauge's row.
     """
     firm = suction_capacity(judged)
-    for c, _ in judged.stated:
+    for c in judged.supplied:
+        yield from _below_atmosphere(judged, c)
         main = _suction(judged, c, "suction-main-minimum",
                         float(judged.result.connection_pressure[c]),
-                        (_low_state(judged), "/supply/connection_level"))  # fmt: skip
+                        (low_state(judged), "/supply/connection_level"))  # fmt: skip
         gauge = _suction(judged, c, "suction-gauge-minimum",
                          float(judged.result.suction_pressure[c]),
-                         (_low_state(judged), *_suction_bores(judged),
+                         (low_state(judged), *judged.suction_bores,
                           "/site/suction_gauge_level"))  # fmt: skip
         beside = _consequences(firm)
         if broken(main):
@@ -89,7 +155,7 @@ def _suction(
     )  # fmt: skip
 
 
-def _low_state(judged: JudgedSet) -> Path:
+def low_state(judged: JudgedSet) -> Path:
     """Return the field that lifts the supply in its low state."""
     if judged.station.supply.kind == "grade_line":
         return "/supply/grade_line/low"
@@ -98,50 +164,12 @@ def _low_state(judged: JudgedSet) -> Path:
     return "/supply/states/low"
 
 
-def _suction_bores(judged: JudgedSet) -> tuple[Path, ...]:
-    return judged.suction_bores
-
-
-def _net_head(judged: JudgedSet) -> Iterator[Reading]:
-    """Yield NPSH of every running unit: broken, by ratio, by margin."""
-    result, limits = judged.result, judged
-    for c, k in judged.stated:
-        for n, title in judged.running_kinds(c, k):
-            available = float(result.npsh_available[c, k, n])
-            required = float(result.npsh_required[c, k, n])
-            if available != available or required != required:
-                continue
-            outside = not judged.inside(n, float(result.best_efficiency_share[c, k, n]))
-            margin_key = "npsh-margin-outside-min" if outside else "npsh-margin-min"
-            by_ratio = limits.limit("npsh-ratio-min") * required
-            by_margin = required + limits.limit(margin_key)
-            key = "npsh-ratio-min" if by_ratio >= by_margin else margin_key
-            common = Reading(
-                code="npsh_broken", severity=Severity.STOP, subject=judged.slot_path(n),
-                pump_set=judged.id, criterion=None, case=judged.case(c),
-                provided=amount("available", available, D.HEAD),
-                required=amount("required", required, D.HEAD), sense="at_least",
-                mend=(_low_state(judged), "/site/eye_level", *_suction_bores(judged),
-                      f"{judged.curve_path(n)}/table"),
-                names=(("slot", title), ("set", judged.title),
-                       ("has", "have" if " and " in title else "has")),
-                others=(amount("npsh_required", required, D.HEAD),),
-            )  # fmt: skip
-            yield common
-            if not broken(common):
-                yield common.varied(
-                    code="npsh_short", severity=Severity.FAIL,
-                    criterion=judged.criterion(key),
-                    required=amount("required", max(by_ratio, by_margin), D.HEAD),
-                )  # fmt: skip
-
-
 def _lift(judged: JudgedSet) -> Iterator[Reading]:
     """Yield suction lift: the pump eye above the suction grade."""
     eye = judged.station.site.eye_level
     if eye is None:
         return
-    for c, _ in judged.stated:
+    for c in judged.supplied:
         lift = eye.si - float(judged.result.suction_grade[c])
         common = Reading(
             code="suction_lift_long", severity=Severity.FAIL, subject="/site/eye_level",
@@ -150,7 +178,7 @@ def _lift(judged: JudgedSet) -> Iterator[Reading]:
             provided=amount("lift", lift, D.HEAD),
             required=amount("required", judged.limit("suction-lift-max"), D.HEAD),
             sense="at_most",
-            mend=("/site/eye_level", _low_state(judged)), names=(("set", judged.title),),
+            mend=("/site/eye_level", low_state(judged)), names=(("set", judged.title),),
             at_limit_share=0.0,
         )  # fmt: skip
         yield common

@@ -4,7 +4,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, field
 
 from server.hydraulics.errors import SupplyRefused
-from server.hydraulics.supply import FlowTestSupply, compare_flow_tests
+from server.hydraulics.supply import FlowTestSupply, compare_flow_tests, fit_flow_tests
 from server.station.station import Station
 from server.station.supply import FlowTest
 from server.studies.duty_result import DutyResult
@@ -110,7 +110,7 @@ def _of_test(
     yield _reading(criteria, "flow_test_small_drop", "flow-test-drop-min", test,
                    amount("drop", drop, D.RATIO, 0), D.RATIO, "at_least",
                    (f"{path}/residual_pressure", f"{path}/test_flow"))  # fmt: skip
-    if test.use == "basis" and test.test_flow is not None and draws is not None:
+    if _reaches_furthest(station, test) and test.test_flow is not None and draws is not None:
         yield _reading(criteria, "flow_test_extrapolated", "flow-test-extrapolation-max", test,
                        amount("times", draws.largest / test.test_flow.si, D.NUMBER, 2),
                        D.NUMBER,
@@ -118,6 +118,19 @@ def _of_test(
                        case=draws.cases[0] if draws.cases else None,
                        others=(amount("design", draws.largest, D.FLOW),
                                amount("tested", test.test_flow.si, D.FLOW)))  # fmt: skip
+
+
+def _reaches_furthest(station: Station, test: FlowTest) -> bool:
+    """Return whether a test is the one to which the curve in use is tested.
+
+    Several tests of the basis give one curve, known as far as the largest of their flows.
+    """
+    basis = [
+        (each.test_flow.si, each.id)
+        for each in station.supply.flow_tests
+        if each.use == "basis" and each.test_flow is not None
+    ]
+    return bool(basis) and max(basis)[1] == test.id
 
 
 def judged_year(station: Station) -> int | None:
@@ -159,13 +172,15 @@ def _lowered(test: FlowTest) -> FlowTestSupply | None:
 
 
 def _scatter(station: Station, criteria: dict[str, Criterion]) -> Iterator[Reading]:
-    """Yield the distance of every compared test from the curve of the first basis test."""
+    """Yield the distance of every other test from the curve by the test, or the tests, used."""
     tests = station.supply.flow_tests
-    basis = next((_lowered(test) for test in tests if test.use == "basis"), None)
-    if basis is None:
+    used = [_lowered(test) for test in tests if test.use == "basis"]
+    known = [each for each in used if each is not None]
+    if not known or len(known) < len(used):
         return
+    basis = known[0] if len(known) == 1 else fit_flow_tests(known).supply
     for test in tests:
-        other = _lowered(test) if test.use == "compared" else None
+        other = _lowered(test) if test.use == "compared" or len(known) > 1 else None
         if other is None:
             continue
         compared = compare_flow_tests(basis, others=[other])

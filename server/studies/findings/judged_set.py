@@ -5,13 +5,16 @@ from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
+from numpy.typing import NDArray
 
+from server.hydraulics import operating_region
+from server.hydraulics.operating_region import region
 from server.hydraulics.states import State
 from server.station.pump_set import PumpSet
 from server.station.station import Station
-from server.studies.duty_result import DutyResult, PointFacts, SlotFacts
+from server.studies.duty_result import DutyResult, Place, PointFacts, SlotFacts
 from server.studies.findings.criteria import Criterion
-from server.studies.shapes import Amount, Case, Path, Region
+from server.studies.shapes import SUPPLY_STATES, Amount, Case, Path, PipeAge, Region
 from server.units import Dimension
 
 MADE = "made:"  # scenario ids of cases that are always made
@@ -20,6 +23,12 @@ STATED = (
     State.TOP_SPEED,
     State.LOW_SPEED,
 )  # states in which numbers have meaning
+_REGIONS: dict[int, Region] = {
+    operating_region.Region.INSIDE: Region.INSIDE,
+    operating_region.Region.EDGE: Region.EDGE,
+    operating_region.Region.OUTSIDE: Region.OUTSIDE,
+    operating_region.Region.UNKNOWN: Region.NOT_CHECKED,
+}
 
 
 @dataclass(frozen=True, eq=False)
@@ -98,21 +107,10 @@ class JudgedSet:
         reaches = self.station.suction_line.reaches
         return tuple(f"/suction_line/reaches/{reach.id}/bore" for reach in reaches)
 
-    @property
-    def lowest_pressure(self) -> float:
-        """Gauge pressure below which there is no water [Pa]; -inf without an altitude."""
-        lowest = self.result.lowest_pressure
-        return -float("inf") if lowest is None else lowest
-
     def preferred(self, n: int) -> tuple[float, float]:
         """Return the preferred region of slot `n`, ratios of best-efficiency flow."""
-        speed = self.result.slots[n].specific_speed
-        if speed is not None and speed > self.limit("high-specific-speed"):
-            return (
-                self.limit("preferred-region-low-high-specific-speed"),
-                self.limit("preferred-region-high-high-specific-speed"),
-            )
-        return self.limit("preferred-region-low"), self.limit("preferred-region-high")
+        slot = self.result.slots[n]
+        return slot.preferred_low, slot.preferred_high
 
     def preferred_key(self, n: int, high: bool) -> str:
         """Return the rule of the lower or upper end of the preferred region of slot `n`."""
@@ -124,18 +122,25 @@ class JudgedSet:
 
     def region(self, n: int, share: float) -> Region:
         """Return where a share of best-efficiency flow stands against the preferred region."""
-        if share != share:
-            return Region.NOT_CHECKED
         low, high = self.preferred(n)
         edge = self.limit("region-edge")
-        # the ends themselves are inside; the tolerance is the last digits of a unit's factor
-        if share < low - 1e-9 or share > high + 1e-9:
-            return Region.OUTSIDE
-        return Region.EDGE if share < low + edge or share > high - edge else Region.INSIDE
+        return _REGIONS[int(region(share, lower=low, upper=high, edge=edge))]
 
-    def inside(self, n: int, share: float) -> bool:
-        """Return whether a share is inside the preferred region, its edge included."""
-        return self.region(n, share) in (Region.INSIDE, Region.EDGE)
+    def region_in(self, c: int, k: int, n: int) -> Region:
+        """Return where slot `n` stands in a case: as `region`, read for all of them at once."""
+        return _REGIONS[int(self._regions[c, k, n])]
+
+    @cached_property
+    def _regions(self) -> NDArray[np.int8]:
+        low, high = np.array([self.preferred(n) for n in range(len(self.slots))]).T
+        return region(
+            self.result.best_efficiency_share, lower=low, upper=high,
+            edge=self.limit("region-edge"),
+        )  # fmt: skip
+
+    def inside(self, c: int, k: int, n: int) -> bool:
+        """Return whether slot `n` is inside its preferred region in a case, edge included."""
+        return self.region_in(c, k, n) in (Region.INSIDE, Region.EDGE)
 
     @cached_property
     def leg_of_slot(self) -> tuple[str | None, ...]:
@@ -154,15 +159,33 @@ class JudgedSet:
         )
 
     @cached_property
+    def supplied(self) -> tuple[int, ...]:
+        """Cases whose supply is entered: in a closed zone it is known whatever the pumps do."""
+        result = self.result
+        known = np.isfinite(result.required_head) | (result.suction_breaks_at != Place.NOWHERE)
+        return tuple(int(c) for c in np.flatnonzero(known))
+
+    @cached_property
     def unstated(self) -> tuple[int, ...]:
-        """Cases with no duty: no combination, or one past the end of its curve."""
+        """Cases with no duty: no combination, one past the end of its curve, or no water."""
         with_duty = {c for c, _ in self.stated}
         # a case whose supply is not entered is no failure: the absent field is named instead
-        return tuple(
-            c
-            for c in range(len(self.result.cases))
-            if c not in with_duty and np.isfinite(self.result.required_head[c])
-        )
+        return tuple(c for c in self.supplied if c not in with_duty)
+
+    @cached_property
+    def dry(self) -> dict[int, Place]:
+        """Cases in which the water column breaks before the pumps, and where."""
+        result = self.result
+        found = {
+            int(c): Place(int(result.suction_breaks_at[c]))
+            for c in np.flatnonzero(result.suction_breaks_at)
+        }
+        for c in self.unstated:
+            k = int(result.chosen[c])
+            states = result.state[c] if k < 0 else result.state[c, k : k + 1]
+            if (states == State.NO_WATER).any():
+                found.setdefault(c, Place.PUMP_EYE)
+        return found
 
     def running(self, c: int, k: int) -> Iterator[int]:
         """Yield the slots that pass water in case `c` with combination `k`."""
@@ -210,10 +233,9 @@ class JudgedSet:
         """Kind of demand by scenario id."""
         return {scenario.id: scenario.demand for scenario in self.station.scenarios}
 
-    def made_case(self, name: str, supply: int) -> Case:
+    def made_case(self, name: str, supply: int, pipes: PipeAge = "aged") -> Case:
         """Return the case of an always-made state; supply is 0 low, 1 normal, 2 high."""
-        states = ("low", "normal", "high")
-        return Case(f"{MADE}{name}", self.id, "", states[supply], "aged", None)  # type: ignore[arg-type]
+        return Case(f"{MADE}{name}", self.id, "", SUPPLY_STATES[supply], pipes, None)
 
     @property
     def slots(self) -> tuple[SlotFacts, ...]:

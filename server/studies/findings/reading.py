@@ -1,5 +1,6 @@
 """A reading: one result against one limit. Findings and tables are made of readings."""
 
+import math
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from typing import Literal
@@ -36,12 +37,16 @@ class Reading:
     others: tuple[Amount, ...] = ()
     names: Names = ()
     at_limit_share: float = AT_LIMIT_SHARE
+    without_number: bool = False  # not met, and no number can say by how much: no water
     margin: float = field(init=False)  # provided over required, below zero is not met
     verdict: Verdict = field(init=False)
 
     def __post_init__(self) -> None:
         """Compare, once."""
         provided, required = self.provided.value, self.required.value
+        if self.without_number:
+            self.margin, self.verdict = -math.inf, Verdict.DOES_NOT_MEET
+            return
         if provided is None or required is None:
             self.margin, self.verdict = float("nan"), Verdict.NOT_CHECKED
             return

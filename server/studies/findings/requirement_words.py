@@ -51,7 +51,7 @@ def verdict_words(cell: RequirementCell) -> str:
 
 def cell_words(cell: RequirementCell, view: View) -> str:
     """Return the numbers of a cell: "55.9 for 36.0 L/s", or why it is not checked."""
-    if cell.verdict is Verdict.NOT_CHECKED:
+    if cell.because:
         return cell.because
     if cell.provided is None or cell.required is None:
         return ""
@@ -81,7 +81,7 @@ def runs_out_words(row: RequirementRow, station: Station) -> str:
         return ""
     years = [horizon.year for horizon in station.horizons if horizon.year is not None]
     if row.runs_out is None:
-        met = all(cell.verdict is not Verdict.DOES_NOT_MEET for cell in row.cells)
+        met = all(cell.verdict in (Verdict.MEETS, Verdict.AT_LIMIT) for cell in row.cells)
         return f"after {max(years)}" if years and met else ""
     return f"{row.runs_out}, {limit_title(row.runs_out_limit, station)}"
 

@@ -22,7 +22,7 @@ class RequirementCell:
     required: Amount | None = None
     region: Region | None = None
     case: Case | None = None
-    because: str = ""  # of NOT_CHECKED, in words
+    because: str = ""  # in words, of NOT_CHECKED and of what is not met without a number
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,6 +39,8 @@ class RequirementRow:
 
 
 Keep = Callable[[Reading], bool]
+# a case without a duty, or without water, does not have what is required either
+NO_DUTY = ("end_of_curve", "held_shut", "no_unit", "no_water_at_suction", "no_water_at_point")
 
 
 def requirement_rows(
@@ -85,16 +87,16 @@ def requirement_rows(
     highest = amount("limit", most, D.PRESSURE)
     return (
         table.firm("peak_hour", (service,), (("point", critical),), firm.get("peak_hour", []),
-                   ("pressure_low",), of_demand("peak_hour")),
-        table.plain("maximum_day", (service,), (("point", critical),), ("pressure_low",),
-                    of_demand("maximum_day")),
+                   ("pressure_low", *NO_DUTY), of_demand("peak_hour")),
+        table.plain("maximum_day", (service,), (("point", critical),),
+                    ("pressure_low", *NO_DUTY), of_demand("maximum_day")),
         table.firm("maximum_day_fire", _fire_limits(station, criteria),
                    (("point", _point(station, "hydrant")),), firm.get("maximum_day_fire", []),
-                   ("hydrant_residual_low", "fire_pressure_low"), in_fire),
+                   ("hydrant_residual_low", "fire_pressure_low", *NO_DUTY), in_fire),
         table.night(of_demand("minimum_night")),
         table.plain("npsh", (amount("ratio", criteria["npsh-ratio-min"].si, D.NUMBER, 1),
                               amount("margin", criteria["npsh-margin-min"].si, D.HEAD)), (),
-                    ("npsh_broken", "npsh_short"), lambda r: True),
+                    ("npsh_broken", "npsh_short", "no_water_at_suction"), lambda r: True),
         table.plain("suction_main", (amount("limit", criteria["suction-main-minimum"].si,
                                             D.PRESSURE),),
                     (("supply", station.supply.title or "Supplying main"),), (),
@@ -158,8 +160,9 @@ class _Table:
             return RequirementCell(horizon, Verdict.NOT_CHECKED, because=because)
         worst = _worst(kept)
         return RequirementCell(
-            horizon, worst.verdict, worst.provided, worst.required, None, worst.case
-        )
+            horizon, worst.verdict, worst.provided, worst.required, None, worst.case,
+            _WITHOUT_NUMBER.get(worst.code, "no duty") if worst.without_number else "",
+        )  # fmt: skip
 
     def plain(
         self, key: str, limits: tuple[Amount, ...], names: tuple[tuple[str, str], ...],
@@ -185,11 +188,14 @@ class _Table:
                 and r.case.horizon == horizon.id
             ]  # fmt: skip
             scenarios = self._kept(codes, keep, horizon.id)
-            failing = [r for r in scenarios if broken(r)]
-            if capacity and (broken(_worst(capacity)) or not failing):
-                cells.append(self._cell(horizon.id, capacity, ""))
+            failing = [r for r in capacity if broken(r)] or [r for r in scenarios if broken(r)]
+            if failing or not (capacity or scenarios):
+                cells.append(self._cell(horizon.id, failing, _BECAUSE[key]))
+            elif not capacity or any(r.verdict is Verdict.NOT_CHECKED for r in capacity):
+                cells.append(RequirementCell(horizon.id, Verdict.NOT_CHECKED,
+                                             because=_BECAUSE["firm"]))  # fmt: skip
             else:
-                cells.append(self._cell(horizon.id, failing or scenarios, _BECAUSE[key]))
+                cells.append(self._cell(horizon.id, capacity, ""))
         years = [f for f in firm if f.runs_out is not None]
         first = min(years, key=lambda f: f.runs_out or 0, default=None)
         return RequirementRow(
@@ -203,6 +209,10 @@ class _Table:
         """Return the row of the preferred region at minimum night."""
         cells = []
         for horizon in self.station.horizons:
+            without = self._kept(NO_DUTY, keep, horizon.id)
+            if without:
+                cells.append(self._cell(horizon.id, without, ""))
+                continue
             kept = self._kept(("region_outside",), keep, horizon.id)
             if not kept:
                 cells.append(RequirementCell(horizon.id, Verdict.NOT_CHECKED,
@@ -222,7 +232,14 @@ class _Table:
         return RequirementRow("minimum_night", (), (), tuple(cells))
 
 
+_WITHOUT_NUMBER = {
+    "no_water_at_suction": "no water to pump",
+    "no_water_at_point": "no water",
+    "no_unit": "no unit can run",
+    "held_shut": "held shut",
+}
 _BECAUSE = {
+    "firm": "firm capacity: a figure that limits it is not given",
     "peak_hour": "no scenario of peak hour",
     "maximum_day": "no scenario of maximum day",
     "maximum_day_fire": "no scenario of a fire",

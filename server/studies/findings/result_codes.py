@@ -11,7 +11,7 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("end_of_curve", "past the end of the curve", "sets",
          "{set} reaches the end of its pump curves in {case}: {required} is asked, the curves "
          "end at "
-         "{provided}. No duty is stated{also}."),
+         "{provided} at {speed} speed. No duty is stated{also}."),
     code("held_shut", "held shut", "sets",
          "{set} has no duty in {case}: in every combination that may run the others, or its "
          "own cracking "
@@ -22,6 +22,10 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "No water at {point} in {case}: the grade line falls so far below it that the main "
          "drains or "
          "the column breaks{also}."),
+    code("no_water_at_suction", "no water at the suction", "supply",
+         "No water at {place} in {case}: the grade line falls so far below it that the column "
+         "breaks and "
+         "nothing can be pumped{also}."),
     code("npsh_broken", "NPSH under what is required", "supply",
          "{slot} {has} {provided} of NPSH available in {case}, where {required} is required: "
          "cavitation{also}."),
@@ -62,6 +66,10 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          firm="The suction gauge falls to {provided} in {case}; at least {required} is "
               "required{also}. "
               "So firm capacity ends at {firm}, {short} short of {firm_required}."),
+    code("below_atmosphere", "below atmosphere", "main-and-zone",
+         "The pressure at {place} falls to {provided} in {case}: below atmosphere, where dirty "
+         "water can be "
+         "drawn in{also}."),
     code("supplying_zone_low", "supplying zone too low", "supply",
          "The zone that {supply} belongs to falls to {provided} at its highest ground, "
          "{check_words}, at "
@@ -177,6 +185,24 @@ RESULT_CODES: tuple[FindingCode, ...] = (
                     "their curve "
                     "({required} asked, the curves end at {provided}), and the set has no "
                     "standby{also}."),
+    code("after_trip_pressure_low", "pressure too low after a trip", "sets",
+         "If {lost} trips in {case}, {point} has {provided} until {standby} has started; "
+         "{required} is "
+         "required{also}.",
+         dry="If {lost} trips in {case}, {point} has no water until a standby has "
+             "started{also}.",
+         no_standby="If {lost} trips in {case}, {point} has {provided}, and the set has no "
+                    "standby; {required} is required{also}."),
+    code("after_trip_npsh_broken", "NPSH too low after a trip", "sets",
+         "If {lost} trips in {case}, a unit left has {provided} of NPSH until {standby} has "
+         "started, where "
+         "{required} is required: cavitation{also}.",
+         no_standby="If {lost} trips in {case}, a unit left has {provided} of NPSH, where "
+                    "{required} is required: cavitation; the set has no standby{also}."),
+    code("run_out_stopped_by_trip", "run-out stopped by the suction trip", "supply",
+         "{slot} alone, run out as far as its rows go, would lack NPSH or water at low supply. "
+         "The "
+         "low-suction trip at {trip} acts before; this rests on the trip."),
     code("handover_by_share", "no single flow to hand over at", "sets",
          "{fewer} leaves its preferred region at {provided} in {ends_in} supply and {more} "
          "enters at "
@@ -227,6 +253,13 @@ RESULT_CODES: tuple[FindingCode, ...] = (
          "Tabled power of {pump} differs from the power by its efficiency by {provided}; at "
          "most {required} "
          "is allowed. One of the columns is wrong."),
+    code("best_efficiency_disagrees", "stated best-efficiency flow is not that of the rows",
+         "pumps",
+         "The best-efficiency flow stated for {pump} lies {provided} from the {by_rows} of its "
+         "rows; at most {required} is wanted. Regions are judged by the stated one."),
+    code("rating_level_not_given", "level of the main not given", "main-and-zone",
+         "The level at the end of {part} is not given: its rating is judged at the lowest "
+         "level known, and lower down the pressure is higher."),
     code("handover_gap_narrow", "narrow gap between numbers of units", "sets",
          "Between {fewer} and {more} a narrow gap is outside the preferred region whichever "
          "runs: {from} to "

@@ -9,8 +9,9 @@ from numpy.typing import ArrayLike, NDArray
 from server.hydraulics.conduit import Conduit
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.pump_curve import PumpCurve
+from server.hydraulics.suction import npsh_available
 from server.hydraulics.supply import FixedGradeSupply, FlowTestSupply
-from server.hydraulics.water import GRAVITY
+from server.hydraulics.water import GRAVITY, LOWEST_ALTITUDE, atmospheric_pressure
 from server.studies.duty_result import PointFacts, SlotFacts
 from server.studies.shapes import PipeAge, SupplyState
 
@@ -28,6 +29,7 @@ ControlKind = Literal[
     "held_flow",
 ]
 ZONE_EXPONENT = 1.852  # of the flow in zone losses [-]
+HEAVIEST_AIR = float(atmospheric_pressure(LOWEST_ALTITUDE))  # absolute [Pa]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -46,8 +48,14 @@ class Water:
 
     @property
     def lowest_pressure(self) -> float:
-        """Gauge pressure below which there is no water, nan without an altitude [Pa]."""
-        return self.vapour_pressure - self.atmosphere
+        """Gauge pressure below which there is no water [Pa].
+
+        Without an altitude by the air of the lowest ground there is, the heaviest: then too no
+        pressure is stated that could not be anywhere.
+        """
+        return self.vapour_pressure - (
+            HEAVIEST_AIR if self.atmosphere != self.atmosphere else self.atmosphere
+        )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -174,7 +182,11 @@ class Slot:
     facts: SlotFacts
     unit: int  # index into units
     from_year: int  # order of the horizon from which it is installed, 0 the first
-    preferred: tuple[float, float]  # ratios of best-efficiency flow
+
+    @property
+    def preferred(self) -> tuple[float, float]:
+        """Preferred region, ratios of best-efficiency flow."""
+        return self.facts.preferred_low, self.facts.preferred_high
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -264,6 +276,17 @@ class LoweredSet:
     bypass: Bypass | None
     tank: ZoneTank | None  # None in a closed zone
     needs_missing: tuple[tuple[str, str], ...]
+
+    def npsh_available(self, suction_grade: Floats, branch_loss: ArrayLike) -> Floats:
+        """Return the NPSH available at the pumps' eye [m]; nan where it is not known."""
+        return npsh_available(
+            suction_grade,
+            eye_level=self.eye_level,
+            branch_loss=branch_loss,
+            atmospheric_pressure=self.water.atmosphere,
+            vapour_pressure=self.water.vapour_pressure,
+            density=self.water.density,
+        )
 
     @property
     def floats(self) -> bool:

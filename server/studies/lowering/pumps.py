@@ -66,8 +66,7 @@ def units_and_slots(
         unit = units[index[key]]
         facts = _facts(slot, pump, curve, unit, limits, highest_speed, density)
         since = order.get(slot.from_horizon or "", 0)
-        region = limits.preferred_region(facts.specific_speed)
-        slots.append(Slot(facts=facts, unit=index[key], from_year=since, preferred=region))
+        slots.append(Slot(facts=facts, unit=index[key], from_year=since))
     if pump_set.slots and all(slot.role == "standby" for slot in pump_set.slots):
         needs.stop(base, "only_standby_units")
     kinds = [slot.unit for slot in slots]
@@ -129,6 +128,7 @@ def _facts(
 ) -> SlotFacts:
     of = unit.curve
     region = pump.allowable_region
+    preferred = limits.preferred_region(of.specific_speed)
     minimum = si_or_none(pump.minimum_flow)
     return SlotFacts(
         id=slot.id,
@@ -143,9 +143,12 @@ def _facts(
             None if of.smoothing is None else of.smoothing.largest_residual
         ),
         best_efficiency_flow=None if of.best is None else of.best.flow,
+        best_efficiency_flow_by_rows=None if of.fitted_best is None else of.fitted_best.flow,
         best_efficiency=None if of.best is None else of.best.efficiency,
         shutoff_head=of.shutoff_head,
         last_flow=of.last_flow,
+        preferred_low=preferred[0],
+        preferred_high=preferred[1],
         allowable_low=si_or_none(region.low),
         allowable_high=si_or_none(region.high),
         minimum_flow=limits.minimum_flow if minimum is None else minimum,

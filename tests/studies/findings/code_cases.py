@@ -36,6 +36,7 @@ MAIN_LEG, JOCKEY_LEG = "/legs/lg-m2n6wd", "/legs/lg-j9c3ht"
 SUCTION = "/suction_line/reaches/rc-s7n3de"
 REACH = "/discharge_main/reaches/rc-d1f5my"
 ZONE = "/supply/supplying_zone"
+MAIN_CURVE = MAIN_TABLE.removesuffix("/table")
 DUTY = tuple(f"{SLOTS}/{each}" for each in ("sl-p1d4fg", "sl-p2e5gh", "sl-p3f6hj"))
 STANDBY_SLOT, JOCKEY_SLOT = f"{SLOTS}/sl-p4g7jk", f"{SLOTS}/sl-j5h8kq"
 ORIGINAL = table(MAIN_TABLE)
@@ -128,6 +129,8 @@ RESULT_CASES = (
          *(put(f"{slot}/from_horizon", "hz-d8gn4k") for slot in (*DUTY, JOCKEY_SLOT))),
     case("no_water_at_point", MAIN_TABLE, table(MAIN_TABLE, head=5),
          put(f"{TOP}/elevation", q(330, "m"))),
+    case("no_water_at_suction", LOW, q(0, "kPa"), put("/site/eye_level", q(135, "m"))),
+    case("below_atmosphere", LOW, q(-40, "kPa"), put(LOW, q(-170, "kPa")), subject="/supply"),
     case("npsh_broken", LOW, q(0, "kPa"), put("/site/eye_level", q(131, "m"))),
     case("trip_reached", f"{TRIPS}/low_suction_trip", q(70, "kPa"),
          put(f"{TRIPS}/low_suction_trip", q(130, "kPa"))),
@@ -191,6 +194,12 @@ RESULT_CASES = (
          put("/supply/states/high", q(340, "kPa"))),
     case("after_trip_end_of_curve", MAIN_TABLE, table(MAIN_TABLE, flow=1.25),
          only("sc-f2re9k")),
+    case("after_trip_pressure_low", MAIN_TABLE, MORE_HEAD, only("sc-f1re9j"),
+         put(f"{TOP}/fire_pressure", q(170, "kPa"))),
+    case("after_trip_npsh_broken", LOW, q(0, "kPa"), only("sc-f1re9j"),
+         put("/site/eye_level", q(135.1, "m"))),
+    case("run_out_stopped_by_trip", LOW, q(0, "kPa"), put("/site/eye_level", q(145.1, "m")),
+         put(f"{TRIPS}/low_suction_trip", q(300, "kPa")), subject=DUTY[0]),
     case("handover_by_share", JOCKEY_TABLE, table(JOCKEY_TABLE, flow=1.1)),
     case("suction_lift", "/site/eye_level", q(110.6, "m"), put("/site/eye_level", q(125, "m"))),
     case("suction_line_fast", f"{SUCTION}/bore", q(250, "mm"),
@@ -217,6 +226,9 @@ RESULT_CASES = (
     case("last_row_short", MAIN_TABLE, ORIGINAL,
          put(MAIN_TABLE, rows_of(MAIN_TABLE,
                                  lambda rows: [*rows[:6], [20.0, 64.0, 71.0, None, 3.7]]))),
+    case("best_efficiency_disagrees", f"{MAIN_CURVE}/best_efficiency_flow", q(17.8, "L/s"),
+         put(f"{MAIN_CURVE}/best_efficiency_flow", q(20, "L/s"))),
+    case("rating_level_not_given", f"{REACH}/end_level", q(105, "m"), subject=REACH),
     case("power_disagrees", MAIN_TABLE, ORIGINAL, put(MAIN_TABLE, rows_of(MAIN_TABLE, _power))),
     case("handover_gap_narrow", MAIN_TABLE, table(MAIN_TABLE, steep=1.8), subject=DUTY[1]),
     case("set_point_not_held_in_fire", f"{CONTROL}/pressure", q(170, "kPa")),
@@ -231,6 +243,8 @@ INPUT_CASES = (
     case("supply_states_out_of_order", LOW, q(-40, "kPa"), put(LOW, q(10, "kPa"))),
     case("limiter_not_computed", f"{TRIPS}/low_suction_slow_down", q(100, "kPa"),
          put(f"{TRIPS}/low_suction_slow_down", q(140, "kPa"))),
+    case("firm_not_checked", "/supply/connection_level", q(112, "m"),
+         put("/supply/connection_level", None)),
     case("station_off_not_checked", f"{STANDBY}/kind", "automatic",
          put(f"{STANDBY}/kind", None)),
     case("input_missing", "/site/altitude", q(110, "m"), put("/site/altitude", None)),

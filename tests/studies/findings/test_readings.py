@@ -8,6 +8,7 @@ from hypothesis import strategies as st
 
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import Reading, findings_from
+from server.studies.limits import limits_of
 from server.studies.shapes import Case, Region, Severity, Verdict
 from server.units import Dimension
 from tests.studies.findings.demo import assessed, demo
@@ -85,7 +86,9 @@ def test_region_has_its_ends_inside_and_an_edge_of_two_points(
 
 def test_region_of_a_pump_of_high_specific_speed_is_narrower() -> None:
     judged = _judged()
-    slots = (replace(judged.result.slots[0], specific_speed=100.0), *judged.result.slots[1:])
+    low, high = limits_of(judged.station).preferred_region(100.0)
+    first = replace(judged.result.slots[0], preferred_low=low, preferred_high=high)
+    slots = (first, *judged.result.slots[1:])
     fast = JudgedSet(
         judged.station, judged.criteria, judged.entered, replace(judged.result, slots=slots)
     )
