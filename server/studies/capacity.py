@@ -125,12 +125,12 @@ def _npsh_excess(
     suction_grade: Floats,
 ) -> Floats:
     """Return the least NPSH available over what criteria ask, nan where it is not known [m]."""
-    speed = of.control.highest_speed
     least = np.full(suction_grade.shape, np.inf)
     for t, x in enumerate(each):
         if not np.any(units.count[:, t]):
             continue
-        one, flow = of.units[t], speed * x
+        one, flow = of.units[t], of.control.highest_speed * x
+        speed = of.control.highest_speed * units.relative[t]
         required = affinity.npsh_required(
             one.curve, flow, speed=speed, exponent=one.npsh_exponent
         )
@@ -156,8 +156,8 @@ def _least(
 def _largest_share(units: CommonSpeed, row: int, y: float) -> float:
     """Return the largest share of best-efficiency flow among the units of one combination."""
     shares = []
-    for leg, count in zip(units.legs, units.count[row], strict=True):
+    for leg, count, own in zip(units.legs, units.count[row], units.relative, strict=True):
         if count > 0:
-            best = leg.pump.best
-            shares.append(np.nan if best is None else float(leg.largest_flow(y)) / best.flow)
+            best, x = leg.pump.best, float(leg.largest_flow(y / own**2))
+            shares.append(np.nan if best is None else x / best.flow)
     return float(np.max(shares))

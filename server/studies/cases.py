@@ -10,7 +10,14 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from server.studies.lowering.lowered import Flags, Floats, LoweredSet, Scenario, Slot
+from server.studies.lowering.lowered import (
+    Flags,
+    Floats,
+    Indices,
+    LoweredSet,
+    Scenario,
+    Slot,
+)
 from server.studies.shapes import SUPPLY_STATES, Case
 from server.studies.system_heads import Draw
 
@@ -25,6 +32,7 @@ class Cases:
     shown: Flags  # (C,) the scenario's own supply state
     is_fire: Flags  # (C,)
     draw: Draw  # arrays (C,)
+    tank_state: Indices  # (C,) of the tank on the zone: 0 low, 1 normal, 2 top
     running: tuple[
         tuple[int, ...], ...
     ]  # per case, slots that may run: duty, and who replaces one out
@@ -64,6 +72,7 @@ def cases_of(of: LoweredSet) -> Cases:
             shift=np.concatenate([shifts(of, s.low_shift) for s in of.scenarios]),
             way=_each(of.scenarios, [s.way for s in of.scenarios]).astype(np.intp),
         ),
+        tank_state=_each(of.scenarios, [s.tank_state for s in of.scenarios]).astype(np.intp),
         running=tuple(running),
         jockeys=tuple(jockeys),
     )

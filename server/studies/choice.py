@@ -34,7 +34,7 @@ def choose(
     share: Floats,
     combinations: Flags,
     held_pressure: Floats,
-    set_point: float,
+    set_point: Floats,
     flow_at_end: Floats,
 ) -> tuple[Indices, NDArray[np.int8]]:
     """Return the chosen combination of each case (-1: none) and the class of the choice.
@@ -55,7 +55,7 @@ def choose(
         Slots that run.
     held_pressure : ndarray, shape (C, K)
         Pressure where the set point is held. [Pa]
-    set_point : float
+    set_point : ndarray, shape (C,)
         [Pa]
     flow_at_end : ndarray, shape (K,)
         Largest flow before the end of a curve. [m3/s]
@@ -69,8 +69,8 @@ def choose(
         dtype=np.float64,
     )
     solved = state == State.SOLVED
-    inside = solved & _all_inside(share, preferred, combinations)
-    allowed = solved & _all_inside(share, allowable, combinations)
+    inside = solved & inside_all(share, preferred, combinations)
+    allowed = solved & inside_all(share, allowable, combinations)
     barred = np.isin(state, BARRED) | ~available
     told = known[:, None]
     possible = _every(~barred | ~told) & _some(told & np.ones_like(barred))
@@ -79,7 +79,7 @@ def choose(
     for number, meets in ((2, solved), (1, allowed), (0, inside)):
         classes[possible & _every(meets | ~told)] = number
     past = _total(told & (state == State.END_OF_CURVE))
-    short = np.where(told, set_point - held_pressure, np.nan)
+    short = np.where(told, set_point[:, None] - held_pressure, np.nan)
     missing, excess = _worst(np.maximum(short, 0.0)), _worst(np.maximum(-short, 0.0))
     chosen = np.full(possible.shape[0], -1, dtype=np.intp)
     reached = classes.min(axis=1)
@@ -97,7 +97,7 @@ def choose(
     return np.repeat(chosen, STATES), np.repeat(reached, STATES)
 
 
-def _all_inside(share: Floats, limits: Floats, combinations: Flags) -> Flags:
+def inside_all(share: Floats, limits: Floats, combinations: Flags) -> Flags:
     """Return where every running unit lies inside its limits; unknown is not inside."""
     within = (share >= limits[:, 0]) & (share <= limits[:, 1])
     return np.asarray(np.all(within | ~combinations, axis=2), dtype=np.bool_)

@@ -13,13 +13,15 @@ from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.parallel import leg_flows
 from server.hydraulics.states import State
 from server.station.station import Station
+from server.studies.along_curves import AlongControl, along_control
 from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.limits import limits_of
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
-from server.studies.set_states import solve_states
+from server.studies.set_states import full_speeds
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
-from server.studies.system_heads import Draw, SystemHeads, system_heads
+from server.studies.system_heads import Draw, system_heads
+from server.studies.tank_states import tank_way
 
 READINGS = 181  # points of a curve
 MOST_CURVES = 6
@@ -47,19 +49,6 @@ class HeldCurve:
     case: int
     flow: Floats
     head: Floats
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class AlongControl:
-    """A combination along the held set point: nan where it cannot hold it."""
-
-    combination: int
-    flow: Floats  # (n,) [m3/s]
-    speed: Floats  # (n,) ratio
-    efficiency: Floats  # (n,) of all running pumps together, ratio
-    shaft_power: Floats  # (n,) of all running pumps together [W]
-    npsh_available: Floats  # (n,) least of the running pumps [m]
-    npsh_required: Floats  # (n,) largest of the running pumps [m]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -113,10 +102,10 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
         sets=sets,
         held=_held(lowered, result),
         flow=grid,
-        required_low=_heads(lowered, grid, "low", pipes).required_head,
-        required_high=_heads(lowered, grid, "high", pipes).required_head,
+        required_low=_asked(lowered, result, grid, "low", pipes),
+        required_high=_asked(lowered, result, grid, "high", pipes),
         pipes=pipes,
-        along=_along(lowered, result, drawn, grid, along_state, pipes),
+        along=along_control(lowered, result, drawn, grid, along_state, pipes),
         along_state=along_state,
     )
 
@@ -151,25 +140,25 @@ def _drawn(lowered: LoweredSet, result: DutyResult) -> tuple[int, ...]:
     return tuple(sorted(found.values(), key=end)[-MOST_CURVES:])
 
 
-def _at_speed(legs: list[LegCurve], speed: float) -> tuple[Floats, Floats]:
+def _at_speeds(legs: list[LegCurve], speeds: Floats) -> tuple[Floats, Floats]:
     """Return flow and head of legs together, from no flow to the first leg's last row."""
-    square = speed * speed
-    high, low = (
-        max(leg.peak_head for leg in legs) * square,
-        max(leg.last_head for leg in legs) * square,
-    )
+    square = speeds * speeds
+    high = float(np.max(square * [leg.peak_head for leg in legs]))
+    low = float(np.max(square * [leg.last_head for leg in legs]))
     # flow grows with the root of the head given up: equal steps in flow need squared steps
     # in head
     head = high - (high - low) * np.linspace(0.0, 1.0, READINGS) ** 2
-    flows = leg_flows(head, legs=legs, speeds=speed)
+    flows = leg_flows(head, legs=legs, speeds=speeds)
     usable = ~np.any(flows.state == State.END_OF_CURVE, axis=-1)
     return flows.flow.sum(axis=-1)[usable], head[usable]
 
 
 def _running_set(lowered: LoweredSet, result: DutyResult, combination: int) -> RunningSet:
     units = _units(lowered, result, combination)
-    flow, head = _at_speed([lowered.units[u].leg for u in units], lowered.control.highest_speed)
     slots = [int(n) for n in np.flatnonzero(result.combinations[combination])]
+    flow, head = _at_speeds(
+        [lowered.units[u].leg for u in units], full_speeds(lowered)[slots]
+    )
     small = all(lowered.slots[n].facts.role == "jockey" for n in slots)
     outline = _preferred(lowered, slots) if len(set(units)) == 1 else (np.empty(0), np.empty(0))
     return RunningSet(combination, len(units), small, flow, head, *outline)
@@ -185,6 +174,8 @@ def _preferred(lowered: LoweredSet, slots: list[int]) -> tuple[Floats, Floats]:
     if not leg.first_flow <= low < high:
         return np.empty(0), np.empty(0)
     top, bottom = lowered.control.highest_speed, lowered.control.lowest_speed
+    if lowered.units[slot.unit].fixed:
+        top = bottom = 1.0
     speeds, across = np.linspace(bottom, top, 25), np.linspace(low, high, 25)
     # up the left locus, along the top speed, down the right locus, back along the lowest speed
     x = np.concatenate([np.full(25, low), across, np.full(25, high), across[::-1]])
@@ -198,70 +189,33 @@ def _held(lowered: LoweredSet, result: DutyResult) -> tuple[HeldCurve, ...]:
     for case in np.flatnonzero(result.shown):
         k = int(result.chosen[case])
         running = np.flatnonzero(result.combinations[max(k, 0)])
-        speed = float(result.speed[case, max(k, 0), running[0]]) if running.size else np.nan
-        if k >= 0 and np.isfinite(speed):
+        speeds = result.speed[case, max(k, 0), running]
+        if k >= 0 and running.size and np.isfinite(speeds).all():
             together = [lowered.units[u].leg for u in _units(lowered, result, k)]
-            curves.append(HeldCurve(int(case), *_at_speed(together, speed)))
+            curves.append(HeldCurve(int(case), *_at_speeds(together, speeds)))
     return tuple(curves)
 
 
-def _heads(
-    lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge
-) -> SystemHeads:
-    """Return grades and required head, all flow taken as demand of the zone."""
+def _asked(
+    lowered: LoweredSet, result: DutyResult, flow: Floats, state: SupplyState, pipes: PipeAge
+) -> Floats:
+    """Return the head asked of the station at a flow.
+
+    In a closed zone all of it is demand. Towards a tank the hardest stands with low supply: a
+    full tank and nothing drawn; the easiest with high supply: a low tank and the largest
+    demand.
+    """
+    shift = np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)])
+    none = np.zeros(flow.shape)
+    if not lowered.floats:
+        draw = Draw(domestic=flow, fire=none, fire_point=-1, aged=pipes == "aged", shift=shift)
+        return system_heads(lowered, draw).required_head
+    hardest = state == "low"
+    drawn = 0.0 if hardest or not result.demand.size else float(np.nanmax(result.demand))
     draw = Draw(
-        domestic=flow,
-        fire=np.zeros(flow.shape),
-        fire_point=-1,
-        aged=pipes == "aged",
-        shift=np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)]),
-    )
-    return system_heads(lowered, draw)
-
-
-def _along(
-    lowered: LoweredSet,
-    result: DutyResult,
-    drawn: tuple[int, ...],
-    flow: Floats,
-    state: SupplyState,
-    pipes: PipeAge,
-) -> tuple[AlongControl, ...]:
-    """Return each drawn combination where it holds the set point, solved as the duty is."""
-    if not drawn:
-        return ()
-    heads = _heads(lowered, flow, state, pipes)
-    on = result.combinations[list(drawn)]
-    solved = solve_states(lowered, on, flow, heads.required_head)
-    held = (solved.state == State.SOLVED) & (flow > 0)[:, None]
-    curves = []
-    for i, k in enumerate(drawn):
-        slot = {
-            name: np.where(held[:, i, None], values[:, i, on[i]], np.nan)
-            for name, values in solved.slot.items()
-        }
-        power = slot["shaft_power"].sum(axis=1)
-        useful = (slot["shaft_power"] * slot["efficiency"]).sum(axis=1)
-        available = _npsh_available(
-            lowered, heads.suction_grade[:, None] - slot["suction_loss"]
-        )
-        curves.append(
-            AlongControl(
-                combination=k,
-                flow=flow,
-                speed=slot["speed"][:, 0],
-                efficiency=np.divide(
-                    useful, power, out=np.full(flow.shape, np.nan), where=power > 0
-                ),
-                shaft_power=power,
-                npsh_available=available.min(axis=1),
-                npsh_required=slot["npsh_required"].max(axis=1),
-            )
-        )
-    return tuple(curves)
-
-
-def _npsh_available(lowered: LoweredSet, eye_grade: Floats) -> Floats:
-    water = lowered.water
-    absolute = (water.atmosphere - water.vapour_pressure) / water.weight
-    return np.asarray(absolute + eye_grade - lowered.eye_level)
+        domestic=none + drawn, fire=none, fire_point=-1,
+        aged=np.full(flow.shape, pipes == "aged"), shift=shift,
+        way=np.zeros(flow.shape, dtype=np.intp),
+    )  # fmt: skip
+    tank = np.full(flow.shape, 2 if hardest else 0)
+    return tank_way(lowered, draw, tank).head(flow, np.arange(flow.size))

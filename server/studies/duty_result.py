@@ -7,6 +7,7 @@ edge).
 
 from dataclasses import dataclass, field
 from enum import IntEnum
+from typing import Literal
 
 import numpy as np
 from numpy.typing import NDArray
@@ -24,6 +25,31 @@ class Place(IntEnum):
     CONNECTION = 1
     SUCTION_GAUGE = 2
     PUMP_EYE = 3
+
+
+class Binding(IntEnum):
+    """What stands in the way where a control is not held or a state is not solved."""
+
+    NOTHING = 0
+    HEAD = 1
+    """At the highest speed the pumps give less head than is asked."""
+    LOWEST_SPEED = 2
+    """At the lowest speed they give more."""
+    CURVE_END = 3
+    """The first pump is past its last row."""
+    STATIC_HEAD = 4
+    """No pump reaches the head asked at no flow."""
+    CHECK_VALVE = 5
+    """A unit is held shut by the others, or could not be started."""
+    NO_WATER = 6
+    """The suction side breaks."""
+    FIXED_UNIT = 7
+    """The units without a drive pass more than is asked, alone."""
+    NOT_KNOWN = 8
+    """A row or an input is missing."""
+
+
+ZoneKind = Literal["closed", "floating_tank", "fire_tank"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,10 +133,13 @@ class DutyResult:
 
     stamp: Stamp
     pump_set: str
+    control: str  # kind of control, as entered
+    zone_kind: ZoneKind
+    supply_kind: str  # "main", "tank" or "grade_line"
     slots: tuple[SlotFacts, ...]
     points: tuple[PointFacts, ...]
     held_point: str | None  # id of the point whose pressure is held, None: discharge gauge
-    set_point: float | None  # [Pa]
+    set_point: float | None  # [Pa] at full flow; None where no pressure is held
     lowest_speed: float
     highest_speed: float
     density: float
@@ -123,15 +152,23 @@ class DutyResult:
     demand: Floats  # (C,) station flow asked for, fire included [m3/s]
     fire_flow: Floats  # (C,) part of it [m3/s]
     fire_point: NDArray[np.intp]  # (C,) index into points of the flowing hydrant, -1 none
+    set_pressure: Floats  # (C,) set point at the demand; nan where no pressure is held [Pa]
     combinations: NDArray[np.bool_]  # (K, N)
     available: NDArray[np.bool_]  # (C, K) installed by the horizon, not out, allowed by role
     chosen: NDArray[np.intp]  # (C,) index into K, -1 none
     choice_class: NDArray[np.int8]  # (C,) 0 inside POR, 1 AOR, 2 holds, 3 at limit, 4 none
     state: NDArray[np.int8]  # (C, K) server.hydraulics.states.State
     flow: Floats  # (C, K) [m3/s]
-    station_head: Floats  # (C, K) manifold to manifold [m]
+    station_head: Floats  # (C, K) manifold to manifold, behind a reducing valve [m]
+    valve_loss: Floats  # (C, K) taken away by a reducing valve, zero without one [m]
     required_head: Floats  # (C,) manifold to manifold, to hold the set point [m]
     set_point_held: NDArray[np.bool_]  # (C, K)
+    fixed_exceeds: NDArray[np.bool_]  # (C, K) units without a drive pass more than is asked
+    binding: NDArray[np.int8]  # (C, K) Binding
+    # (C, K) nearest attainable flow where something binds: that holds the head asked at full
+    # speed (of what runs only), that of the last row, or none [m3/s]
+    nearest_flow: Floats
+    lack: Floats  # (C, K) head missing, below zero in excess, where something binds [m]
     held_pressure: Floats  # (C, K) at the held point or gauge [Pa]
     speed: Floats  # (C, K, N) ratio
     leg_flow: Floats  # (C, K, N) [m3/s]
@@ -154,6 +191,9 @@ class DutyResult:
     discharge_grade: Floats  # (C, K) at the discharge manifold [m]
     discharge_pressure: Floats  # (C, K) at the discharge gauge [Pa]
     zone_entry_grade: Floats  # (C, K) at the end of the main [m]
+    tank_level: Floats  # (C,) of the tank on the zone; nan without one [m]
+    tank_flow: Floats  # (C, K) into it, negative when it feeds; nan in a closed zone [m3/s]
+    tank_draws_down: NDArray[np.bool_]  # (C, K) a fire tank would feed in normal service too
     suction_line_velocity: Floats  # (C, R_suction) [m/s]
     main_velocity: Floats  # (C, R_main) [m/s]
     suction_branch_velocity: Floats  # (C, K, N) [m/s]
@@ -189,7 +229,8 @@ class StationOff:
     cases: tuple[Case, ...]
     arithmetic_pressure: Floats  # (C, P) [Pa] below a vacuum never shown as a pressure
     drains: NDArray[np.bool_]  # (C, P) below -(p_atm - p_v): no water
-    path: str  # "bypass", or "through_pumps": none is entered, the figure is an upper bound
+    # "bypass", "tank", or "through_pumps": none is entered, the figure is an upper bound
+    path: str
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -242,10 +283,24 @@ class Handover:
 
 
 @dataclass(frozen=True, slots=True, eq=False)
+class CutOut:
+    """A supply tank at its cut-out level, M states: where NPSH and submergence are least."""
+
+    cases: tuple[Case, ...]  # supply is "cut_out"
+    combination: NDArray[np.intp]  # (M,)
+    state: NDArray[np.int8]  # (M,)
+    flow: Floats  # (M,) nan where there is no state [m3/s]
+    npsh_available: Floats  # (M, N) [m]
+    npsh_required: Floats  # (M, N) [m]
+    depth: float  # of water over the outlet; nan where it is not given [m]
+    submergence: Floats  # (M,) needed over the outlet [m]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
 class FirmCapacity:
     """Largest flow with each unit in turn out, low supply, aged pipes, for one requirement."""
 
-    requirement: str  # "peak_hour" or "maximum_day_fire"
+    requirement: str  # "peak_hour", "maximum_day_fire" or "tank_refill"
     fire: str | None  # id of the fire that the second is for
     horizon: str
     required_flow: float  # [m3/s]
@@ -258,6 +313,10 @@ class FirmCapacity:
     best_efficiency_share: float  # largest of the units left, at by_head
     # year in which the demand, linear between horizons, passes by_all; None: not within them
     runs_out: int | None
+    # by_all with every pump at the lower corner of its test grade, and that grade
+    by_all_weak: float = float("nan")
+    test_grade: str = ""
+    hours: float | None = None  # in which the maximum day is to be pumped into the tank [s]
     not_counted: tuple[str, ...] = ()  # limits, named as above, for which a figure is absent
 
 
@@ -271,3 +330,6 @@ class MadeCases:
     one_pump_alone: OnePumpAlone | None = None
     handover: Handover | None = None
     firm_capacity: tuple[FirmCapacity, ...] = field(default=())
+    cut_out: CutOut | None = None
+    # reaches with one barrel, and "unit" where one pump stands alone: nothing takes their place
+    single_points: tuple[str, ...] = ()

@@ -13,7 +13,7 @@ from server.studies.cases import installed_slots, shifts
 from server.studies.duty_result import FirmCapacity
 from server.studies.limits import StudyLimits
 from server.studies.lowering.lowered import Floats, Growth, LoweredSet
-from server.studies.set_ends import CommonSpeed
+from server.studies.set_ends import CommonSpeed, relative_speeds
 
 PEAK_HOUR, FIRE = "peak_hour", "maximum_day_fire"
 SAME = 1e-6  # of a capacity: what roots are sought to, with room
@@ -105,7 +105,11 @@ def _solve(
     if not rest:
         return solved
     legs = tuple(unit.leg for unit in of.units)
-    units = CommonSpeed(legs=legs, count=np.array([n for n, _ in rest], dtype=np.float64))
+    units = CommonSpeed(
+        legs=legs,
+        count=np.array([n for n, _ in rest], dtype=np.float64),
+        relative=relative_speeds(of),
+    )
     rows = tuple(rest.values())
     together = Asked(
         fire_flow=np.array([one.fire_flow for one in rows]),

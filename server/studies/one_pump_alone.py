@@ -12,7 +12,7 @@ from server.hydraulics.falling_root import falling_root
 from server.studies.cases import shifts
 from server.studies.duty_result import OnePumpAlone
 from server.studies.lowering.lowered import Floats, LoweredSet
-from server.studies.set_ends import CommonSpeed
+from server.studies.set_ends import CommonSpeed, relative_speeds
 from server.studies.set_states import unit_readings
 from server.studies.shapes import PipeAge
 from server.studies.suction_side import breaks_before_eye, suction_side
@@ -26,7 +26,11 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
         return None
     pipes: PipeAge = "new" if of.route.knows("new") else "aged"
     number, top = len(of.units), of.control.highest_speed
-    alone = CommonSpeed(legs=tuple(unit.leg for unit in of.units), count=np.eye(number))
+    alone = CommonSpeed(
+        legs=tuple(unit.leg for unit in of.units),
+        count=np.eye(number),
+        relative=relative_speeds(of),
+    )
 
     def heads_at(y: Floats) -> SystemHeads:
         flow = top * alone.total(y)
@@ -52,7 +56,8 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
     side = suction_side(of, heads)
     flow = np.where(flows, top * alone.total(y), np.nan)
     read = [
-        unit_readings(of, t, flow[t : t + 1], np.full(1, top)) for t in range(number)
+        unit_readings(of, t, flow[t : t + 1], np.full(1, top * alone.relative[t]))
+        for t in range(number)
     ]  # each its own kind, at one flow
     slot = {name: np.concatenate([one[name] for one in read]) for name in read[0]}
     in_branch = breaks_before_eye(of, side.suction_grade, slot["suction_loss"][:, None, None])

@@ -11,6 +11,8 @@ from pydantic import ConfigDict, with_config
 # pydantic cannot read the TypedDict of typing before Python 3.12
 from typing_extensions import TypedDict
 
+from server.studies.shapes import SupplyState
+
 CLOSED = ConfigDict(extra="forbid")
 
 
@@ -30,7 +32,7 @@ class CaseKeyJson(TypedDict):
     scenario: str
     pump_set: str
     horizon: str
-    supply: Literal["low", "normal", "high"]
+    supply: SupplyState
     pipes: Literal["new", "aged"]
     out: str | None
 
@@ -142,7 +144,7 @@ class CaseJson(TypedDict):
 class ZeroFlowJson(TypedDict):
     """The set against a shut zone, at one supply state."""
 
-    supply: Literal["low", "normal", "high"]
+    supply: SupplyState
     speed_held_ratio: float | None
     point_pressure_held_pa: dict[str, float | None]
     discharge_pressure_largest_pa: float | None
@@ -199,7 +201,7 @@ class HandoverJson(TypedDict):
 
     fewer: list[str]
     more: list[str]
-    supply: Literal["low", "normal", "high"]
+    supply: SupplyState
     fewer_end_m3_s: float | None
     more_start_m3_s: float | None
 

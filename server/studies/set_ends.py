@@ -21,13 +21,14 @@ class CommonSpeed:
 
     legs: tuple[LegCurve, ...]  # T kinds
     count: Floats  # (M, T) how many of each
+    relative: tuple[float, ...]  # speed of each kind over the common one: 1 with a drive
 
     def kind_flows(self, y: Floats) -> tuple[Floats, ...]:
         """Return the flow over speed of one leg of each kind; 0 of a kind not there."""
         there = [bool(np.any(self.count[:, t])) for t in range(len(self.legs))]
         return tuple(
-            leg.largest_flow(y) if runs else np.zeros(y.shape)
-            for leg, runs in zip(self.legs, there, strict=True)
+            _at_own_speed(leg, y, own) if runs else np.zeros(y.shape)
+            for leg, own, runs in zip(self.legs, self.relative, there, strict=True)
         )
 
     def total(self, y: Floats) -> Floats:
@@ -44,7 +45,7 @@ class CommonSpeed:
 
     def take(self, rows: Flags) -> "CommonSpeed":
         """Return the combinations marked."""
-        return CommonSpeed(legs=self.legs, count=self.count[rows])
+        return CommonSpeed(legs=self.legs, count=self.count[rows], relative=self.relative)
 
     @property
     def last_head(self) -> Floats:
@@ -63,9 +64,20 @@ class CommonSpeed:
         return self._largest(given)
 
     def _largest(self, heads: Sequence[float]) -> Floats:
-        return np.asarray(
-            np.where(self.count > 0, heads, -np.inf).max(axis=1), dtype=np.float64
-        )
+        """Return the largest head of the legs that run, each at its own speed, (M,)."""
+        own = np.array(heads) * np.square(self.relative)
+        return np.asarray(np.where(self.count > 0, own, -np.inf).max(axis=1), dtype=np.float64)
+
+
+def _at_own_speed(leg: LegCurve, y: Floats, own: float) -> Floats:
+    """Return the flow over the common speed of a leg that runs at `own` times that speed."""
+    return leg.largest_flow(y) if own == 1.0 else own * leg.largest_flow(y / own**2)
+
+
+def relative_speeds(of: LoweredSet) -> tuple[float, ...]:
+    """Return the speed of each kind of unit over the drives' highest."""
+    top = of.control.highest_speed
+    return tuple(1.0 / top if unit.fixed else 1.0 for unit in of.units)
 
 
 def at_common_speed(of: LoweredSet, combinations: Flags) -> CommonSpeed:
@@ -73,7 +85,11 @@ def at_common_speed(of: LoweredSet, combinations: Flags) -> CommonSpeed:
     kinds = np.array([slot.unit for slot in of.slots])
     count = [(combinations & (kinds == t)).sum(axis=1) for t in range(len(of.units))]
     legs = tuple(unit.leg for unit in of.units)
-    return CommonSpeed(legs=legs, count=np.stack(count, axis=1).astype(np.float64))
+    return CommonSpeed(
+        legs=legs,
+        count=np.stack(count, axis=1).astype(np.float64),
+        relative=relative_speeds(of),
+    )
 
 
 def flow_at_end(of: LoweredSet, units: CommonSpeed) -> Floats:

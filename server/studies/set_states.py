@@ -6,7 +6,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from server.hydraulics import affinity
-from server.hydraulics.control import hold_head
 from server.hydraulics.states import State
 from server.studies.lowering.lowered import Flags, Floats, LoweredSet
 
@@ -24,19 +23,44 @@ class SetStates:
     """
 
     state: NDArray[np.int8]
-    station_head: Floats  # [m]
+    flow: Floats  # of the set: the demand in a closed zone [m3/s]
+    station_head: Floats  # between the manifolds, behind a reducing valve [m]
+    valve_loss: Floats  # head taken away by a reducing valve, zero without one [m]
     head_per_per_cent: Floats  # change of head at this flow for 1 % of speed [m]
     flow_at_end: Floats  # of the set with the first unit at its last row [m3/s]
     speed_at_end: Floats  # speed there: the one that holds the head asked, or its limit
+    lack: Floats  # head missing, above zero, or in excess where nothing is held or solved [m]
+    fixed_exceeds: Flags  # the units without a drive pass more than is asked, alone
     energy_residual: Floats  # [m]
     mass_residual: Floats  # [m3/s]
     slot: dict[str, Floats]  # the quantities of PER_SLOT
 
 
-def solve_states(
-    of: LoweredSet, combinations: Flags, flow: Floats, required: Floats
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class RawStates:
+    """What a solver found, (C, K) and (C, K, N), before anything is read off the curves."""
+
+    state: NDArray[np.int8]
+    flow: Floats  # [m3/s]
+    head: Floats  # between the manifolds [m]
+    leg_flow: Floats  # (C, K, N) zero where shut or not running [m3/s]
+    speed: Floats  # (C, K, N)
+    held_shut: Flags  # (C, K, N)
+    cannot_start: Flags  # (C, K, N) held only because it already runs
+    flow_at_end: Floats  # [m3/s]
+    speed_at_end: Floats
+    lack: Floats  # [m]
+    energy_residual: Floats  # [m]
+    mass_residual: Floats  # [m3/s]
+    head_per_per_cent: Floats | None = None  # [m]
+    fixed_exceeds: Flags | None = None
+    valve_loss: Floats | None = None  # [m]
+
+
+def states_of(
+    of: LoweredSet, combinations: Flags, raw: RawStates, known: Flags
 ) -> SetStates:
-    """Return the states of K combinations in C cases.
+    """Return the states with every reading of every slot.
 
     Parameters
     ----------
@@ -44,55 +68,65 @@ def solve_states(
         The set.
     combinations : ndarray of bool, shape (K, N)
         Slots that run in each combination.
-    flow, required : ndarray, shape (C,)
-        Station flow [m3/s], and head that holds the set point, manifold to manifold; nan where
-        it is not known [m].
+    raw : RawStates
+        What the solver found.
+    known : ndarray of bool, shape (C,)
+        Cases that are stated; of the others nothing is.
     """
-    unknown = ~np.isfinite(required)
-    held = hold_head(
-        flow,
-        head=np.where(unknown, 0.0, required),
-        legs=[of.units[slot.unit].leg for slot in of.slots],
-        combinations=combinations,
-        lowest_speed=of.control.lowest_speed,
-        highest_speed=of.control.highest_speed,
-    )
-    state = np.array(held.state)
-    state[_valve_stays_shut(of, combinations, held.speed, held.head, held.leg_flow)] = (
-        State.HELD_SHUT
-    )
+    state = np.array(raw.state)
+    state[_valve_stays_shut(of, combinations, raw)] = State.HELD_SHUT
     # held only because it already runs: it could not be started into that state
-    state[held.cannot_start.any(axis=2) & (flow > 0)[:, None]] = State.HELD_SHUT
-    state[unknown] = State.NOT_AVAILABLE
-    blank = np.where(unknown, np.nan, 1.0)[:, None]
-    speed = held.speed * blank
+    state[raw.cannot_start.any(axis=2) & (raw.flow > 0)] = State.HELD_SHUT
+    state[~known] = State.NOT_AVAILABLE
+    blank = np.where(known, 1.0, np.nan)[:, None]
     # a leg held shut passes nothing: no efficiency, power or NPSH is stated for it
-    leg_flow = np.where(held.held_shut, np.nan, held.leg_flow) * blank[..., None]
-    slot = _readings(of, combinations, leg_flow, speed)
-    slot["leg_flow"] = held.leg_flow * blank[..., None]
+    leg_flow = np.where(raw.held_shut, np.nan, raw.leg_flow) * blank[..., None]
+    slot = _readings(of, combinations, leg_flow, raw.speed * blank[..., None])
+    slot["leg_flow"] = raw.leg_flow * blank[..., None]
+    none = np.zeros(state.shape)
     return SetStates(
         state=state,
-        station_head=held.head * blank,
-        head_per_per_cent=held.head_per_per_cent * blank,
-        flow_at_end=held.last_row_flow * blank,
-        speed_at_end=held.last_row_speed * blank,
-        energy_residual=held.energy_residual * blank,
-        mass_residual=held.mass_residual * blank,
+        flow=raw.flow * blank,
+        station_head=raw.head * blank,
+        valve_loss=(none if raw.valve_loss is None else raw.valve_loss) * blank,
+        head_per_per_cent=(
+            none * np.nan if raw.head_per_per_cent is None else raw.head_per_per_cent * blank
+        ),
+        flow_at_end=raw.flow_at_end * blank,
+        speed_at_end=raw.speed_at_end * blank,
+        lack=raw.lack * blank,
+        fixed_exceeds=(
+            np.zeros(state.shape, dtype=np.bool_)
+            if raw.fixed_exceeds is None
+            else raw.fixed_exceeds & known[:, None]
+        ),
+        energy_residual=raw.energy_residual * blank,
+        mass_residual=raw.mass_residual * blank,
         slot=slot,
     )
 
 
-def _valve_stays_shut(
-    of: LoweredSet, combinations: Flags, speed: Floats, head: Floats, leg_flow: Floats
-) -> Flags:
+def full_speeds(of: LoweredSet) -> Floats:
+    """Return the speed of each slot with nothing held: tested, or the drives' highest, (N,)."""
+    top = of.control.highest_speed
+    return np.array([1.0 if of.units[slot.unit].fixed else top for slot in of.slots])
+
+
+def without_drive(of: LoweredSet) -> Flags:
+    """Return which slots run at their tested speed only, (N,)."""
+    return np.array([of.units[slot.unit].fixed for slot in of.slots], dtype=np.bool_)
+
+
+def _valve_stays_shut(of: LoweredSet, combinations: Flags, raw: RawStates) -> Flags:
     """Return where a leg could not lift its check valve: the cracking head comes on top."""
-    shut = np.zeros(speed.shape, dtype=np.bool_)
+    shut = np.zeros(raw.state.shape, dtype=np.bool_)
+    across = raw.head if raw.valve_loss is None else raw.head + raw.valve_loss
     for i, slot in enumerate(of.slots):
         unit = of.units[slot.unit]
         shutoff = unit.curve.shutoff_head
         if unit.cracking_head > 0 and shutoff is not None:
-            stays = speed**2 * shutoff <= head + unit.cracking_head
-            shut |= combinations[:, i] & stays & (leg_flow[..., i] > 0)
+            stays = raw.speed[..., i] ** 2 * shutoff <= across + unit.cracking_head
+            shut |= combinations[:, i] & stays & (raw.leg_flow[..., i] > 0)
     return shut
 
 
@@ -111,7 +145,9 @@ def _readings(
             continue
         # running slots of one kind carry the same flow: the first of them is read for all
         first = slots[np.argmax(combinations[np.ix_(columns, slots)], axis=1)]
-        one = unit_readings(of, unit, leg_flow[:, columns, first], speed[:, columns])
+        one = unit_readings(
+            of, unit, leg_flow[:, columns, first], speed[:, columns, first]
+        )
         running = combinations[np.ix_(columns, slots)]
         for name, values in one.items():
             slot[name][:, columns[:, None], slots] = np.where(

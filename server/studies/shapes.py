@@ -6,7 +6,8 @@ from typing import Literal
 
 from server.units import Dimension
 
-SupplyState = Literal["low", "normal", "high"]
+# a tank that feeds the station has a fourth state, which is made and never a scenario's
+SupplyState = Literal["low", "normal", "high", "cut_out"]
 SUPPLY_STATES: tuple[SupplyState, ...] = ("low", "normal", "high")
 PipeAge = Literal["new", "aged"]
 Path = str  # a field's or item's address in the document, "/zone/points/pt-c6n2vh/elevation"
@@ -64,6 +65,7 @@ class Case:
     supply: SupplyState
     pipes: PipeAge
     out: str | None
+    units: int | None = None  # running, where the level of a tank and not the demand tells
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -47,7 +47,11 @@ def suction_side(of: LoweredSet, heads: SystemHeads) -> SuctionSide:
 
 
 def breaks_before_eye(of: LoweredSet, suction_grade: Floats, branch_loss: Floats) -> Places:
-    """Return where the column breaks in a suction branch, shape (C, K): at any running pump."""
-    eye = of.water.weight * (suction_grade[:, None, None] - branch_loss - of.eye_level)
+    """Return where the column breaks in a suction branch, shape (C, K): at any running pump.
+
+    The suction grade is that of each case, or of each combination in it.
+    """
+    grade = suction_grade[:, None] if suction_grade.ndim == 1 else suction_grade
+    eye = of.water.weight * (grade[..., None] - branch_loss - of.eye_level)
     broken = (eye < of.water.lowest_pressure).any(axis=2)
     return np.where(broken, Place.PUMP_EYE, Place.NOWHERE).astype(np.int8)

@@ -51,9 +51,11 @@ def system_heads(of: LoweredSet, draw: Draw) -> SystemHeads:
     suction = supply - lost[..., : of.suction_reaches].sum(axis=-1)
     main = lost[..., of.suction_reaches :].sum(axis=-1)
     zone = of.points.loss(draw.domestic, draw.fire, draw.fire_point)
+    asked = _asked(of, draw, main, zone)
     return SystemHeads(
         supply_grade=supply, suction_grade=suction, main_loss=main, zone_loss=zone,
-        required_head=_asked(of, draw, main, zone) - suction,
+        # where no point asks for anything, no head is asked for
+        required_head=np.where(np.isneginf(asked), 0.0 * suction, asked - suction),
     )  # fmt: skip
 
 
@@ -89,7 +91,9 @@ def _asked(of: LoweredSet, draw: Draw, main: Floats, zone: Floats) -> Floats:
     """
     control, points = of.control, of.points
     if control.kind == "fixed_speed":
-        return main + np.max(_required_grade(of, draw) + zone, axis=-1)
+        # a point whose figures are absent is named elsewhere; the others ask what they ask
+        most = np.fmax.reduce(_required_grade(of, draw) + zone, axis=-1, initial=-np.inf)
+        return np.where(np.isfinite(most), main + most, -np.inf)
     held = set_pressure(of, draw.flow) / of.water.weight
     if control.point < 0:
         return np.asarray(control.discharge_gauge_level + held)
@@ -110,12 +114,16 @@ def set_pressure(of: LoweredSet, flow: Floats) -> Floats:
 
 def _required_grade(of: LoweredSet, draw: Draw) -> Floats:
     """Return the grade that each point needs, -inf where it asks for nothing, (..., P) [m]."""
+    return np.asarray(of.points.elevation + least_pressures(of, draw) / of.water.weight)
+
+
+def least_pressures(of: LoweredSet, draw: Draw) -> Floats:
+    """Return the pressure that each point requires, -inf where it asks for none, (..., P)."""
     points = of.points
     flowing = np.asarray(draw.fire_point)[..., None] == np.arange(len(points.facts))
     burning = (np.asarray(draw.fire) > 0)[..., None] | flowing
-    least = np.where(burning, np.where(flowing, points.least_residual, points.least_fire),
-                     points.least_normal)  # fmt: skip
-    return np.asarray(points.elevation + least / of.water.weight)
+    in_fire = np.where(flowing, points.least_residual, points.least_fire)
+    return np.where(burning, in_fire, points.least_normal)
 
 
 def required_head(of: LoweredSet, flow: Floats, aged: ArrayLike, shift: ArrayLike) -> Floats:

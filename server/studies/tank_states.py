@@ -5,6 +5,7 @@ the pumps do not carry the tank feeds. Pumps without a drive, or started by leve
 speed; a held flow asks the drives for the speed that passes it.
 """
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -12,9 +13,17 @@ import numpy as np
 from server.hydraulics.case_system import TabledSystem
 from server.hydraulics.combinations import solve_combinations, spread
 from server.hydraulics.held_flow import hold_flow
+from server.hydraulics.leg_curve import LegCurve
+from server.hydraulics.parallel import ParallelResult
 from server.hydraulics.states import State
 from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
-from server.studies.set_states import RawStates, SetStates, states_of
+from server.studies.set_states import (
+    RawStates,
+    SetStates,
+    full_speeds,
+    states_of,
+    without_drive,
+)
 from server.studies.system_heads import Draw, reach_losses, reach_velocities
 
 LEAST_FLOW = 1e-3  # the slopes of a system are tabled up to this flow at least [m3/s]
@@ -123,55 +132,60 @@ def tank_way(of: LoweredSet, draw: Draw, tank_state: Indices) -> TankWay:
     return TankWay(of=of, draw=draw, level=of.tank.levels[tank_state])
 
 
-def full_speeds(of: LoweredSet) -> Floats:
-    """Return the speed of each slot with nothing held: tested speed, or the drives' highest."""
-    top = of.control.highest_speed
-    return np.array([1.0 if of.units[slot.unit].fixed else top for slot in of.slots])
-
-
 def tank_states(
     of: LoweredSet, combinations: Flags, way: TankWay
 ) -> tuple[SetStates, WayGrades]:
     """Return the states of K combinations in the C cases of a way, and the grades there."""
     legs = [of.units[slot.unit].leg for slot in of.slots]
     system, known = way.system(), way.known
-    shape = (known.size, *combinations.shape)
-    speeds = full_speeds(of)
+    found = solve_combinations(
+        legs, system=system, combinations=combinations, speeds=full_speeds(of)
+    )
     if of.control.kind == "held_flow":
-        fixed = np.array([of.units[slot.unit].fixed for slot in of.slots], dtype=np.bool_)
-        held = hold_flow(
-            of.control.flow, system=system, legs=legs, combinations=combinations,
-            lowest_speed=of.control.lowest_speed, highest_speed=of.control.highest_speed,
-            variable=~fixed,
-        )  # fmt: skip
-        ends = solve_combinations(
-            legs, system=system, combinations=combinations, speeds=speeds
-        )
-        raw = RawStates(
-            state=held.state, flow=held.flow, head=held.head, leg_flow=held.leg_flow,
-            speed=held.speed, held_shut=held.held_shut, cannot_start=held.cannot_start,
-            last_row_flow=ends.last_row_flow, last_row_speed=np.full(shape[:2], np.nan),
-            energy_residual=held.energy_residual, mass_residual=held.mass_residual,
-        )  # fmt: skip
+        raw = _held_flow(of, combinations, legs, system, found)
     else:
-        found = solve_combinations(
-            legs, system=system, combinations=combinations, speeds=speeds
-        )
-        ends = found
+        shape = (known.size, *combinations.shape)
         raw = RawStates(
             state=found.state, flow=found.flow, head=found.manifold_head,
-            leg_flow=found.leg_flow, speed=spread(speeds, shape),
+            leg_flow=found.leg_flow, speed=spread(full_speeds(of), shape),
             held_shut=combinations & (found.leg_state == State.HELD_SHUT),
             cannot_start=found.cannot_start,
-            last_row_flow=found.last_row_flow,
-            last_row_speed=np.full(shape[:2], of.control.highest_speed),
-            energy_residual=found.energy_residual, mass_residual=found.mass_residual,
+            flow_at_end=found.last_row_flow,
+            speed_at_end=np.full(shape[:2], of.control.highest_speed),
+            lack=_lack(found), energy_residual=found.energy_residual,
+            mass_residual=found.mass_residual,
         )  # fmt: skip
-    raw.lack[:] = np.where(ends.static_shortfall > 0, ends.static_shortfall, 0.0)
-    past = raw.state == State.END_OF_CURVE
-    raw.lack[past] = -ends.last_row_surplus[past]
     states = states_of(of, combinations, raw, known)
     case = np.broadcast_to(np.arange(known.size)[:, None], states.flow.shape)
-    # at a combination without a state the grades are those at rest, and never shown
+    # without a state the grades are those at rest: what the tank gives with the pumps off
     flow = np.where(np.isfinite(states.flow), states.flow, 0.0)
     return states, way.grades(flow, case)
+
+
+def _held_flow(
+    of: LoweredSet,
+    combinations: Flags,
+    legs: Sequence[LegCurve],
+    system: TabledSystem,
+    ends: ParallelResult,
+) -> RawStates:
+    """Return the states that pass the flow that is held, or what a limit of speed passes."""
+    held = hold_flow(
+        of.control.flow, system=system, legs=legs, combinations=combinations,
+        lowest_speed=of.control.lowest_speed, highest_speed=of.control.highest_speed,
+        variable=~without_drive(of),
+    )  # fmt: skip
+    return RawStates(
+        state=held.state, flow=held.flow, head=held.head, leg_flow=held.leg_flow,
+        speed=held.speed, held_shut=held.held_shut, cannot_start=held.cannot_start,
+        flow_at_end=ends.last_row_flow,
+        speed_at_end=np.full(held.state.shape, of.control.highest_speed),
+        lack=np.where(held.held, 0.0, _lack(ends)), fixed_exceeds=held.fixed_exceeds,
+        energy_residual=held.energy_residual, mass_residual=held.mass_residual,
+    )  # fmt: skip
+
+
+def _lack(found: ParallelResult) -> Floats:
+    """Return the head missing at no flow, or less than nothing: too much at the last row."""
+    past = found.state == State.END_OF_CURVE
+    return np.where(past, -found.last_row_surplus, found.static_shortfall)

@@ -57,6 +57,11 @@ def lower(station: Station, pump_set_id: str, limits: StudyLimits) -> LoweredSet
         water=of_water,
         supply=of_supply,
         route=way,
+        single_reaches=tuple(
+            reach.id
+            for reach in (*station.suction_line.reaches, *station.discharge_main.reaches)
+            if reach.barrels == 1
+        ),
         ways=(way, *(way.with_barrel_out(_place(station, reach)) for reach in barrels_out)),
         suction_reaches=len(station.suction_line.reaches),
         points=points,

@@ -264,6 +264,7 @@ class LoweredSet:
     water: Water
     supply: Supply
     route: Line  # suction line, then discharge main: one flow, so one reading gives both
+    single_reaches: tuple[str, ...]  # ids of reaches with one barrel
     ways: tuple[Line, ...]  # the route, and the route with one barrel out, as scenarios ask
     suction_reaches: int  # how many of its reaches lie before the pumps
     points: ZonePoints
