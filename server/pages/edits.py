@@ -159,6 +159,9 @@ def _stale(posted: Posted, base: Loaded, newest: Loaded) -> Refusal | None:
 def _conflict(posted: Posted, conflict: Conflict, newest: Loaded) -> Refusal:
     """Return the refusal of an edit that meets another; both values if of one field."""
     own = _conflict_of(newest, conflict)
+    if posted.look == "grid":
+        more = "Load the page again to see theirs; your rows are kept in this window."
+        return Refusal(_typed(posted), f"{own.sentence} {more}")
     theirs = own.theirs if conflict.path == posted.path and posted.op == "set" else None
     return Refusal(_typed(posted), own.sentence, theirs)
 

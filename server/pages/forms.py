@@ -151,7 +151,9 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
         unit=_printed(sheet, entry, symbol, cell=cell),
         unit_symbol=symbol or "",
         hint=entry.guidance,
-        said=_said(sheet, entry, value, missing=missing, cell=cell),
+        said=_missing_words(sheet, path, cell=cell)
+        if missing
+        else _said(sheet, path, entry, value, cell=cell),
         state="refused" if refusal else "missing" if missing else "",
         refusal=refusal,
         choices=choices_of(sheet, path),
@@ -226,10 +228,18 @@ def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) 
     return UNITS[symbol].printed
 
 
-def _said(sheet: SheetView, entry: Entry, value: object, *, missing: bool, cell: bool) -> str:
+def _missing_words(sheet: SheetView, path: str, *, cell: bool) -> str:
+    if cell:
+        return "missing"
+    if path in sheet.needed:
+        return "Missing: the duty waits for it."
+    return "Missing: what needs it is not checked."
+
+
+def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: bool) -> str:
     """Return what was understood: the reading in the other unit, and the source."""
-    if missing:
-        return "missing" if cell else "Missing: what needs it is not checked."
+    if sheet.needed.get(path) == "not_in_this_version":
+        return "Kept, but not computed in this version: the duty is not checked."
     if not isinstance(value, Quantity):
         return ""
     if cell:
