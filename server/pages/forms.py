@@ -270,6 +270,8 @@ def source_words(source: Source | None) -> str:
     """Return where a value comes from, as it stands under its field."""
     if source is None:
         return ""
+    # a date is not torn apart at the end of a line
+    date = (source.date or "").replace("-", "\u2011")
     return ", ".join(
-        part for part in (SOURCE_WORDS[source.kind], source.text, source.date) if part
+        part for part in (SOURCE_WORDS[source.kind], source.text, date) if part
     )

@@ -22,7 +22,7 @@ from server.station.entry import Sheet
 from server.station.titles import lowered
 from server.studies.shapes import Severity
 
-WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "criteria", "memo")
+WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "memo")
 MISSING_SHOWN = 8
 
 
@@ -77,11 +77,15 @@ class Frame:
 
 @dataclass(frozen=True, slots=True)
 class SheetPage:
-    """What a sheet shows in its frame; `results` names a template of fragments for edits."""
+    """What a sheet shows in its frame.
+
+    `results` names a template of fragments that follow an edit of a field; it reads `follow`.
+    """
 
     sheet: Sheet
     build: Callable[[SheetView], object]
     results: str | None = None
+    follow: Callable[[SheetView], object] | None = None
 
     @property
     def folder(self) -> str:
