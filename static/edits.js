@@ -73,7 +73,13 @@
     if (revision) event.detail.parameters.set("base", revision.dataset.number);
     const control = controlOf(form);
     if (control) form.dataset.sent = control.value;
+    delete form.dataset.waits;
   });
+  // a button pressed while another edit is on its way waits for its turn, even if it is drawn anew
+  document.addEventListener("submit", (event) => {
+    const form = event.target.closest("form.act");
+    if (form && event.submitter?.value) form.dataset.waits = event.submitter.value;
+  }, true);
   document.addEventListener("htmx:beforeRequest", (event) => {
     const form = formOf(event.target), control = form && controlOf(form);
     if (!control) return;
@@ -86,32 +92,55 @@
   });
 
   // ---- receiving
-  let typed = new Map();
+  let typed = new Map(), clicked = [], waiting = false;
+  const send = (form) => { if (form.isConnected && isDirty(controlOf(form))) htmx.trigger(form, "submit"); };
+  const wasOf = (form) => form.querySelector("[name=was]");
+  const typedSince = (form, control) => control && isDirty(control) && form.dataset.sent !== control.value;
   document.addEventListener("htmx:oobBeforeSwap", (event) => {
     const target = event.detail.target;
     if (!target) return;
+    // all fragments of an answer are put in their places before this runs
+    if (!waiting) { waiting = true; queueMicrotask(swapped); }
     if (target.matches(".field")) {
       const form = target.querySelector("form.edit"), control = form && controlOf(form);
+      if (!typedSince(form, control)) return;
       // typed in it since it was sent: the newer text stays, and saves itself when it is left
-      if (control && isDirty(control) && form.dataset.sent !== control.value) event.detail.shouldSwap = false;
+      event.detail.shouldSwap = false;
+      const stored = event.detail.fragment.querySelector("[name=was]");
+      if (stored) wasOf(form).value = stored.value;
       return;
+    }
+    for (const form of target.querySelectorAll("form.act[data-waits]")) {
+      clicked.push({ path: pathOf(form), op: form.dataset.waits, before: form.querySelector("[name=before]")?.value || "" });
     }
     for (const form of target.querySelectorAll("form.edit")) {
       const control = controlOf(form);
-      if (control && isDirty(control) && form.dataset.sent !== control.value) typed.set(control.id, control.value);
+      if (typedSince(form, control)) typed.set(control.id, { text: control.value, was: wasOf(form).value });
     }
   });
-  document.addEventListener("htmx:oobAfterSwap", (event) => {
-    for (const [id, text] of typed) {
+  function swapped() {
+    waiting = false;
+    for (const [id, had] of typed) {
       const control = document.getElementById(id);
-      if (control) control.value = text;
+      if (!control) continue;
+      control.value = had.text;
+      // what stood there when it was typed: if somebody has changed it, both values are shown
+      wasOf(control.form).value = had.was;
+      // its own request went with the old form; the browser tells no change of a text put back
+      if (document.activeElement === control) control.addEventListener("blur", () => send(control.form), { once: true });
+      else send(control.form);
     }
     typed = new Map();
-    const root = event.detail.target && event.detail.target.isConnected ? event.detail.target : document;
-    for (const field of [...root.querySelectorAll(".field"), ...(root.matches && root.matches(".field") ? [root] : [])]) remember(field);
+    for (const { path, op, before } of clicked) {
+      const same = [...document.querySelectorAll("form.act")].find((form) =>
+        pathOf(form) === path && (form.querySelector("[name=before]")?.value || "") === before && form.querySelector(`button[value="${op}"]`));
+      if (same) same.querySelector(`button[value="${op}"]`).click();
+    }
+    clicked = [];
+    document.querySelectorAll(".field.refused").forEach(remember);
     putBack(document);
     document.dispatchEvent(new CustomEvent("firmhead:drawn"));
-  });
+  }
   // a field that the server refused is kept over a reload until it is mended
   function remember(field) {
     const form = field.querySelector("form.edit"), control = form && controlOf(form);
@@ -131,9 +160,24 @@
   window.addEventListener("beforeunload", (event) => {
     const open = [...document.querySelectorAll("form.edit")].some((form) => {
       const control = controlOf(form);
-      return control && !control.disabled && isDirty(control) && !kept(pathOf(form)) && form.dataset.sent !== control.value && document.activeElement !== control;
+      return control && !control.disabled && typedSince(form, control) && !kept(pathOf(form));
     });
     if (open) event.preventDefault();
+  });
+  // a link followed while an edit is on its way waits for it, so that the next page shows it
+  document.addEventListener("click", (event) => {
+    const link = event.target.closest("a[href]");
+    if (!link || event.button || event.metaKey || event.ctrlKey || event.shiftKey || link.hasAttribute("download")) return;
+    if (link.origin !== location.origin || !document.querySelector(".htmx-request")) return;
+    event.preventDefault();
+    let gone = false;
+    const go = () => {
+      if (gone || document.querySelector(".htmx-request")) return;
+      gone = true;
+      location.assign(link.href);
+    };
+    document.addEventListener("htmx:afterRequest", () => setTimeout(go, 30));
+    setTimeout(() => { if (!gone) { gone = true; location.assign(link.href); } }, 5000);
   });
 
   // a new item: its first field takes the focus

@@ -136,10 +136,12 @@ class _Writer:
         # its head
         css = "keep" if len(table.rows) <= 12 and table.kind != "inputs" else "long"
         css += f" {table.kind}" if table.kind else ""
+        caption = f"{number}{escape(table.caption)}"
+        # a wide table scrolls on a narrow screen, so it can be reached by keyboard
         return (
-            f'<div class="table {css}"><table><caption>{number}{escape(table.caption)}'
-            "</caption>"
-            f"<thead><tr>{heads}</tr></thead><tbody>{rows}</tbody></table>{notes}</div>"
+            f'<div class="table {css}" tabindex="0" role="group" aria-label="{caption}">'
+            f"<table><caption>{caption}</caption><thead><tr>{heads}</tr></thead>"
+            f"<tbody>{rows}</tbody></table>{notes}</div>"
         )
 
     def _head(self, column: Column) -> str:

@@ -54,6 +54,6 @@ def default_of(path: str) -> Default | None:
 
 
 def default_words(default: Default, view: View) -> str:
-    """Return the words of the action: "Use 20 °C"."""
+    """Return the words of the action: "Use 20 °C, a default"."""
     value, unit = default.us if view == "us" else default.si
-    return f"Use {value:g}\u00a0{UNITS[unit].printed}"
+    return f"Use {value:g}\u00a0{UNITS[unit].printed}, a default"

@@ -14,7 +14,7 @@ from fastapi.responses import HTMLResponse, RedirectResponse, Response
 
 from server.pages.came_from import came_from
 from server.pages.forms import GOVERNING, field_view, pattern_of
-from server.pages.frame import frame_of, page_of, show
+from server.pages.frame import SheetPage, frame_of, page_of, show
 from server.pages.posted import Asked, Posted, asked, posted_form
 from server.pages.rendering import render
 from server.pages.rights import actor_of, needs
@@ -159,6 +159,9 @@ def _stale(posted: Posted, base: Loaded, newest: Loaded) -> Refusal | None:
 def _conflict(posted: Posted, conflict: Conflict, newest: Loaded) -> Refusal:
     """Return the refusal of an edit that meets another; both values if of one field."""
     own = _conflict_of(newest, conflict)
+    if posted.look == "grid":
+        more = "Load the page again to see theirs; your rows are kept in this window."
+        return Refusal(_typed(posted), f"{own.sentence} {more}")
     theirs = own.theirs if conflict.path == posted.path and posted.op == "set" else None
     return Refusal(_typed(posted), own.sentence, theirs)
 
@@ -275,9 +278,9 @@ class _Answer:
         context: dict[str, object] = {
             "sheet": sheet,
             "frame": frame_of(sheet, self.merged) if self.frame else None,
-            "page": page.build(sheet) if page and (self.content or page.results) else None,
+            "page": self._page(page),
             "content": f"{page.folder}/content.html" if page and self.content else None,
-            "results": page.results if page and self.frame else None,
+            "results": page.results if page and self.frame and not self.content else None,
             "fields": tuple(field_view(sheet, path, posted.shape) for path in self.fields),
             "said": said,
             "number": sheet.loaded.number if self.saved else None,
@@ -293,6 +296,14 @@ class _Answer:
             )
         answer.headers["Vary"] = "HX-Request"
         return answer
+
+    def _page(self, page: SheetPage | None) -> object:
+        """Build only what this answer shows of the sheet."""
+        if page is None:
+            return None
+        if self.content:
+            return page.build(self.sheet)
+        return page.follow(self.sheet) if page.follow and self.frame else None
 
     def _said(self) -> Said | None:
         """Return what is said beside a grid, a paste box or a row of sources."""

@@ -151,7 +151,9 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
         unit=_printed(sheet, entry, symbol, cell=cell),
         unit_symbol=symbol or "",
         hint=entry.guidance,
-        said=_said(sheet, entry, value, missing=missing, cell=cell),
+        said=_missing_words(sheet, path, cell=cell)
+        if missing
+        else _said(sheet, path, entry, value, cell=cell),
         state="refused" if refusal else "missing" if missing else "",
         refusal=refusal,
         choices=choices_of(sheet, path),
@@ -226,10 +228,18 @@ def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) 
     return UNITS[symbol].printed
 
 
-def _said(sheet: SheetView, entry: Entry, value: object, *, missing: bool, cell: bool) -> str:
+def _missing_words(sheet: SheetView, path: str, *, cell: bool) -> str:
+    if cell:
+        return "missing"
+    if path in sheet.needed:
+        return "Missing: the duty waits for it."
+    return "Missing: what needs it is not checked."
+
+
+def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: bool) -> str:
     """Return what was understood: the reading in the other unit, and the source."""
-    if missing:
-        return "missing" if cell else "Missing: what needs it is not checked."
+    if sheet.needed.get(path) == "not_in_this_version":
+        return "Kept, but not computed in this version: the duty is not checked."
     if not isinstance(value, Quantity):
         return ""
     if cell:
@@ -260,6 +270,8 @@ def source_words(source: Source | None) -> str:
     """Return where a value comes from, as it stands under its field."""
     if source is None:
         return ""
+    # a date is not torn apart at the end of a line
+    date = (source.date or "").replace("-", "\u2011")
     return ", ".join(
-        part for part in (SOURCE_WORDS[source.kind], source.text, source.date) if part
+        part for part in (SOURCE_WORDS[source.kind], source.text, date) if part
     )

@@ -19,9 +19,10 @@ from server.pages.strip_view import (
 from server.pages.strip_view import findings_list as lines_of
 from server.station import fields, paths
 from server.station.entry import Sheet
+from server.station.titles import lowered
 from server.studies.shapes import Severity
 
-WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "criteria", "memo")
+WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "memo")
 MISSING_SHOWN = 8
 
 
@@ -76,11 +77,15 @@ class Frame:
 
 @dataclass(frozen=True, slots=True)
 class SheetPage:
-    """What a sheet shows in its frame; `results` names a template of fragments for edits."""
+    """What a sheet shows in its frame.
+
+    `results` names a template of fragments that follow an edit of a field; it reads `follow`.
+    """
 
     sheet: Sheet
     build: Callable[[SheetView], object]
     results: str | None = None
+    follow: Callable[[SheetView], object] | None = None
 
     @property
     def folder(self) -> str:
@@ -167,9 +172,9 @@ def state_of(sheet: SheetView, name: Sheet) -> tuple[str, str]:
     """Return what the spine says of a sheet, and its class."""
     if name in ("summary", "memo", "history"):
         return "", ""
-    missing = len(missing_on(sheet, name))
-    if missing:
-        return f"{missing} missing", "missing"
+    needed = len(needed_on(sheet, name))
+    if needed:
+        return f"{needed} missing", "missing"
     findings = sheet.findings_of(name)
     open_ = sum(finding.severity in OPEN for finding in findings)
     if open_:
@@ -179,13 +184,13 @@ def state_of(sheet: SheetView, name: Sheet) -> tuple[str, str]:
     return "complete", ""
 
 
-def missing_on(sheet: SheetView, name: Sheet) -> tuple[str, ...]:
-    """Return the empty fields and lists of a sheet that a study waits for, in order."""
-    found = []
-    for path in sheet.missing:
-        node = fields.find(path)
-        if node is not None and node.sheet == name and _is_empty(sheet, path):
-            found.append(path)
+def needed_on(sheet: SheetView, name: Sheet) -> tuple[str, ...]:
+    """Return the fields and lists of a sheet that the duty waits for, in order."""
+    found = [
+        path
+        for path in sheet.needed
+        if (node := fields.find(path)) is not None and node.sheet == name
+    ]
     return tuple(sorted(found, key=lambda path: (_order()[fields.node_at(path).pattern], path)))
 
 
@@ -194,33 +199,48 @@ def _order() -> dict[str, int]:
     return {node.pattern: place for place, node in enumerate(fields.walk(fields.root()))}
 
 
-def _is_empty(sheet: SheetView, path: str) -> bool:
-    """Whether nothing stands at a path; a field that is filled in is not missing."""
-    return paths.has(sheet.station, path) and paths.get(sheet.station, path) in (None, "", ())
-
-
 def next_of(sheet: SheetView) -> Next | None:
     """Return what this sheet or the next one waits for; None once it is solved."""
-    if sheet.read_only or sheet.result is not None:
+    if sheet.read_only:
         return None
-    here = missing_on(sheet, sheet.sheet)
+    here = needed_on(sheet, sheet.sheet)
     if here:
-        links = tuple((words_of(sheet, p), sheet.field_href(p)) for p in here[:MISSING_SHOWN])
+        links = tuple(
+            (needed_words(sheet, p), sheet.field_href(p)) for p in here[:MISSING_SHOWN]
+        )
         left = len(here) - len(links)
-        return Next("Still missing on this sheet", links, f"and {left} more" if left else "")
+        return Next(
+            "Still missing here, before the duty can be solved",
+            links,
+            f"and {left} more" if left else "",
+        )
     for name, title in SHEETS:
-        there = missing_on(sheet, name)
+        there = needed_on(sheet, name)
         if there:
-            first = words_of(sheet, there[0])
+            first = needed_words(sheet, there[0])
             link = (f"{SHEET_NUMBERS[name]} {title}: {first}", sheet.field_href(there[0]))
             return Next("Nothing is missing here; the work goes on at", (link,), "")
     return None
 
 
+def needed_words(sheet: SheetView, path: str) -> str:
+    """Return what the duty waits for at a path; a kind not computed is said to be so."""
+    told = words_of(sheet, path)
+    match sheet.needed.get(path):
+        case "absent":
+            return told
+        case "not_in_this_version":
+            return f"{told}: what is chosen is kept, but not computed in this version"
+    return f"{told}: it cannot be used as entered; the finding says why"
+
+
 def words_of(sheet: SheetView, path: str) -> str:
     """Return a field in words, without the name of the sheet it stands on."""
     told = paths.words(sheet.station, path)
-    title = fields.SHEET_TITLES[fields.sheet_of(path)]
+    node = fields.node_at(path)
+    if node.kind == "list" and node.group_title:
+        return f"{node.group_title}: {lowered(node.title)}"
+    title = fields.SHEET_TITLES[node.sheet]
     short = told.removeprefix(f"{title}, ")
     return short[:1].upper() + short[1:]
 

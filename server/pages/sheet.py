@@ -7,6 +7,7 @@ from urllib.parse import urlencode
 from fastapi import HTTPException, Request
 
 from server.pages.links import link
+from server.pages.still_needed import still_needed
 from server.pages.store_of import store_of
 from server.station import fields, paths
 from server.station.entry import Sheet
@@ -48,6 +49,7 @@ class SheetView:
     at: int | None
     chosen: Mapping[str, str]
     missing: frozenset[str]
+    needed: Mapping[str, str]
     refused: Mapping[str, Refusal] = field(default_factory=dict)
 
     @property
@@ -165,6 +167,8 @@ def view_of(
     """Return the sheet of a document that is already loaded."""
     station = loaded.station
     assessment = assess(station, loaded.hash)
+    set_id = _chosen(query.get("set"), [s.id for s in station.sets], station.proposed_set)
+    needed = still_needed(assessment, set_id)
     view: View = "us" if query.get("units", station.display.units) == "us" else "si"
     return SheetView(
         request=request,
@@ -173,11 +177,12 @@ def view_of(
         loaded=loaded,
         assessment=assessment,
         view=view,
-        set_id=_chosen(query.get("set"), [s.id for s in station.sets], station.proposed_set),
+        set_id=set_id,
         scenario_id=_chosen(query.get("case"), [s.id for s in station.scenarios if s.on], None),
         at=at,
         chosen=dict(query),
-        missing=frozenset(assessment.missing),
+        missing=frozenset(assessment.missing) | frozenset(needed),
+        needed=needed,
     )
 
 

@@ -93,7 +93,19 @@ def build(sheet: SheetView) -> SupplyPage:
     )
 
 
-register(SheetPage("supply", build, "supply/results.html"))
+@dataclass(frozen=True, slots=True)
+class SupplyResults:
+    """What follows an edit of a field on this sheet."""
+
+    figure: FigureView
+
+
+def follow(sheet: SheetView) -> SupplyResults:
+    """Return the results that stand among the fields."""
+    return SupplyResults(supply_figure(sheet))
+
+
+register(SheetPage("supply", build, "supply/results.html", follow))
 
 
 @router.get("/stations/{station_id}/supply", name="supply", dependencies=[needs("read")])

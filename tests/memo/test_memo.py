@@ -4,6 +4,8 @@ import re
 from html.parser import HTMLParser
 
 import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
 
 from server import __version__
 from server.memo.blocks import Number
@@ -11,6 +13,7 @@ from server.memo.book import SECTIONS, memo_book
 from server.memo.sections.cautions import CAUTIONS
 from server.memo.source import memo_source
 from server.memo.to_html import css_string, memo_html, page_css
+from server.station import fields, paths
 from server.station.canonical import canonical_bytes, document_hash
 from server.station.station import Answer, Station
 from server.studies.assess import assess
@@ -249,3 +252,37 @@ def test_a_number_of_a_memo_is_kept_in_si(demo):
 
     assert duty.rows[7][2] == pytest.approx(0.036)
     assert Number(0.036, duty.columns[2].dimension).value == 0.036
+
+
+def _entered(station, path):
+    node, value = fields.node_at(path), paths.get(station, path)
+    if node.kind == "group":
+        for name in node.children:
+            yield from _entered(station, f"{path}/{name}")
+    elif node.kind == "list":
+        for item in value:
+            yield from _entered(station, f"{path}/{item.id}")
+    elif node.kind == "quantity" and value is not None:
+        yield path
+
+
+@settings(
+    max_examples=12, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture]
+)
+@given(data=st.data())
+def test_a_memo_is_written_whatever_single_value_is_missing(demo, words, data):
+    parts = (
+        "/site",
+        "/supply",
+        "/legs",
+        "/discharge_main",
+        "/zone",
+        "/horizons",
+        "/pumps",
+        "/sets",
+    )
+    path = data.draw(st.sampled_from([p for part in parts for p in _entered(demo, part)]))
+    text = words(memo_html(paths.put(demo, path, None), "si", "a4"))
+
+    assert "Cautions" in text
+    assert not re.search(r"\bnan\b|\binf\b", text)

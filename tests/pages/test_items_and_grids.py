@@ -159,7 +159,7 @@ def test_an_empty_station_leads_from_sheet_to_sheet(client):
     made = client.post("/stations", data={"title": "Empty"})
     station = made.headers["location"].split("/")[-2]
     page = ReadPage(client.get(f"/stations/{station}/supply").text)
-    assert "Still missing on this sheet" in page.words
+    assert "Still missing here" in page.words
 
     history = ReadPage(client.get(f"/stations/{station}/history").text)
     assert "the work goes on at 2 Site and supply" in history.words
@@ -180,3 +180,22 @@ def test_every_link_to_a_missing_field_leads_to_an_id_on_its_sheet(client):
 def test_a_solved_station_is_not_told_what_is_missing(opened):
     assert "Still missing" not in opened("supply").words
     assert "goes on at" not in opened("pumps").words
+
+
+def test_a_kind_that_is_not_computed_yet_says_so_beside_it_and_in_the_way_on(send, opened):
+    send("/supply/kind", "tank", base="1", look="choice")
+    page = opened("supply")
+
+    assert "Kept, but not computed in this version" in page.words
+    assert "Kind of supply: what is chosen is kept, but not computed" in page.words
+
+
+def test_the_way_on_asks_for_the_rows_of_a_pump_before_there_is_a_set(client):
+    made = client.post("/stations", data={"title": "Empty"})
+    station = made.headers["location"].split("/")[-2]
+    client.post(
+        f"/stations/{station}/edits", data={"path": "/pumps", "op": "insert", "base": "1"}
+    )
+    page = ReadPage(client.get(f"/stations/{station}/pumps").text)
+
+    assert "tested rows" in page.words.partition("Still missing here")[2][:200]

@@ -21,9 +21,13 @@ METHOD: tuple[str, ...] = (
     "Every scenario is solved at low, normal and high supply, suction and discharge in one "
     "solve; the"
     " control produces a state, the requirements judge it.",
-    "Grade line: total head. A gauge pressure is density times 9.80665 m/s² times the height "
-    "of the grade"
-    " line over the gauge; velocity head is not taken off.",
+    "Gauge pressures count from the total grade line (density times 9.80665 m/s² times the "
+    "height of the line over the gauge); velocity head is not subtracted.",
+    "A computed pressure below a vacuum is no pressure: there is no water at that place, the "
+    "main drains or the column breaks. Without an altitude the vacuum is that of the heaviest "
+    "air, at −400 m.",
+    "Pressure ratings of the main are judged at the lowest level entered for each reach, else "
+    "at the discharge gauge; lower down the pressure is higher.",
 )
 
 

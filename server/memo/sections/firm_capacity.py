@@ -2,6 +2,7 @@
 
 from server.memo.blocks import Block, Cell, Column, Heading, Paragraph, Table
 from server.memo.source import MemoSource
+from server.studies.duty_result import FirmCapacity
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.findings.requirement_words import limit_title
 from server.units import Dimension as D
@@ -46,11 +47,11 @@ def _table(of: MemoSource, judged: JudgedSet) -> Table:
                 firm.required_flow,
                 firm.by_head,
                 limit_title(firm.by_head_limit, of.station),
-                firm.by_all,
-                limit_title(firm.by_all_limit, of.station),
+                "not checked" if firm.not_counted else firm.by_all,
+                _limit(firm, of),
                 slots.get(firm.unit_out, "–"),
                 _known(firm.all_running),
-                "–" if firm.runs_out is None else str(firm.runs_out),
+                "–" if firm.runs_out is None or firm.not_counted else str(firm.runs_out),
             )
         )
     return Table(
@@ -73,6 +74,14 @@ def _table(of: MemoSource, judged: JudgedSet) -> Table:
             " capacity by all limits; a dash: not within the horizons.",
         ),
     )
+
+
+def _limit(firm: FirmCapacity, of: MemoSource) -> str:
+    """Return what limits a capacity, or the limits that could not be counted."""
+    if not firm.not_counted:
+        return limit_title(firm.by_all_limit, of.station)
+    names = ", ".join(limit_title(name, of.station) for name in firm.not_counted)
+    return f"not known: {names}"
 
 
 def _known(value: float) -> float | None:

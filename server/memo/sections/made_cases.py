@@ -6,7 +6,14 @@ from server.figures.case_words import combination_words, scenario_title, slot_ti
 from server.hydraulics.states import State
 from server.memo.blocks import Block, Cell, Column, Heading, Paragraph, Spans, Table
 from server.memo.source import MemoSource
-from server.studies.duty_result import AfterTrip, Handover, StationOff, ZeroFlow
+from server.studies.duty_result import (
+    AfterTrip,
+    Handover,
+    OnePumpAlone,
+    Place,
+    StationOff,
+    ZeroFlow,
+)
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import SUPPLY_STATES
 from server.units import Dimension as D
@@ -27,12 +34,15 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         made.append(_station_off(of, judged, cases.station_off))
     if cases.after_trip is not None:
         made.append(_after_trip(of, judged, cases.after_trip))
+    if cases.one_pump_alone is not None:
+        made.append(_alone(judged, cases.one_pump_alone))
     if cases.handover is not None and len(cases.handover.fewer):
         made.append(_handover(judged, cases.handover))
     for name, case in (
         ("A shut zone", cases.zero_flow),
         ("The station off", cases.station_off),
         ("A trip", cases.after_trip),
+        ("One pump alone", cases.one_pump_alone),
         ("Hand-over", cases.handover),
     ):
         if case is None:
@@ -150,6 +160,8 @@ def _after_trip(of: MemoSource, judged: JudgedSet, trip: AfterTrip) -> Table:
             told, share = "nothing runs until the standby has started", None
         elif state is State.END_OF_CURVE:
             told, share = "past the end of the curve: no duty", None
+        elif state is State.NO_WATER:
+            told, share = "no water to pump", None
         elif state in (State.SOLVED, State.TOP_SPEED, State.LOW_SPEED):
             told = "set point held" if state is State.SOLVED else "at the limit of speed"
             share = _n(trip.best_efficiency_share[i])
@@ -163,6 +175,7 @@ def _after_trip(of: MemoSource, judged: JudgedSet, trip: AfterTrip) -> Table:
                 str(int(trip.running[i])),
                 told,
                 share,
+                _trip_pressure(judged, trip, i),
                 _n(trip.flow_at_end[i]) if trip.running[i] else None,
             )
         )
@@ -175,9 +188,69 @@ def _after_trip(of: MemoSource, judged: JudgedSet, trip: AfterTrip) -> Table:
             Column("Left"),
             Column("What the rest does"),
             Column("Largest of BEP", D.RATIO, 0),
+            Column(f"{_held_title(judged)} then", D.PRESSURE),
             Column("Curves end at", D.FLOW),
         ),
         tuple(rows),
+    )
+
+
+def _critical(judged: JudgedSet) -> int | None:
+    """Return the point whose pressure is told after a trip: the held one, else the critical."""
+    if judged.held_index >= 0:
+        return judged.held_index
+    roles = [point.role for point in judged.points]
+    return roles.index("critical") if "critical" in roles else 0 if roles else None
+
+
+def _held_title(judged: JudgedSet) -> str:
+    p = _critical(judged)
+    return "Pressure" if p is None else judged.points[p].title or "Point"
+
+
+def _trip_pressure(judged: JudgedSet, trip: AfterTrip, i: int) -> Cell:
+    p = _critical(judged)
+    if p is None:
+        return None
+    return "no water" if trip.point_without_water[i, p] else _n(trip.point_pressure[i, p])
+
+
+def _alone(judged: JudgedSet, alone: OnePumpAlone) -> Table:
+    rows: list[tuple[Cell, ...]] = []
+    titles = {slot.id: judged.pump_title(n) for n, slot in enumerate(judged.slots)}
+    motors = {slot.id: slot.motor_power for slot in judged.slots}
+    for u, slot in enumerate(alone.slots):
+        dry = Place(int(alone.suction_breaks_at[u])) is not Place.NOWHERE
+        rows.append(
+            (
+                titles[slot],
+                _n(alone.flow[u]),
+                "its last row" if alone.to_last_row[u] else "the zone wide open",
+                _n(alone.best_efficiency_share[u]),
+                "no water" if dry else _n(alone.npsh_available[u]),
+                _n(alone.npsh_required[u]),
+                _n(alone.shaft_power[u]),
+                motors[slot],
+            )
+        )
+    return Table(
+        f"One pump alone at top speed, low supply, {alone.pipes} pipes: as far out as it runs",
+        (
+            Column("Pump"),
+            Column("Flow", D.FLOW),
+            Column("ends at"),
+            Column("Of BEP", D.RATIO, 0),
+            Column("NPSH available", D.HEAD),
+            Column("NPSH required", D.HEAD),
+            Column("Shaft power", D.POWER),
+            Column("Motor", D.POWER),
+        ),
+        tuple(rows),
+        (
+            "A closed zone may draw what it likes, as in a burst: the flow ends at the last "
+            "row, or where the pressure at the point easiest to reach has fallen to that of "
+            "the air.",
+        ),
     )
 
 

@@ -1,6 +1,6 @@
 """NPSH and velocities on the suction side."""
 
-from server.figures.duty_rows import worst
+from server.figures.duty_rows import wet, worst
 from server.memo.blocks import Block, Cell, Column, Heading, Paragraph, Table
 from server.memo.source import MemoSource
 from server.units import Dimension as D
@@ -23,16 +23,16 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     )
     rows: list[tuple[Cell, ...]] = []
     for duty in of.duties:
-        far = worst(duty.states, lambda r: r.npsh_margin)
+        far = worst(duty.states, lambda r: r.npsh_margin, dry="npsh")
         own = duty.own
         rows.append(
             (
                 own.title,
                 own.of.supply,
-                own.npsh_available,
+                wet(own, "npsh", own.npsh_available),
                 own.npsh_required,
-                own.npsh_margin,
-                None if far is None else far.npsh_margin,
+                wet(own, "npsh", own.npsh_margin),
+                None if far is None else wet(far, "npsh", far.npsh_margin),
                 "–" if far is None else far.of.supply,
             )
         )

@@ -29,10 +29,16 @@ def _table(of: MemoSource, points: tuple[PointFacts, ...], which: range) -> Tabl
     for duty in of.duties:
         cells: list[Spans] = []
         for p in which:
-            read = _reader(p)
-            far = worst(duty.states, read, highest=points[p].role == "lowest")
-            own = shown(read(duty.own), D.PRESSURE, of.view)
-            told = "" if far is None else shown(read(far), D.PRESSURE, of.view)
+            read, dry = _reader(p), f"point-{p}"
+            far = worst(duty.states, read, highest=points[p].role == "lowest", dry=dry)
+            own, told = (
+                ""
+                if row is None
+                else "no water"
+                if dry in row.dry
+                else shown(read(row), D.PRESSURE, of.view)
+                for row in (duty.own, far)
+            )
             same = far is None or far is duty.own or told == own
             cells.append(
                 (own,) if same or far is None else (own, f" ({told} at {far.of.supply})")

@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from server.figures.duty_rows import worst
+from server.figures.duty_rows import wet, worst
 from server.figures.supply_chart import supply_chart
 from server.memo.blocks import Block, Cell, Column, Figure, Heading, Paragraph, Table
 from server.memo.source import MemoSource
@@ -62,17 +62,17 @@ def _suction(of: MemoSource) -> Table:
     rows: list[tuple[Cell, ...]] = []
     for duty in of.duties:
         main, gauge = (
-            worst(duty.states, lambda r: r.connection_pressure),
-            worst(duty.states, lambda r: r.suction_pressure),
+            worst(duty.states, lambda r: r.connection_pressure, dry="connection"),
+            worst(duty.states, lambda r: r.suction_pressure, dry="suction"),
         )
         rows.append(
             (
                 duty.own.title,
                 duty.own.of.supply,
-                duty.own.connection_pressure,
-                duty.own.suction_pressure,
-                None if main is None else main.connection_pressure,
-                None if gauge is None else gauge.suction_pressure,
+                wet(duty.own, "connection", duty.own.connection_pressure),
+                wet(duty.own, "suction", duty.own.suction_pressure),
+                None if main is None else wet(main, "connection", main.connection_pressure),
+                None if gauge is None else wet(gauge, "suction", gauge.suction_pressure),
                 "–" if main is None else main.of.supply,
             )
         )
