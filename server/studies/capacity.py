@@ -16,8 +16,10 @@ from server.studies.limits import StudyLimits
 from server.studies.lowering.lowered import Flags, Floats, LoweredSet
 from server.studies.set_ends import CommonSpeed
 from server.studies.system_heads import Draw, SystemHeads, point_pressures, system_heads
+from server.studies.tank_states import tank_way
 
 LARGE = 1e12  # stands for "never binds" while a root is sought [Pa]
+TANK_LEVEL, FULL = "tank_level", 2  # the limit of a filling station; place of the top level
 SUCTION_LIMITS = ("connection", "suction_gauge", "npsh")
 
 
@@ -29,6 +31,7 @@ class Asked:
     fire_point: Floats  # (M,) index into points, -1 none
     shift: Floats  # (M,) of the supply's low state [Pa]
     least: Floats  # (M, P) pressure, -inf where a point asks for none [Pa]
+    drawn: Floats  # (M,) from the zone while its tank is filled [m3/s]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -51,8 +54,9 @@ def capacities(
     of: LoweredSet, limits: StudyLimits, units: CommonSpeed, asked: Asked
 ) -> tuple[Capacity, ...]:
     """Return the capacity of M combinations, each for what is asked of it."""
-    speed, points = of.control.highest_speed, len(of.points.facts)
-    names = [f"point:{p.id}" for p in of.points.facts] + list(SUCTION_LIMITS)
+    speed = of.control.highest_speed
+    zone = [TANK_LEVEL] if of.floats else [f"point:{p.id}" for p in of.points.facts]
+    names, points = [*zone, *SUCTION_LIMITS], len(zone)
     shape = (units.count.shape[0], len(names))
 
     def short(y: Floats) -> Floats:
@@ -63,7 +67,12 @@ def capacities(
     high = np.array(np.broadcast_to(units.peak_head[:, None], shape))
     # without a root between, the limit binds at once (y at the peak) or never (at the last row)
     found = falling_root(short, low, high)
-    is_asked = np.isfinite(np.pad(asked.least, ((0, 0), (0, len(SUCTION_LIMITS)))))
+    is_asked = np.ones(shape, dtype=np.bool_)
+    if not of.floats:
+        is_asked[:, :points] = np.isfinite(asked.least)
+    if of.supply.kind == "tank":
+        # a tank is no main: nobody else draws from it, and its level is its own limit
+        is_asked[:, points : points + 2] = False
     unknown = is_asked & (found.at_low <= -LARGE)
     y, at_end, at_shut = found.root, found.at_low, found.at_high
     y = np.where(at_shut > 0, high, np.where(at_end <= 0, low, y))
@@ -75,6 +84,9 @@ def capacities(
     for m in range(shape[0]):
         head, head_limit, at = _least(end[m], flow[m, :points], free[m, :points], names)
         everything, all_limit, _ = _least(end[m], flow[m], free[m], names)
+        if of.control.kind == "held_flow":
+            head, head_limit = _at_most(head, head_limit, of.control.flow)
+            everything, all_limit = _at_most(everything, all_limit, of.control.flow)
         y_head = float(units.last_head[m]) if at is None else float(y[m, at])
         rows.append(
             Capacity(by_head=head, by_head_limit=head_limit, by_all=everything,
@@ -85,26 +97,58 @@ def capacities(
     return tuple(rows)
 
 
+def _at_most(flow: float, limit: str, held: float) -> tuple[float, str]:
+    """Return a capacity under a control that holds a flow."""
+    return (held, "held_flow") if held < flow else (flow, limit)
+
+
 def _excess(
     of: LoweredSet, limits: StudyLimits, units: CommonSpeed, asked: Asked, y: Floats
 ) -> Floats:
-    """Return pressure over what is asked, (M, P + 3): points, connection, gauge, NPSH [Pa]."""
-    speed, points, weight = of.control.highest_speed, len(of.points.facts), of.water.weight
+    """Return pressure over what is asked, (M, L): points or tank, main, gauge, NPSH [Pa]."""
+    speed, weight = of.control.highest_speed, of.water.weight
     each = units.kind_flows(y)
-    heads = _heads(of, asked, speed * units.sum_of(each))
-    entry = (heads.suction_grade + speed**2 * y - heads.main_loss)[:, :points]
-    pressure = point_pressures(of, entry, heads.zone_loss[:, :points])[1]
+    flow = speed * units.sum_of(each)
+    head = speed**2 * y - of.control.valve_loss * flow * flow
+    points = y.shape[1] - len(SUCTION_LIMITS)
     over = np.empty(y.shape)
-    over[:, :points] = np.diagonal(pressure, axis1=1, axis2=2) - asked.least
+    if of.floats:
+        heads = _tank_heads(of, asked, flow)
+        over[:, :points] = (weight * (head - heads.required_head))[:, :points]
+    else:
+        heads = _heads(of, asked, flow)
+        entry = (heads.suction_grade + head - heads.main_loss)[:, :points]
+        pressure = point_pressures(of, entry, heads.zone_loss[:, :points])[1]
+        over[:, :points] = np.diagonal(pressure, axis1=1, axis2=2) - asked.least
     connection = heads.supply_grade[:, points] - of.supply.connection_level
     over[:, points] = weight * connection - limits.suction_main
     gauge = heads.suction_grade[:, points + 1] - of.supply.suction_gauge_level
     over[:, points + 1] = weight * gauge - limits.suction_gauge
+    if of.supply.kind == "tank":
+        over[:, points : points + 2] = np.nan
     npsh = _npsh_excess(
         of, limits, units, [x[:, points + 2] for x in each], heads.suction_grade[:, points + 2]
     )
     over[:, points + 2] = weight * npsh
     return over
+
+
+def _tank_heads(of: LoweredSet, asked: Asked, flow: Floats) -> SystemHeads:
+    """Return the grades on the way to the full tank, at low supply on aged pipes."""
+    number = asked.drawn.size
+    draw = Draw(
+        domestic=asked.drawn, fire=np.zeros(number), fire_point=-1,
+        aged=np.ones(number, dtype=np.bool_), shift=asked.shift,
+        way=np.zeros(number, dtype=np.intp),
+    )  # fmt: skip
+    way = tank_way(of, draw, np.full(number, FULL))
+    case = np.broadcast_to(np.arange(number)[:, None], flow.shape)
+    grades = way.grades(flow, case)
+    return SystemHeads(
+        supply_grade=grades.supply_grade, suction_grade=grades.suction_grade,
+        main_loss=grades.before_draw, zone_loss=np.zeros((*flow.shape, 0)),
+        required_head=grades.required_head,
+    )  # fmt: skip
 
 
 def _heads(of: LoweredSet, asked: Asked, flow: Floats) -> SystemHeads:

@@ -1,42 +1,32 @@
 """Firm capacity: the largest flow with each installed unit in turn out.
 
-At low supply, on aged pipes, all other units at top speed; a standby counts as installed.
+At low supply, on aged pipes, all other units at full speed, as many as the level stages start;
+a standby counts as installed. Two numbers, by head and by all limits, and the second once more
+with every pump at the lower corner of its test grade.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 import numpy as np
 
-from server.studies.capacity import NO_UNIT, Asked, Capacity, capacities
-from server.studies.cases import installed_slots, shifts
+from server.hydraulics.leg_curve import LegCurve
+from server.studies.acceptance_grade import grade_of, weak_leg
+from server.studies.capacity import NO_UNIT, Capacity, capacities
+from server.studies.cases import installed_slots
 from server.studies.duty_result import FirmCapacity
+from server.studies.firm_requirements import (
+    TANK_REFILL,
+    Requirement,
+    asked_of,
+    requirements,
+    runs_out,
+)
 from server.studies.limits import StudyLimits
-from server.studies.lowering.lowered import Floats, Growth, LoweredSet
+from server.studies.lowering.lowered import LoweredSet
 from server.studies.set_ends import CommonSpeed, relative_speeds
 
-PEAK_HOUR, FIRE = "peak_hour", "maximum_day_fire"
 SAME = 1e-6  # of a capacity: what roots are sought to, with room
 Counts = tuple[int, ...]  # how many of each unit
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Requirement:
-    """What must be held in one horizon, and the flow that is asked for."""
-
-    name: str
-    fire: str | None
-    horizon: Growth
-    required_flow: float  # [m3/s]
-    fire_flow: float  # [m3/s]
-    fire_point: int
-    shift: float  # of the supply's low state [Pa]
-    least: Floats  # (P,) pressure, -inf where a point asks for none [Pa]
-
-    @property
-    def physics(self) -> tuple[object, ...]:
-        """Return what the capacity depends on: horizons that share it are solved once."""
-        return (self.fire_flow, self.fire_point, self.shift, tuple(self.least))
 
 
 def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ...]:
@@ -45,7 +35,7 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
         return ()
     asked = [one for one in requirements(of, limits) if not np.isnan(one.shift)]
     solved = _solve(of, limits, asked)
-    found = []
+    weak, found = _weak_units(of), []
     for one in asked:
         installed = installed_slots(of.slots, one.horizon.order)
         if not installed:
@@ -57,6 +47,8 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
         without = [(left([i for i in installed if i != out]), out) for out in installed]
         worst, out = worst_out(without)
         by_head = min((pair[0] for pair in without), key=lambda capacity: capacity.by_head)
+        left_weak = [i for i in installed if i != out]
+        by_weak = _one(of, limits, one, working(of, left_weak), weak)
         not_counted = dict.fromkeys(name for each, _ in without for name in each.not_counted)
         found.append(
             FirmCapacity(
@@ -69,9 +61,12 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
                 by_all=worst.by_all,
                 by_all_limit=worst.by_all_limit,
                 unit_out=of.slots[out].facts.id,
-                all_running=left(installed).by_head,
+                all_running=solved[together(of, installed), one.physics].by_head,
                 best_efficiency_share=by_head.share,
-                runs_out=_runs_out(of, one, worst.by_all),
+                runs_out=runs_out(of, one, worst.by_all),
+                by_all_weak=by_weak.by_all,
+                test_grade=grades_of(of),
+                hours=limits.tank_hours if one.name == TANK_REFILL else None,
                 not_counted=tuple(not_counted),
             )
         )
@@ -98,103 +93,70 @@ def _solve(
     jobs: dict[tuple[Counts, tuple[object, ...]], Requirement] = {}
     for one in asked:
         installed = installed_slots(of.slots, one.horizon.order)
-        for some in [installed, *([i for i in installed if i != out] for out in installed)]:
-            jobs.setdefault((working(of, some), one.physics), one)
+        left = ([i for i in installed if i != out] for out in installed)
+        for some_counts in [together(of, installed), *(working(of, some) for some in left)]:
+            jobs.setdefault((some_counts, one.physics), one)
     solved = {key: NO_UNIT for key in jobs if not any(key[0])}
     rest = {key: one for key, one in jobs.items() if any(key[0])}
     if not rest:
         return solved
     legs = tuple(unit.leg for unit in of.units)
-    units = CommonSpeed(
-        legs=legs,
-        count=np.array([n for n, _ in rest], dtype=np.float64),
-        relative=relative_speeds(of),
-    )
-    rows = tuple(rest.values())
-    together = Asked(
-        fire_flow=np.array([one.fire_flow for one in rows]),
-        fire_point=np.array([one.fire_point for one in rows], dtype=np.float64),
-        shift=np.array([one.shift for one in rows]),
-        least=np.stack([one.least for one in rows]),
-    )
-    solved.update(zip(rest, capacities(of, limits, units, together), strict=True))
+    counts = np.array([n for n, _ in rest], dtype=np.float64)
+    units = CommonSpeed(legs=legs, count=counts, relative=relative_speeds(of))
+    found = capacities(of, limits, units, asked_of(tuple(rest.values())))
+    solved.update(zip(rest, found, strict=True))
     return solved
 
 
+def _one(
+    of: LoweredSet, limits: StudyLimits, one: Requirement, counts: Counts,
+    legs: tuple[LegCurve, ...],
+) -> Capacity:  # fmt: skip
+    """Return one capacity with other legs in the place of the set's own."""
+    if not any(counts):
+        return NO_UNIT
+    units = CommonSpeed(
+        legs=legs, count=np.array([counts], dtype=np.float64), relative=relative_speeds(of)
+    )
+    return capacities(of, limits, units, asked_of((one,)))[0]
+
+
+def _weak_units(of: LoweredSet) -> tuple[LegCurve, ...]:
+    """Return every leg with its pump at the lower corner of its test grade."""
+    pairs = zip(of.units, _motor_powers(of), strict=True)
+    return tuple(weak_leg(unit.leg, grade_of(power)) for unit, power in pairs)
+
+
+def grades_of(of: LoweredSet) -> str:
+    """Return the grades of the pumps' tests, each once: "2B"."""
+    return ", ".join(dict.fromkeys(grade_of(power).name for power in _motor_powers(of)))
+
+
+def _motor_powers(of: LoweredSet) -> list[float]:
+    """Return the largest shaft power of each kind of unit, else its motor's; 0 when unknown."""
+    powers = []
+    for t in range(len(of.units)):
+        facts = next(slot.facts for slot in of.slots if slot.unit == t)
+        powers.append(facts.motor_power or facts.largest_shaft_power or 0.0)
+    return powers
+
+
 def working(of: LoweredSet, some: Sequence[int]) -> Counts:
-    """Return the units that work together: the mains, or the jockeys where there is no main."""
-    mains = [i for i in some if of.slots[i].facts.role != "jockey"] or list(some)
-    units = [of.slots[i].unit for i in mains]
+    """Return the units that work together: as many as the control starts, in slot order."""
+    stages = len(of.control.stages)
+    return _counts(of, _mains(of, some)[: stages or None])
+
+
+def together(of: LoweredSet, some: Sequence[int]) -> Counts:
+    """Return all the units that could work together, however many the control starts."""
+    return _counts(of, _mains(of, some))
+
+
+def _mains(of: LoweredSet, some: Sequence[int]) -> list[int]:
+    """Return the main units, or the jockeys where there is no main."""
+    return [i for i in some if of.slots[i].facts.role != "jockey"] or list(some)
+
+
+def _counts(of: LoweredSet, some: Sequence[int]) -> Counts:
+    units = [of.slots[i].unit for i in some]
     return tuple(units.count(t) for t in range(len(of.units)))
-
-
-def requirements(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]:
-    """Return what each horizon asks, as far as its demand is entered."""
-    normal, rows = _normal_pressures(of, limits), []
-    for horizon in of.growth:
-        shift = float(shifts(of, horizon.low_shift)[0])
-        if horizon.peak_hour is not None:
-            rows.append(
-                Requirement(
-                    name=PEAK_HOUR,
-                    fire=None,
-                    horizon=horizon,
-                    required_flow=horizon.peak_hour,
-                    fire_flow=0.0,
-                    fire_point=-1,
-                    shift=shift,
-                    least=normal,
-                )
-            )
-        for fire, domestic, flow, point in horizon.fires:
-            rows.append(
-                Requirement(
-                    name=FIRE,
-                    fire=fire,
-                    horizon=horizon,
-                    required_flow=domestic + flow,
-                    fire_flow=flow,
-                    fire_point=point,
-                    shift=shift,
-                    least=_fire_pressures(of, limits, point),
-                )
-            )
-    return tuple(rows)
-
-
-def _normal_pressures(of: LoweredSet, limits: StudyLimits) -> Floats:
-    """Return the least pressure of each point; a hydrant asks for none unless it is typed."""
-    least = []
-    for point in of.points.facts:
-        default = -np.inf if point.role == "hydrant" else limits.service_pressure
-        least.append(default if point.required_pressure is None else point.required_pressure)
-    return np.array(least, dtype=np.float64)
-
-
-def _fire_pressures(of: LoweredSet, limits: StudyLimits, flowing: int) -> Floats:
-    """Return the residual at the operating hydrant and the fire minimum at all other points."""
-    least = []
-    for i, point in enumerate(of.points.facts):
-        typed = point.residual_pressure if i == flowing else point.fire_pressure
-        default = limits.hydrant_residual if i == flowing else limits.fire_pressure
-        least.append(default if typed is None else typed)
-    return np.array(least, dtype=np.float64)
-
-
-def _runs_out(of: LoweredSet, requirement: Requirement, capacity: float) -> int | None:
-    """Return the year in which the demand, linear between horizons, passes a capacity."""
-    path = []
-    for horizon in of.growth:
-        asked = horizon.peak_hour
-        if requirement.name == FIRE:
-            fires = {fire: domestic + flow for fire, domestic, flow, _ in horizon.fires}
-            asked = fires.get(requirement.fire or "")
-        if asked is not None and horizon.year is not None:
-            path.append((horizon.year, asked))
-    path.sort()
-    if path and path[0][1] > capacity:
-        return path[0][0]
-    for (year, asked), (later, more) in zip(path, path[1:], strict=False):
-        if more > capacity:
-            return int(year + (capacity - asked) / (more - asked) * (later - year))
-    return None

@@ -33,6 +33,7 @@ class StudyLimits:
     highest_pressure_abnormal: float
     station_off_pressure: float
     gap_narrow: float  # ratio of the gap's flow
+    tank_hours: float  # in which the maximum day is pumped into a tank on the zone [s]
     stage_dead_band: float  # ratio of the switch-up flow
 
     def preferred_region(self, specific_speed: float | None) -> tuple[float, float]:
@@ -79,5 +80,6 @@ def limits_of(station: Station) -> StudyLimits:
         highest_pressure_abnormal=si("service-pressure-max-abnormal"),
         station_off_pressure=si("station-off-pressure-min"),
         gap_narrow=si("gap-narrow"),
+        tank_hours=si("firm-tank-hours"),
         stage_dead_band=si("stage-dead-band"),
     )
