@@ -5,7 +5,7 @@ slot order. The first that
  0 holds the set point with every unit inside its preferred region, at all three supply states;
  1 else holds it with every unit inside the maker's allowable region at all three;
  2 else holds it at all three, before the end of the curve and within the speed limits;
- 3 else comes nearest: fewest supply states past the end of a curve, least pressure missing at
+ 3 else comes nearest: fewest supply states past the end of a curve or without water, least pressure missing at
    the worst state, least pressure in excess, largest flow at the end of the curve.
 A combination with a unit held shut in any state is never chosen, nor one whose state cannot be
 told. Supply states that are not stated, or give no water, are left out of "all". One set for
@@ -22,7 +22,6 @@ from server.studies.cases import STATES
 from server.studies.lowering.lowered import Flags, Floats, Indices, Slot
 
 NONE = 4
-BARRED = (State.HELD_SHUT, State.NOT_AVAILABLE, State.NO_WATER)
 
 
 def choose(
@@ -71,14 +70,15 @@ def choose(
     solved = state == State.SOLVED
     inside = solved & _all_inside(share, preferred, combinations)
     allowed = solved & _all_inside(share, allowable, combinations)
-    barred = np.isin(state, BARRED) | ~available
+    barred = (state == State.HELD_SHUT) | (state == State.NOT_AVAILABLE) | ~available
     told = known[:, None]
     possible = _every(~barred | ~told) & _some(told & np.ones_like(barred))
     classes = np.full(possible.shape, NONE, dtype=np.int8)
     classes[possible] = 3
     for number, meets in ((2, solved), (1, allowed), (0, inside)):
         classes[possible & _every(meets | ~told)] = number
-    past = _total(told & (state == State.END_OF_CURVE))
+    without_duty = (state == State.END_OF_CURVE) | (state == State.NO_WATER)
+    past = _total(told & without_duty)
     short = np.where(told, set_point - held_pressure, np.nan)
     missing, excess = _worst(np.maximum(short, 0.0)), _worst(np.maximum(-short, 0.0))
     chosen = np.full(possible.shape[0], -1, dtype=np.intp)

@@ -5,7 +5,7 @@ every duty
 point lies on them.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -13,12 +13,13 @@ from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.parallel import leg_flows
 from server.hydraulics.states import State
 from server.station.station import Station
-from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.duty_result import DutyResult, NotSolved, Place
 from server.studies.limits import limits_of
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
 from server.studies.set_states import solve_states
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
+from server.studies.suction_side import suction_side
 from server.studies.system_heads import Draw, SystemHeads, system_heads
 
 READINGS = 181  # points of a curve
@@ -208,7 +209,7 @@ def _held(lowered: LoweredSet, result: DutyResult) -> tuple[HeldCurve, ...]:
 def _heads(
     lowered: LoweredSet, flow: Floats, state: SupplyState, pipes: PipeAge
 ) -> SystemHeads:
-    """Return grades and required head, all flow taken as demand of the zone."""
+    """Return grades and required head, all flow taken as demand; nan where no water is."""
     draw = Draw(
         domestic=flow,
         fire=np.zeros(flow.shape),
@@ -216,7 +217,10 @@ def _heads(
         aged=pipes == "aged",
         shift=np.full(flow.shape, lowered.supply.shift[SUPPLY_STATES.index(state)]),
     )
-    return system_heads(lowered, draw)
+    heads = system_heads(lowered, draw)
+    side = suction_side(lowered, heads)
+    required = np.where(side.breaks_at == Place.NOWHERE, heads.required_head, np.nan)
+    return replace(heads, suction_grade=side.suction_grade, required_head=required)
 
 
 def _along(
@@ -242,9 +246,7 @@ def _along(
         }
         power = slot["shaft_power"].sum(axis=1)
         useful = (slot["shaft_power"] * slot["efficiency"]).sum(axis=1)
-        available = _npsh_available(
-            lowered, heads.suction_grade[:, None] - slot["suction_loss"]
-        )
+        available = lowered.npsh_available(heads.suction_grade[:, None], slot["suction_loss"])
         curves.append(
             AlongControl(
                 combination=k,
@@ -254,14 +256,8 @@ def _along(
                     useful, power, out=np.full(flow.shape, np.nan), where=power > 0
                 ),
                 shaft_power=power,
-                npsh_available=available.min(axis=1),
+                npsh_available=np.where(available < 0, np.nan, available).min(axis=1),
                 npsh_required=slot["npsh_required"].max(axis=1),
             )
         )
     return tuple(curves)
-
-
-def _npsh_available(lowered: LoweredSet, eye_grade: Floats) -> Floats:
-    water = lowered.water
-    absolute = (water.atmosphere - water.vapour_pressure) / water.weight
-    return np.asarray(absolute + eye_grade - lowered.eye_level)
