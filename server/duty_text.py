@@ -99,6 +99,9 @@ def _cells(row: DutyRow, view: View) -> list[str]:
     def number(value: float | None, dimension: Dimension, decimals: int | None = None) -> str:
         return shown(value, dimension, view, decimals)
 
+    def wet(place: str, value: float | None, dimension: Dimension) -> str:
+        return "no water" if place in row.dry else number(value, dimension)
+
     held = {True: "yes", False: "no", None: "–"}[row.held]
     return [
         row.title,
@@ -110,10 +113,13 @@ def _cells(row: DutyRow, view: View) -> list[str]:
         held,
         row.mark.percent if row.mark is not None else "–",
         row.mark.word if row.mark is not None else "–",
-        number(row.npsh_margin, Dimension.HEAD),
-        number(row.connection_pressure, Dimension.PRESSURE),
-        number(row.suction_pressure, Dimension.PRESSURE),
-        *(number(pressure, Dimension.PRESSURE) for pressure in row.point_pressures),
+        wet("npsh", row.npsh_margin, Dimension.HEAD),
+        wet("connection", row.connection_pressure, Dimension.PRESSURE),
+        wet("suction", row.suction_pressure, Dimension.PRESSURE),
+        *(
+            wet(f"point-{p}", pressure, Dimension.PRESSURE)
+            for p, pressure in enumerate(row.point_pressures)
+        ),
         number(row.wire_power, Dimension.POWER),
     ]
 

@@ -158,12 +158,14 @@ def symbols(dimension: Dimension) -> tuple[str, ...]:
 
 def display_unit(dimension: Dimension, view: View) -> Unit:
     """Return the unit in which `dimension` is read in the SI or the US view."""
-    return UNITS[_TABLE[dimension][1 if view == "si" else 2]]
+    row = _TABLE[dimension]
+    return UNITS[row[1] if view == "si" else row[2]]
 
 
 def display_decimals(dimension: Dimension, view: View) -> int:
     """Return the decimals a result of `dimension` is printed with in a view."""
-    return _TABLE[dimension][3 if view == "si" else 4]
+    row = _TABLE[dimension]
+    return row[3] if view == "si" else row[4]
 
 
 def dimensions_of(symbol: str) -> tuple[Dimension, ...]:

@@ -4,7 +4,8 @@ import numpy as np
 
 from server.hydraulics.states import State
 from server.studies.assess import Assessment
-from server.studies.duty_result import DutyResult
+from server.studies.duty_result import DutyResult, Place
+from server.studies.findings.judge_suction import PLACE_WORDS
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import SUPPLY_STATES, SupplyState
 
@@ -106,6 +107,9 @@ def no_duty_words(judged: JudgedSet, case: int) -> str:
         [chosen] if chosen >= 0 else [int(k) for k in np.flatnonzero(result.available[case])]
     )
     states = {State(int(result.state[case, k])) for k in usable}
+    place = judged.dry.get(case, Place.NOWHERE)
+    if place is not Place.NOWHERE:
+        return f"No water at {PLACE_WORDS[place]}: nothing can be pumped."
     if not usable:
         return "No pump is available in this state."
     if State.END_OF_CURVE in states:

@@ -14,13 +14,18 @@ from server.figures.case_words import (
     state_words,
     three_cases,
 )
+from server.studies.duty_result import Place
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Case
 
 
 @dataclass(frozen=True, slots=True)
 class DutyRow:
-    """One case; a number not to be had is None, `reason` says why there is no duty."""
+    """One case; a number not to be had is None, `reason` says why there is no duty.
+
+    `dry` names the numbers that are none because there is no water: "connection", "suction",
+    "npsh", "discharge", "point-0" and so on.
+    """
 
     case: int
     of: Case
@@ -47,6 +52,7 @@ class DutyRow:
     shaft_power: float | None  # [W]
     wire_power: float | None  # [W]
     energy: float | None  # [J/m3]
+    dry: frozenset[str] = frozenset()
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,18 +119,47 @@ def duty_row(judged: JudgedSet, case: int) -> DutyRow:
         shaft_power=shaft,
         wire_power=wire,
         energy=None if wire is None or not flow else wire / flow,
+        dry=_dry(judged, case, k),
     )
 
 
+def _dry(judged: JudgedSet, case: int, k: int) -> frozenset[str]:
+    """Return the places without water in a case."""
+    result = judged.result
+    place = judged.dry.get(case, Place.NOWHERE)
+    found = {"suction", "npsh"} if place is not Place.NOWHERE else set()
+    if place is Place.CONNECTION:
+        found.add("connection")
+    if bool(result.discharge_without_water[case, k]):
+        found.add("discharge")
+    found.update(f"point-{p}" for p in np.flatnonzero(result.point_without_water[case, k]))
+    return frozenset(found)
+
+
 def worst(
-    rows: Sequence[DutyRow], value: Callable[[DutyRow], float | None], *, highest: bool = False
+    rows: Sequence[DutyRow],
+    value: Callable[[DutyRow], float | None],
+    *,
+    highest: bool = False,
+    dry: str = "",
 ) -> DutyRow | None:
-    """Return the row with the least (or highest) value; None when no row has one."""
+    """Return the row with the least (or highest) value; None when no row has one.
+
+    A row in which the place named `dry` has no water is worse than any number.
+    """
+    without = next((row for row in rows if dry in row.dry), None)
+    if without is not None:
+        return without
     known = [(number, row) for row in rows if (number := value(row)) is not None]
     if not known:
         return None
     pick = max if highest else min
     return pick(known, key=lambda pair: pair[0])[1]
+
+
+def wet(row: DutyRow, place: str, value: float | None) -> float | str | None:
+    """Return a number where there is water to have one, else that there is none."""
+    return "no water" if place in row.dry else value
 
 
 def _npsh(

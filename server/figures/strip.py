@@ -7,9 +7,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from server.hydraulics.water import GRAVITY
 from server.station.entry import Quantity
 from server.station.station import Station
-from server.studies.duty_result import DutyResult
+from server.studies.duty_result import DutyResult, Place
 
 MOST_POINTS = 4
 
@@ -24,6 +25,7 @@ class StripStop:
     pressure: float | None  # gauge [Pa]
     after_pumps: bool
     concerns: bool = False  # what the case is judged by: the held point, the flowing hydrant
+    dry: bool = False  # no water there: no grade and no pressure
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,6 +55,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
     combination = max(chosen, 0)
     solved = chosen >= 0 and bool(np.isfinite(result.discharge_grade[case, combination]))
     site = station.site
+    place = Place(int(result.suction_breaks_at[case]))
     stops = [
         StripStop(
             station.supply.title or "Supply",
@@ -60,6 +63,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
             _number(result.supply_grade[case]),
             _number(result.connection_pressure[case]),
             False,
+            dry=place is Place.CONNECTION,
         ),
         StripStop(
             "Suction manifold",
@@ -67,6 +71,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
             _number(result.suction_grade[case]),
             _number(result.suction_pressure[case]),
             False,
+            dry=place is not Place.NOWHERE,
         ),
         StripStop(
             "Discharge manifold",
@@ -75,6 +80,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
             _number(result.discharge_pressure[case, combination]) if solved else None,
             True,
             concerns=result.held_point is None,
+            dry=solved and bool(result.discharge_without_water[case, combination]),
         ),
     ]
     end = (
@@ -82,12 +88,7 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
     )
     entry = _number(result.zone_entry_grade[case, combination]) if solved else None
     level = _level(end)
-    pressure = None
-    if entry is not None and level is not None:
-        pressure = (entry - level) * result.density * 9.80665
-    stops.append(
-        StripStop("End of the main" if level is not None else "", level, entry, pressure, True)
-    )
+    stops.append(_end_of_main(result, level, entry))
     stops.extend(_points(result, case, combination, solved))
     lift = _number(result.station_head[case, combination]) if solved else None
     running = (
@@ -98,6 +99,16 @@ def grade_strip(station: Station, result: DutyResult, case: int) -> GradeStrip:
     names = tuple(result.slots[int(n)].title or result.slots[int(n)].id for n in running)
     speed = _number(result.speed[case, combination, running[0]]) if running.size else None
     return GradeStrip(tuple(stops), lift, names, speed, _number(result.demand[case]))
+
+
+def _end_of_main(result: DutyResult, level: float | None, entry: float | None) -> StripStop:
+    """Return the end of the main; without its level it is a bend of the line, without name."""
+    if level is None or entry is None:
+        return StripStop("" if level is None else "End of the main", level, entry, None, True)
+    pressure = (entry - level) * result.density * GRAVITY
+    if pressure < result.lowest_pressure:
+        return StripStop("End of the main", level, None, None, True, dry=True)
+    return StripStop("End of the main", level, entry, pressure, True)
 
 
 def _points(result: DutyResult, case: int, combination: int, solved: bool) -> list[StripStop]:
@@ -116,6 +127,7 @@ def _points(result: DutyResult, case: int, combination: int, solved: bool) -> li
             _number(result.point_pressure[case, combination, p]) if solved else None,
             True,
             concerns=p == burning or result.points[p].id == result.held_point,
+            dry=solved and bool(result.point_without_water[case, combination, p]),
         )
         for p in order
     ]

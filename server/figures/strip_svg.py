@@ -53,7 +53,7 @@ def strip_svg(strip: GradeStrip, view: View, title: str, *, palette: Palette = P
 def _label(stop: StripStop, x: float, anchor: str, view: View, palette: Palette) -> str:
     """Return the pressure of a stop over its name."""
     pressure = words(
-        shown_with_unit(stop.pressure, Dimension.PRESSURE, view),
+        _pressure(stop, view),
         x,
         152,
         text_anchor=anchor,
@@ -67,6 +67,12 @@ def _label(stop: StripStop, x: float, anchor: str, view: View, palette: Palette)
         for row, line in enumerate(_two_lines(stop.name))
     )
     return "".join([pressure, *lines])
+
+
+def _pressure(stop: StripStop, view: View) -> str:
+    if stop.dry:
+        return "no water"
+    return shown_with_unit(stop.pressure, Dimension.PRESSURE, view)
 
 
 def _columns(stops: tuple[StripStop, ...]) -> list[float]:
@@ -193,8 +199,6 @@ def _two_lines(name: str) -> list[str]:
 
 def _alt(strip: GradeStrip, view: View, title: str) -> str:
     said = "; ".join(
-        f"{s.name} {shown_with_unit(s.pressure, Dimension.PRESSURE, view)}"
-        for s in strip.stops
-        if s.pressure is not None
+        f"{s.name} {_pressure(s, view)}" for s in strip.stops if s.pressure is not None or s.dry
     )
     return f"Hydraulic grade line, {title}: {said or 'not solved'}."

@@ -7,7 +7,7 @@ from collections.abc import Callable, Iterable
 from fastapi import APIRouter, HTTPException, Request, Response
 
 from server.figures.case_words import judged_set
-from server.figures.duty_rows import DutyRow, scenario_duties
+from server.figures.duty_rows import DutyRow, scenario_duties, wet
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
 from server.studies.findings import words
@@ -31,11 +31,23 @@ DUTY_COLUMNS: tuple[Column, ...] = (
     ("Set point held", None, lambda r: "" if r.held is None else "yes" if r.held else "no"),
     ("Of best-efficiency flow", D.RATIO, lambda r: None if r.mark is None else r.mark.share),
     ("Preferred region", None, lambda r: "" if r.mark is None else r.mark.word),
-    ("NPSH available", D.HEAD, lambda r: r.npsh_available),
+    ("NPSH available", D.HEAD, lambda r: wet(r, "npsh", r.npsh_available)),
     ("NPSH required", D.HEAD, lambda r: r.npsh_required),
-    ("Pressure at the connection", D.PRESSURE, lambda r: r.connection_pressure),
-    ("Pressure at the suction gauge", D.PRESSURE, lambda r: r.suction_pressure),
-    ("Pressure at the discharge gauge", D.PRESSURE, lambda r: r.discharge_pressure),
+    (
+        "Pressure at the connection",
+        D.PRESSURE,
+        lambda r: wet(r, "connection", r.connection_pressure),
+    ),
+    (
+        "Pressure at the suction gauge",
+        D.PRESSURE,
+        lambda r: wet(r, "suction", r.suction_pressure),
+    ),
+    (
+        "Pressure at the discharge gauge",
+        D.PRESSURE,
+        lambda r: wet(r, "discharge", r.discharge_pressure),
+    ),
     ("Shaft power", D.POWER, lambda r: r.shaft_power),
     ("Wire power", D.POWER, lambda r: r.wire_power),
     ("Energy", D.SPECIFIC_ENERGY, lambda r: r.energy),
@@ -59,7 +71,7 @@ def duty_table(judged: JudgedSet, view: View) -> tuple[tuple[str, ...], ...]:
 
 
 def _pressure_at(point: int) -> Callable[[DutyRow], float | str | None]:
-    return lambda row: row.point_pressures[point]
+    return lambda row: wet(row, f"point-{point}", row.point_pressures[point])
 
 
 def _findings_table(sheet: SheetView) -> tuple[tuple[str, ...], ...]:

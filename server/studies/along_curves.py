@@ -11,6 +11,7 @@ from server.studies.duty_result import DutyResult
 from server.studies.lowering.lowered import Floats, LoweredSet
 from server.studies.set_states import full_speeds, unit_readings
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
+from server.studies.suction_side import suction_side
 from server.studies.system_heads import Draw, reach_losses, system_heads
 
 READINGS = 181  # points of a curve at full speed
@@ -79,8 +80,10 @@ def _along_set_point(
         shift=np.full(flow.shape, shift),
     )  # fmt: skip
     heads = system_heads(lowered, draw)
+    suction = suction_side(lowered, heads).suction_grade
+    required = np.where(np.isfinite(suction), heads.required_head, np.nan)
     on = result.combinations[list(drawn)]
-    solved = closed_states(lowered, on, flow, heads.required_head)
+    solved = closed_states(lowered, on, flow, required)
     held = (solved.state == State.SOLVED) & (flow > 0)[:, None]
     curves = []
     for i, k in enumerate(drawn):
@@ -88,7 +91,7 @@ def _along_set_point(
             name: np.where(held[:, i, None], values[:, i, on[i]], np.nan)
             for name, values in solved.slot.items()
         }
-        available = lowered.npsh_available(heads.suction_grade[:, None], slot["suction_loss"])
+        available = lowered.npsh_available(suction[:, None], slot["suction_loss"])
         curves.append(_together(k, flow, slot, available))
     return tuple(curves)
 
@@ -134,6 +137,6 @@ def _together(
         speed=slot["speed"][:, 0],
         efficiency=np.divide(useful, power, out=nothing.copy(), where=some),
         shaft_power=np.where(some, power, np.nan),
-        npsh_available=np.fmin.reduce(available, axis=1),
+        npsh_available=np.fmin.reduce(np.where(available < 0, np.nan, available), axis=1),
         npsh_required=np.fmax.reduce(slot["npsh_required"], axis=1),
     )

@@ -5,8 +5,9 @@ slot order. The first that
  0 holds the set point with every unit inside its preferred region, at all three supply states;
  1 else holds it with every unit inside the maker's allowable region at all three;
  2 else holds it at all three, before the end of the curve and within the speed limits;
- 3 else comes nearest: fewest supply states past the end of a curve, least pressure missing at
-   the worst state, least pressure in excess, largest flow at the end of the curve.
+ 3 else comes nearest: fewest supply states past the end of a curve or without water, least
+   pressure missing at the worst state, least pressure in excess, largest flow at the end of the
+   curve.
 A combination with a unit held shut in any state is never chosen, nor one whose state cannot be
 told. Supply states that are not stated, or give no water, are left out of "all". One set for
 all states, because the operator switches by flow and does not know the state of the supply.
@@ -22,7 +23,8 @@ from server.studies.cases import STATES
 from server.studies.lowering.lowered import Flags, Floats, Indices, Slot
 
 NONE = 4
-BARRED = (State.HELD_SHUT, State.NOT_AVAILABLE, State.NO_WATER)
+BARRED = (State.HELD_SHUT, State.NOT_AVAILABLE)
+WITHOUT_DUTY = (State.END_OF_CURVE, State.NO_WATER)
 
 
 def choose(
@@ -78,7 +80,7 @@ def choose(
     classes[possible] = 3
     for number, meets in ((2, solved), (1, allowed), (0, inside)):
         classes[possible & _every(meets | ~told)] = number
-    past = _total(told & (state == State.END_OF_CURVE))
+    past = _total(told & np.isin(state, WITHOUT_DUTY))
     short = np.where(told, set_point[:, None] - held_pressure, np.nan)
     missing, excess = _worst(np.maximum(short, 0.0)), _worst(np.maximum(-short, 0.0))
     chosen = np.full(possible.shape[0], -1, dtype=np.intp)

@@ -14,12 +14,13 @@ from server.hydraulics.parallel import leg_flows
 from server.hydraulics.states import State
 from server.station.station import Station
 from server.studies.along_curves import AlongControl, along_control
-from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.duty_result import DutyResult, NotSolved, Place
 from server.studies.limits import limits_of
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import Floats, LoweredSet
 from server.studies.set_states import full_speeds
 from server.studies.shapes import SUPPLY_STATES, PipeAge, SupplyState
+from server.studies.suction_side import suction_side
 from server.studies.system_heads import Draw, system_heads
 from server.studies.tank_states import tank_way
 
@@ -209,7 +210,9 @@ def _asked(
     none = np.zeros(flow.shape)
     if not lowered.floats:
         draw = Draw(domestic=flow, fire=none, fire_point=-1, aged=pipes == "aged", shift=shift)
-        return system_heads(lowered, draw).required_head
+        heads = system_heads(lowered, draw)
+        has_water = suction_side(lowered, heads).breaks_at == Place.NOWHERE
+        return np.where(has_water, heads.required_head, np.nan)
     hardest = state == "low"
     drawn = 0.0 if hardest or not result.demand.size else float(np.nanmax(result.demand))
     draw = Draw(

@@ -18,7 +18,7 @@ from numpy.typing import NDArray
 
 from server.hydraulics.states import State
 from server.studies.cases import STATES, Cases
-from server.studies.choice import BARRED, NONE, inside_all
+from server.studies.choice import BARRED, NONE, WITHOUT_DUTY, inside_all
 from server.studies.combinations import Mask
 from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
 from server.studies.set_states import SetStates
@@ -107,7 +107,7 @@ def choose_filling(
             number, best = good[0]
         else:
             number = 3
-            past = (states.state[rows] == State.END_OF_CURVE).sum(axis=0)
+            past = np.isin(states.state[rows], WITHOUT_DUTY).sum(axis=0)
             least = np.nan_to_num(states.flow[rows], nan=np.inf).min(axis=0)
             best = min(possible, key=lambda k, p=past, q=least: (p[k], -q[k], k))  # type: ignore[misc]
         chosen[first : first + STATES] = best

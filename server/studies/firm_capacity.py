@@ -27,50 +27,74 @@ from server.studies.set_ends import CommonSpeed, relative_speeds
 
 SAME = 1e-6  # of a capacity: what roots are sought to, with room
 Counts = tuple[int, ...]  # how many of each unit
+Job = tuple[Counts, tuple[object, ...]]
+Jobs = dict[Job, Requirement]
 
 
 def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ...]:
-    """Return the firm capacity of each horizon for peak hour and for each fire."""
+    """Return the firm capacity of each horizon for each requirement."""
     if not of.route.knows("aged"):
         return ()
-    asked = [one for one in requirements(of, limits) if not np.isnan(one.shift)]
-    solved = _solve(of, limits, asked)
-    weak, found = _weak_units(of), []
+    asked = [
+        one
+        for one in requirements(of, limits)
+        if not np.isnan(one.shift) and installed_slots(of.slots, one.horizon.order)
+    ]
+    jobs: Jobs = {}
     for one in asked:
-        installed = installed_slots(of.slots, one.horizon.order)
-        if not installed:
-            continue
+        for counts in (together(of, _installed(of, one)), *_without(of, one).values()):
+            jobs.setdefault((counts, one.physics), one)
+    solved = _solve(of, limits, jobs, tuple(unit.leg for unit in of.units))
+    worst = [
+        worst_out([(solved[n, one.physics], out) for out, n in _without(of, one).items()])
+        for one in asked
+    ]
+    corner: Jobs = {}
+    for one, (_, out) in zip(asked, worst, strict=True):
+        corner.setdefault((_without(of, one)[out], one.physics), one)
+    weak = _solve(of, limits, corner, _weak_legs(of))
+    return tuple(
+        _of(of, limits, one, pair, solved, weak) for one, pair in zip(asked, worst, strict=True)
+    )
 
-        def left(some: Sequence[int], one: Requirement = one) -> Capacity:
-            return solved[working(of, some), one.physics]
 
-        without = [(left([i for i in installed if i != out]), out) for out in installed]
-        worst, out = worst_out(without)
-        by_head = min((pair[0] for pair in without), key=lambda capacity: capacity.by_head)
-        left_weak = [i for i in installed if i != out]
-        by_weak = _one(of, limits, one, working(of, left_weak), weak)
-        not_counted = dict.fromkeys(name for each, _ in without for name in each.not_counted)
-        found.append(
-            FirmCapacity(
-                requirement=one.name,
-                fire=one.fire,
-                horizon=one.horizon.id,
-                required_flow=one.required_flow,
-                by_head=by_head.by_head,
-                by_head_limit=by_head.by_head_limit,
-                by_all=worst.by_all,
-                by_all_limit=worst.by_all_limit,
-                unit_out=of.slots[out].facts.id,
-                all_running=solved[together(of, installed), one.physics].by_head,
-                best_efficiency_share=by_head.share,
-                runs_out=runs_out(of, one, worst.by_all),
-                by_all_weak=by_weak.by_all,
-                test_grade=grades_of(of),
-                hours=limits.tank_hours if one.name == TANK_REFILL else None,
-                not_counted=tuple(not_counted),
-            )
-        )
-    return tuple(found)
+def _of(
+    of: LoweredSet, limits: StudyLimits, one: Requirement, worst: tuple[Capacity, int],
+    solved: dict[Job, Capacity], weak: dict[Job, Capacity],
+) -> FirmCapacity:  # fmt: skip
+    """Return one capacity with the unit that is out; the lower corner has the same one out."""
+    capacity, out = worst
+    without = {i: solved[counts, one.physics] for i, counts in _without(of, one).items()}
+    by_head = min(without.values(), key=lambda each: each.by_head)
+    not_counted = dict.fromkeys(name for each in without.values() for name in each.not_counted)
+    return FirmCapacity(
+        requirement=one.name,
+        fire=one.fire,
+        horizon=one.horizon.id,
+        required_flow=one.required_flow,
+        by_head=by_head.by_head,
+        by_head_limit=by_head.by_head_limit,
+        by_all=capacity.by_all,
+        by_all_limit=capacity.by_all_limit,
+        unit_out=of.slots[out].facts.id,
+        all_running=solved[together(of, _installed(of, one)), one.physics].by_head,
+        best_efficiency_share=by_head.share,
+        runs_out=runs_out(of, one, capacity.by_all),
+        by_all_weak=weak[_without(of, one)[out], one.physics].by_all,
+        test_grade=grades_of(of),
+        hours=limits.tank_hours if one.name == TANK_REFILL else None,
+        not_counted=tuple(not_counted),
+    )
+
+
+def _installed(of: LoweredSet, one: Requirement) -> tuple[int, ...]:
+    return installed_slots(of.slots, one.horizon.order)
+
+
+def _without(of: LoweredSet, one: Requirement) -> dict[int, Counts]:
+    """Return what works with each installed unit in turn out."""
+    installed = _installed(of, one)
+    return {out: working(of, [i for i in installed if i != out]) for out in installed}
 
 
 def worst_out(without: Sequence[tuple[Capacity, int]]) -> tuple[Capacity, int]:
@@ -87,20 +111,13 @@ def worst_out(without: Sequence[tuple[Capacity, int]]) -> tuple[Capacity, int]:
 
 
 def _solve(
-    of: LoweredSet, limits: StudyLimits, asked: Sequence[Requirement]
-) -> dict[tuple[Counts, tuple[object, ...]], Capacity]:
+    of: LoweredSet, limits: StudyLimits, jobs: Jobs, legs: tuple[LegCurve, ...]
+) -> dict[Job, Capacity]:
     """Return every capacity that is looked up, solved side by side."""
-    jobs: dict[tuple[Counts, tuple[object, ...]], Requirement] = {}
-    for one in asked:
-        installed = installed_slots(of.slots, one.horizon.order)
-        left = ([i for i in installed if i != out] for out in installed)
-        for some_counts in [together(of, installed), *(working(of, some) for some in left)]:
-            jobs.setdefault((some_counts, one.physics), one)
     solved = {key: NO_UNIT for key in jobs if not any(key[0])}
     rest = {key: one for key, one in jobs.items() if any(key[0])}
     if not rest:
         return solved
-    legs = tuple(unit.leg for unit in of.units)
     counts = np.array([n for n, _ in rest], dtype=np.float64)
     units = CommonSpeed(legs=legs, count=counts, relative=relative_speeds(of))
     found = capacities(of, limits, units, asked_of(tuple(rest.values())))
@@ -108,20 +125,7 @@ def _solve(
     return solved
 
 
-def _one(
-    of: LoweredSet, limits: StudyLimits, one: Requirement, counts: Counts,
-    legs: tuple[LegCurve, ...],
-) -> Capacity:  # fmt: skip
-    """Return one capacity with other legs in the place of the set's own."""
-    if not any(counts):
-        return NO_UNIT
-    units = CommonSpeed(
-        legs=legs, count=np.array([counts], dtype=np.float64), relative=relative_speeds(of)
-    )
-    return capacities(of, limits, units, asked_of((one,)))[0]
-
-
-def _weak_units(of: LoweredSet) -> tuple[LegCurve, ...]:
+def _weak_legs(of: LoweredSet) -> tuple[LegCurve, ...]:
     """Return every leg with its pump at the lower corner of its test grade."""
     pairs = zip(of.units, _motor_powers(of), strict=True)
     return tuple(weak_leg(unit.leg, grade_of(power)) for unit, power in pairs)

@@ -64,9 +64,7 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
     breaks_at = np.where(side.breaks_at != 0, side.breaks_at, in_branch[:, 0])
     has_water = np.where(breaks_at == 0, 1.0, np.nan)
     return OnePumpAlone(
-        slots=tuple(
-            next(s.facts.id for s in of.slots if s.unit == t) for t in range(number)
-        ),
+        slots=tuple(next(s.facts.id for s in of.slots if s.unit == t) for t in range(number)),
         pipes=pipes,
         flow=flow,
         to_last_row=to_last_row,

@@ -72,7 +72,9 @@ def supply_curve(station: Station, result: DutyResult | None) -> SupplyCurve | N
     limit = limits_of(station).suction_main
     tests = _tests(station, source)
     demands = _demands(result)
-    largest = max([0.02, *(1.1 * t.flow for t in tests), *(1.12 * d[2] for d in demands)])
+    # as far as the largest demand too where it finds no water, and so no pressure
+    asked = [] if result is None else [float(q) for q in result.demand if np.isfinite(q)]
+    largest = max([0.02, *(1.1 * t.flow for t in tests), *(1.12 * q for q in asked)])
     flow = np.linspace(0.0, largest, READINGS)
     pressure = np.stack([_pressure(source, flow, shift) for shift in source.shift])
     return SupplyCurve(
@@ -88,8 +90,10 @@ def supply_curve(station: Station, result: DutyResult | None) -> SupplyCurve | N
 
 
 def _pressure(source: Supply, flow: Floats, shift: float) -> Floats:
+    """Return the pressure at the connection, nan below a vacuum: there is no water then."""
     grade = source.grade(flow, shift)
-    return np.asarray((grade - source.connection_level) * source.water.density * GRAVITY)
+    pressure = (grade - source.connection_level) * source.water.density * GRAVITY
+    return np.where(pressure < source.water.lowest_pressure, np.nan, pressure)
 
 
 def _at_limit(source: Supply, shift: float, limit: float) -> float:

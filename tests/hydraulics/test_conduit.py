@@ -10,7 +10,12 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from server.hydraulics.conduit import FrictionLaw, conduit
+from server.hydraulics.conduit import (
+    FrictionLaw,
+    HazenWilliamsRange,
+    conduit,
+    hazen_williams_range,
+)
 
 NU = 1.1697e-6
 MAIN = {"length": [820, 330], "bore": [0.3, 0.246], "resistance": [6e-4, 1e-4], "k": [6, 4]}
@@ -96,3 +101,19 @@ def test_colebrook_has_no_range_to_leave():
 def test_reaches_that_cannot_be_are_refused_when_made(change, sentence):
     with pytest.raises(ValueError, match=sentence):
         conduit(FrictionLaw.DARCY_WEISBACH, **(MAIN | change))
+
+
+@pytest.mark.parametrize(
+    ("velocity", "bore", "coefficient", "outside"),
+    [
+        (1.0, 0.2, 130.0, HazenWilliamsRange.INSIDE),
+        (-3.0, 0.050, 100.0, HazenWilliamsRange.INSIDE),
+        (1.0, 0.049, 90.0, HazenWilliamsRange.BORE),
+        (1.0, 1.851, 130.0, HazenWilliamsRange.BORE),
+        (-3.01, 0.2, 90.0, HazenWilliamsRange.VELOCITY),
+        (1.0, 0.2, 99.9, HazenWilliamsRange.COEFFICIENT),
+        (1.0, np.nan, np.nan, HazenWilliamsRange.INSIDE),
+    ],
+)
+def test_range_of_hazen_williams_says_what_lies_outside(velocity, bore, coefficient, outside):
+    assert hazen_williams_range(velocity, bore=bore, coefficient=coefficient) == outside

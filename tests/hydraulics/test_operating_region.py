@@ -46,6 +46,24 @@ def test_ends_are_inside_and_judged_unrounded(per_cent, expected):
     assert region.region(per_cent, lower=70.0, upper=120.0) == expected
 
 
+def test_ratios_are_judged_as_per_cent_are_and_last_digits_put_nothing_outside():
+    ends = {"lower": 0.7, "upper": 1.2, "edge": 0.02}
+
+    assert region.region(70 * 0.01, **ends) == Region.EDGE
+    assert region.region(1.2 * (1 + 1e-12), **ends) == Region.EDGE
+    assert region.region(0.699999, **ends) == Region.OUTSIDE
+    assert region.region(1.0, **ends) == Region.INSIDE
+
+
+def test_the_ends_are_those_of_the_criteria_when_they_are_given():
+    lower, upper = region.preferred_ends(
+        [35.0, 95.0, np.nan], ordinary=(0.65, 1.25), narrow=(0.8, 1.1), narrow_above=90.0
+    )
+
+    assert lower.tolist() == [0.65, 0.8, 0.65]
+    assert upper.tolist() == [1.25, 1.1, 1.25]
+
+
 def test_an_end_that_is_not_known_leaves_the_region_unknown():
     assert region.region(100.0, lower=np.nan, upper=120.0) == Region.UNKNOWN
 

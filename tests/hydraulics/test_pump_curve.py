@@ -178,6 +178,33 @@ def test_shaft_power_is_water_power_over_efficiency():
     assert power == pytest.approx([20.1, 36.1, 46.5], abs=0.06)
 
 
+def test_an_efficiency_that_starts_flat_gives_no_power_without_end():
+    flow, head = [0, 0.004, 0.008, 0.012, 0.016], [60, 58, 54, 48, 40]
+    # the second row is so low that the cubic starts level: power would go as one over the flow
+    flat = pump_curve(
+        flow, head=head, efficiency=[0, 0.05, 0.45, 0.62, 0.58], tested_speed=2900
+    )
+    assert float(flat.efficiency_curve.slope(0.0)) == pytest.approx(0.0, abs=1e-9)
+
+    power = flat.shaft_power(np.linspace(1e-7, 0.016, 500), density=1000)
+    first = float(flat.shaft_power(0.004, density=1000))
+
+    assert np.nanmax(power) <= first * 60 / 58 * (1 + 1e-9)
+    assert float(flat.shaft_power(1e-9, density=1000)) == pytest.approx(
+        first * 60 / 58, rel=1e-6
+    )
+
+
+def test_an_efficiency_that_starts_steep_gives_the_power_of_its_own_curve():
+    pump = main_pump()
+    flow = np.linspace(1e-4, 0.0045, 50)
+    water_power = 1000 * 9.80665 * flow * pump.head(flow)
+
+    assert pump.shaft_power(flow, density=1000) == pytest.approx(
+        water_power / pump.efficiency(flow), rel=1e-12
+    )
+
+
 def test_power_at_zero_flow_comes_from_a_row_only():
     stated = main_pump()
     silent = pump_curve(Q, head=H, efficiency=[0, 0.5, 0.7, 0.6, 0.4], tested_speed=1450)

@@ -62,3 +62,37 @@ def test_a_loss_below_zero_is_refused():
             vapour_pressure=2e3,
             density=998.0,
         )
+
+
+def test_what_is_not_known_leaves_the_head_unknown_and_only_there():
+    figures = {"atmospheric_pressure": 1e5, "vapour_pressure": 2e3, "density": 998.0}
+    available = npsh_available(
+        [10.0, float("nan"), 10.0],
+        eye_level=2.0,
+        branch_loss=[0.5, 0.5, float("nan")],
+        **figures,
+    )
+
+    assert available[0] == pytest.approx((1e5 - 2e3) / (998.0 * water.GRAVITY) + 7.5)
+    assert [value != value for value in available] == [False, True, True]
+
+
+@pytest.mark.parametrize(
+    ("name", "value", "said"),
+    [
+        ("suction_grade", float("inf"), "suction_grade must not be infinite"),
+        ("eye_level", float("-inf"), "eye_level must not be infinite"),
+        ("atmospheric_pressure", 0.0, "atmospheric_pressure must be above zero"),
+    ],
+)
+def test_a_figure_that_cannot_be_is_refused(name, value, said):
+    figures = {
+        "suction_grade": 10.0,
+        "eye_level": 0.0,
+        "branch_loss": 0.0,
+        "atmospheric_pressure": 1e5,
+        "vapour_pressure": 2e3,
+        "density": 998.0,
+    }
+    with pytest.raises(ValueError, match=said):
+        npsh_available(**{**figures, name: value})

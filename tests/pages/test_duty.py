@@ -201,3 +201,17 @@ def test_columns_are_fewer_on_a_narrow_page_and_can_be_chosen(new_page, live):
     page.reload()
     assert power.is_visible()
     assert page.evaluate("() => document.documentElement.scrollWidth <= innerWidth")
+
+
+def test_a_case_without_water_says_so_in_its_cells(client, demo_bytes):
+    station = json.loads(demo_bytes)
+    station["fires"][0]["flow"]["value"] = 45
+    for test in station["supply"]["flow_tests"]:
+        test["residual_pressure"]["value"] = 170
+    made = client.post("/api/stations", json=station).headers["Location"]
+    page = client.get(f"/stations/{made.rsplit('/', 1)[-1]}/duty")
+
+    cells = [cell for row in table(page).values() for cell in row]
+
+    assert any(cell.startswith("no water") or "no water at low" in cell for cell in cells)
+    assert not any(re.search(r"[-−]\d{3,}", cell) for cell in cells)

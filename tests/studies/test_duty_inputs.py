@@ -87,18 +87,7 @@ PARTS = [
     f"{PUMP}/allowable_region/low",
     f"{PUMP}/allowable_region/high",
 ]
-NOT_YET = [
-    ("/supply/kind", "tank"),
-    ("/zone/kind", "tank"),
-    ("/zone/kind", "both"),
-    (f"{SLOT}/drive", "fixed"),
-    (f"{CURVE}/fit", "smoothed"),
-    (f"{CONTROL}/running_rule", "least_power"),
-    *[
-        (f"{CONTROL}/kind", kind)
-        for kind in ("flow_compensated", "fixed_speed", "reducing_valve", "levels", "held_flow")
-    ],
-]
+NOT_YET = [(f"{CONTROL}/running_rule", "least_power")]
 
 
 def absent(result: DutyResult) -> dict[str, str]:

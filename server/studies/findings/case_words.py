@@ -8,6 +8,7 @@ _MADE_TITLES = {
     "no-flow-held": "no flow with the set point held",
     "shut-off": "shut-off at top speed",
     "hand-over": "hand-over",
+    "alone": "one pump alone at top speed",
     "firm-peak_hour": "firm capacity, peak hour",
     "firm-maximum_day_fire": "firm capacity, maximum day and fire",
 }

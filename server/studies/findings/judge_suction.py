@@ -13,7 +13,7 @@ from server.studies.shapes import Amount, Case, Path, Severity
 from server.units import Dimension as D
 
 SUCTION_LIMITS = ("connection", "suction_gauge")
-_PLACES = {
+PLACE_WORDS = {
     Place.CONNECTION: "the connection to the supplying main",
     Place.SUCTION_GAUGE: "the suction gauge",
     Place.PUMP_EYE: "the pump eye",
@@ -49,7 +49,7 @@ def no_water(judged: JudgedSet, case: Case, place: Place) -> Reading:
         pump_set=judged.id, criterion=None, case=case, sense="at_least", without_number=True,
         provided=amount("pressure", None, D.PRESSURE),
         required=amount("required", judged.result.lowest_pressure, D.PRESSURE), mend=mend,
-        names=(("place", _PLACES[place]), ("set", judged.title)),
+        names=(("place", PLACE_WORDS[place]), ("set", judged.title)),
     )  # fmt: skip
 
 
@@ -74,7 +74,7 @@ def _below_atmosphere(judged: JudgedSet, c: int) -> Iterator[Reading]:
     ):
         if pressure < 0:
             yield below_atmosphere(
-                judged, judged.case(c), "/supply", _PLACES[place], pressure,
+                judged, judged.case(c), "/supply", PLACE_WORDS[place], pressure,
                 (low_state(judged), *judged.suction_bores),
             )  # fmt: skip
             return

@@ -196,7 +196,7 @@ class _Table:
                                              because=_BECAUSE["firm"]))  # fmt: skip
             else:
                 cells.append(self._cell(horizon.id, capacity, ""))
-        years = [f for f in firm if f.runs_out is not None]
+        years = [f for f in firm if f.runs_out is not None and not f.not_counted]
         first = min(years, key=lambda f: f.runs_out or 0, default=None)
         return RequirementRow(
             key, limits, names, tuple(cells),

@@ -48,8 +48,10 @@ WARNINGS = {
 # in the first years, and the defaults that stand in
 PLAIN_FACTS = {
     ("main_slow", NOTE, "/discharge_main/reaches/rc-d1f5my"),
-    *(("rating_level_not_given", NOTE, f"/discharge_main/reaches/{reach.id}")
-      for reach in demo().discharge_main.reaches),
+    *(
+        ("rating_level_not_given", NOTE, f"/discharge_main/reaches/{reach.id}")
+        for reach in demo().discharge_main.reaches
+    ),
     *(("check_valve_not_fully_open", NOTE, leg) for leg in VALVES),
     *(("default_used", NOTE, f"{leg}/discharge_branch/full_open_velocity") for leg in VALVES),
     *(("default_used", NOTE, f"{pump}/npsh_exponent") for pump in (MAIN, JOCKEY)),
