@@ -209,7 +209,10 @@ def test_serve_says_its_address_loads_the_demo_once_and_stops_when_told(tmp_path
 
         assert address.startswith("http://127.0.0.1:")
         assert str(tmp_path / "data") in folder
-        assert [row["title"] for row in stations] == ["Upper Fold booster"]
+        assert sorted(row["title"] for row in stations) == [
+            "Low Works to Beacon reservoir",
+            "Upper Fold booster",
+        ]
         assert process.returncode == 0
         assert "Traceback" not in err
 

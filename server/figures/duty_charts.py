@@ -17,7 +17,8 @@ from server.figures.head_chart import (
     head_panel,
     head_series,
 )
-from server.studies.duty_curves import AlongControl, DutyCurves
+from server.studies.along_curves import AlongControl
+from server.studies.duty_curves import DutyCurves
 from server.studies.findings.judged_set import JudgedSet
 from server.units import Dimension as D
 

@@ -182,6 +182,7 @@ def assembled(
         tank_level=zone.tank_level[rows],
         tank_flow=(zone.tank_flow * np.where(np.isfinite(states.flow), 1.0, np.nan))[rows],
         tank_draws_down=zone.tank_draws_down[rows],
+        closed_grade=zone.closed_grade[rows],
         suction_line_velocity=velocity[..., : of.suction_reaches],
         main_velocity=velocity[..., of.suction_reaches :],
         suction_branch_velocity=slot["suction_velocity"][rows],

@@ -152,5 +152,6 @@ def _assessed(station: Station, key: str) -> Assessment:
         judgement.readings,
         judgement.findings,
         None if solved is None else solved.pump_set,
+        station,
     )
     return Assessment(station, key, results, judgement.findings, criteria, rows, table)

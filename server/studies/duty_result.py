@@ -194,6 +194,7 @@ class DutyResult:
     tank_level: Floats  # (C,) of the tank on the zone; nan without one [m]
     tank_flow: Floats  # (C, K) into it, negative when it feeds; nan in a closed zone [m3/s]
     tank_draws_down: NDArray[np.bool_]  # (C, K) a fire tank would feed in normal service too
+    closed_grade: Floats  # (C, K) at a fire tank's node with the tank shut; nan without one [m]
     suction_line_velocity: Floats  # (C, R_suction) [m/s]
     main_velocity: Floats  # (C, R_main) [m/s]
     suction_branch_velocity: Floats  # (C, K, N) [m/s]
@@ -282,6 +283,15 @@ class Handover:
     preferred_end: Floats  # (K, 3) flow at which the first of them leaves it again [m3/s]
 
 
+@dataclass(frozen=True, slots=True)
+class SeveralStates:
+    """A state of humped pumps against a tank that is not the only one."""
+
+    case: Case
+    combination: int
+    flows: tuple[float, ...]  # largest first [m3/s]
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class CutOut:
     """A supply tank at its cut-out level, M states: where NPSH and submergence are least."""
@@ -331,5 +341,6 @@ class MadeCases:
     handover: Handover | None = None
     firm_capacity: tuple[FirmCapacity, ...] = field(default=())
     cut_out: CutOut | None = None
+    several: tuple[SeveralStates, ...] = ()
     # reaches with one barrel, and "unit" where one pump stands alone: nothing takes their place
     single_points: tuple[str, ...] = ()

@@ -2,8 +2,9 @@
 
 Every number is SI, its unit in its key. A float without meaning becomes null, and the object
 that holds it says why: the combination's state, "held_shut" for a unit that passes nothing,
-"no_water" where the computed pressure lies below a vacuum, or "input_missing", with the missing
-paths under the set's `inputs_missing`.
+"no_water" where the computed pressure lies below a vacuum, "not_applicable" where this kind of
+station or state has no such number, or "input_missing", with the missing paths under the set's
+`inputs_missing`.
 """
 
 import json
@@ -13,11 +14,12 @@ from server import __version__
 from server.hydraulics.states import State
 from server.station.station import Station
 from server.studies.assess import Assessment
-from server.studies.duty_result import DutyResult, NotSolved, Place
+from server.studies.duty_result import Binding, DutyResult, NotSolved, Place
 from server.studies.findings import words
 from server.studies.findings.criteria import Criterion
 from server.studies.results_made import (
     after_trip_json,
+    cut_out_json,
     firm_capacity_json,
     handover_json,
     one_pump_alone_json,
@@ -27,6 +29,7 @@ from server.studies.results_made import (
 from server.studies.results_numbers import (
     MISSING,
     NO_WATER,
+    NOT_APPLICABLE,
     case_key,
     null_or_why,
     or_null,
@@ -159,6 +162,9 @@ def _solved(result: DutyResult) -> SolvedSetJson:
         "solved": True,
         "study": result.stamp.study,
         "study_version": result.stamp.study_version,
+        "control": result.control,
+        "zone_kind": result.zone_kind,
+        "supply_kind": result.supply_kind,
         "held_point": result.held_point,
         "set_point_pa": None if result.set_point is None else or_null(result.set_point),
         "lowest_speed_ratio": float(result.lowest_speed),
@@ -174,6 +180,8 @@ def _solved(result: DutyResult) -> SolvedSetJson:
         "one_pump_alone": one_pump_alone_json(result),
         "handover": handover_json(result),
         "firm_capacity": firm_capacity_json(result),
+        "cut_out": cut_out_json(result),
+        "single_points": list(result.made.single_points),
     }
 
 
@@ -189,6 +197,8 @@ def _case(result: DutyResult, c: int) -> CaseJson:
             "demand_m3_s": result.demand[c],
             "fire_flow_m3_s": result.fire_flow[c],
             "required_head_m": result.required_head[c],
+            "set_pressure_pa": result.set_pressure[c],
+            "tank_level_m": result.tank_level[c],
             "supply_grade_m": result.supply_grade[c],
             "connection_pressure_pa": result.connection_pressure[c],
             "suction_pressure_pa": result.suction_pressure[c],
@@ -196,6 +206,8 @@ def _case(result: DutyResult, c: int) -> CaseJson:
         },
         MISSING,
         {
+            "set_pressure_pa": NOT_APPLICABLE if result.set_point is None else MISSING,
+            "tank_level_m": NOT_APPLICABLE if result.zone_kind == "closed" else MISSING,
             "supply_grade_m": main, "connection_pressure_pa": main, "required_head_m": suction,
             "suction_pressure_pa": suction, "suction_grade_m": suction,
         },
@@ -219,15 +231,23 @@ def _case(result: DutyResult, c: int) -> CaseJson:
 def _combination(result: DutyResult, c: int, k: int) -> CombinationJson:
     state = State(int(result.state[c, k]))
     without = state.name.lower() if state in _WITHOUT_NUMBERS else MISSING
+    held = NOT_APPLICABLE if result.set_point is None else without
     running = [n for n in range(len(result.slots)) if result.combinations[k, n]]
     combination = {
         "running": [result.slots[n].id for n in running],
         "state": state.name.lower(),
         "set_point_held": bool(result.set_point_held[c, k]),
+        "binding": Binding(int(result.binding[c, k])).name.lower(),
+        "fixed_units_exceed": bool(result.fixed_exceeds[c, k]),
+        "fire_tank_draws_down": bool(result.tank_draws_down[c, k]),
         **null_or_why(
             {
+                "nearest_flow_m3_s": result.nearest_flow[c, k],
+                "head_lacking_m": result.lack[c, k],
+                "tank_flow_m3_s": result.tank_flow[c, k],
                 "flow_m3_s": result.flow[c, k],
                 "station_head_m": result.station_head[c, k],
+                "valve_loss_m": result.valve_loss[c, k],
                 "held_pressure_pa": result.held_pressure[c, k],
                 "discharge_pressure_pa": result.discharge_pressure[c, k],
                 "discharge_grade_m": result.discharge_grade[c, k],
@@ -241,6 +261,11 @@ def _combination(result: DutyResult, c: int, k: int) -> CombinationJson:
             },
             without,
             {
+                "nearest_flow_m3_s": NOT_APPLICABLE,
+                "head_lacking_m": NOT_APPLICABLE,
+                "tank_flow_m3_s": NOT_APPLICABLE if result.zone_kind == "closed" else without,
+                "zero_flow_speed_ratio": held,
+                "pressure_per_one_per_cent_speed_pa": held,
                 "discharge_pressure_pa": NO_WATER
                 if result.discharge_without_water[c, k]
                 else without,

@@ -1,5 +1,6 @@
 """The cases that are always made, as JSON data."""
 
+from collections.abc import Iterable
 from typing import cast
 
 import numpy as np
@@ -17,6 +18,7 @@ from server.studies.results_numbers import (
 )
 from server.studies.results_shape import (
     AfterTripJson,
+    CutOutJson,
     FirmCapacityJson,
     HandoverJson,
     OnePumpAloneJson,
@@ -149,6 +151,9 @@ def firm_capacity_json(result: DutyResult) -> list[FirmCapacityJson]:
             # with a limit that could not be counted it would only be a number too large
             "by_all_m3_s": None if each.not_counted else or_null(each.by_all),
             "by_all_limit": "not_checked" if each.not_counted else each.by_all_limit,
+            "by_all_at_lower_corner_m3_s": or_null(each.by_all_weak),
+            "test_grade": each.test_grade,
+            "hours_s": each.hours,
             "not_counted": list(each.not_counted),
             "unit_out": each.unit_out,
             "all_running_m3_s": or_null(each.all_running),
@@ -165,3 +170,28 @@ def _dry(result: DutyResult, without: Flags) -> list[str]:
 def _slots(result: DutyResult, combination: int) -> list[str]:
     flags = result.combinations[combination]
     return [slot.id for slot, runs in zip(result.slots, flags, strict=True) if runs]
+
+
+def cut_out_json(result: DutyResult) -> list[CutOutJson] | None:
+    """Return what runs with the supply tank at its cut-out; None without such a level."""
+    made = result.made.cut_out
+    if made is None:
+        return None
+    ids = [slot.id for slot in result.slots]
+    return [
+        {
+            "case": case_key(case),
+            "running": _slots(result, int(made.combination[m])),
+            "state": State(int(made.state[m])).name.lower(),
+            "flow_m3_s": or_null(made.flow[m]),
+            "depth_over_outlet_m": or_null(made.depth),
+            "submergence_needed_m": or_null(made.submergence[m]),
+            "npsh_available_m": _by_slot(ids, made.npsh_available[m]),
+            "npsh_required_m": _by_slot(ids, made.npsh_required[m]),
+        }
+        for m, case in enumerate(made.cases)
+    ]
+
+
+def _by_slot(ids: list[str], values: Iterable[float]) -> dict[str, float | None]:
+    return {name: or_null(value) for name, value in zip(ids, values, strict=True)}

@@ -9,6 +9,7 @@ from server.studies.shapes import Case
 
 MISSING = "input_missing"  # why a number is null, where no state says it
 NO_WATER = "no_water"
+NOT_APPLICABLE = "not_applicable"  # this kind of station or state has no such number
 
 
 def or_null(value: float) -> float | None:
@@ -25,6 +26,7 @@ def case_key(case: Case) -> CaseKeyJson:
         "supply": case.supply,
         "pipes": case.pipes,
         "out": case.out,
+        "units": case.units,
     }
 
 

@@ -35,6 +35,7 @@ class CaseKeyJson(TypedDict):
     supply: SupplyState
     pipes: Literal["new", "aged"]
     out: str | None
+    units: int | None
 
 
 @with_config(CLOSED)
@@ -101,8 +102,15 @@ class CombinationJson(TypedDict):
     running: list[str]
     state: str
     set_point_held: bool
+    binding: str
+    fixed_units_exceed: bool
+    fire_tank_draws_down: bool
+    nearest_flow_m3_s: float | None
+    head_lacking_m: float | None
+    tank_flow_m3_s: float | None
     flow_m3_s: float | None
     station_head_m: float | None
+    valve_loss_m: float | None
     held_pressure_pa: float | None
     discharge_pressure_pa: float | None
     discharge_grade_m: float | None
@@ -129,6 +137,8 @@ class CaseJson(TypedDict):
     fire_flow_m3_s: float | None
     fire_point: str | None
     required_head_m: float | None
+    set_pressure_pa: float | None
+    tank_level_m: float | None
     supply_grade_m: float | None
     connection_pressure_pa: float | None
     suction_pressure_pa: float | None
@@ -207,6 +217,20 @@ class HandoverJson(TypedDict):
 
 
 @with_config(CLOSED)
+class CutOutJson(TypedDict):
+    """A supply tank at its cut-out level, one state."""
+
+    case: CaseKeyJson
+    running: list[str]
+    state: str
+    flow_m3_s: float | None
+    depth_over_outlet_m: float | None
+    submergence_needed_m: float | None
+    npsh_available_m: dict[str, float | None]
+    npsh_required_m: dict[str, float | None]
+
+
+@with_config(CLOSED)
 class FirmCapacityJson(TypedDict):
     """Largest flow with the largest unit out, for one requirement at one horizon."""
 
@@ -218,6 +242,9 @@ class FirmCapacityJson(TypedDict):
     by_head_limit: str
     by_all_m3_s: float | None
     by_all_limit: str
+    by_all_at_lower_corner_m3_s: float | None
+    test_grade: str
+    hours_s: float | None
     not_counted: list[str]
     unit_out: str
     all_running_m3_s: float | None
@@ -232,6 +259,9 @@ class SolvedSetJson(TypedDict):
     solved: Literal[True]
     study: str
     study_version: int
+    control: str
+    zone_kind: Literal["closed", "floating_tank", "fire_tank"]
+    supply_kind: str
     held_point: str | None
     set_point_pa: float | None
     lowest_speed_ratio: float
@@ -245,6 +275,8 @@ class SolvedSetJson(TypedDict):
     one_pump_alone: list[OnePumpAloneJson] | None
     handover: list[HandoverJson] | None
     firm_capacity: list[FirmCapacityJson]
+    cut_out: list[CutOutJson] | None
+    single_points: list[str]
 
 
 @with_config(CLOSED)

@@ -2,9 +2,11 @@
 
 import numpy as np
 
+from server.hydraulics.operating_points import all_operating_points
 from server.studies.cases import Cases, installed_slots, largest, shifts
-from server.studies.duty_result import OnePumpAlone, StationOff, ZeroFlow
-from server.studies.lowering.lowered import LoweredSet
+from server.studies.duty_result import OnePumpAlone, SeveralStates, StationOff, ZeroFlow
+from server.studies.lowering.lowered import Flags, LoweredSet
+from server.studies.running import Running
 from server.studies.set_states import full_speeds
 from server.studies.shapes import PipeAge
 from server.studies.suction_side import suction_side
@@ -99,3 +101,29 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
         npsh_required=slot["npsh_required"],
         shaft_power=slot["shaft_power"],
     )
+
+
+def several_states(
+    of: LoweredSet, cases: Cases, running: Running, combinations: Flags
+) -> tuple[SeveralStates, ...]:
+    """Return the shown states of humped pumps that are not the only ones, by a scan.
+
+    Legs that fall throughout have one operating point: for them nothing is looked for.
+    """
+    legs = [of.units[slot.unit].leg for slot in of.slots]
+    if all(leg.shares_uniquely for leg in legs) or of.control.kind == "held_flow":
+        return ()
+    way = tank_way(of, cases.draw, cases.tank_state)
+    system, speeds, known = way.system(), full_speeds(of).tolist(), way.known
+    found = []
+    for c in np.flatnonzero(running.shown):
+        k, row = int(running.chosen[c]), int(running.rows[c])
+        if k < 0 or not known[row]:
+            continue
+        every = all_operating_points(
+            legs, system=system, case=row, speeds=speeds, on=combinations[k].tolist()
+        )
+        flows = tuple(point.flow for point in every.points)
+        if len(flows) > 1:
+            found.append(SeveralStates(case=running.cases[c], combination=k, flows=flows))
+    return tuple(found)

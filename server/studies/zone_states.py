@@ -40,6 +40,7 @@ class ZoneStates:
     tank_level: Floats  # (C,) nan without a tank [m]
     tank_flow: Floats  # (C, K) into the tank, negative when it feeds [m3/s]
     tank_draws_down: Flags  # (C, K) a fire tank would feed in normal service too
+    closed_grade: Floats  # (C, K) at a fire tank's node with the tank shut [m]
 
     @property
     def own_ways(self) -> bool:
@@ -72,6 +73,7 @@ def _closed(of: LoweredSet, draw: Draw, combinations: Flags) -> ZoneStates:
         tank_level=np.full(shape[0], np.nan),
         tank_flow=np.full(shape, np.nan),
         tank_draws_down=np.zeros(shape, dtype=np.bool_),
+        closed_grade=np.full(shape, np.nan),
     )
 
 
@@ -102,6 +104,7 @@ def _floating(of: LoweredSet, cases: Cases, combinations: Flags) -> ZoneStates:
         tank_level=way.level,
         tank_flow=np.where(np.isfinite(states.flow), grades.tank_flow, np.nan),
         tank_draws_down=np.zeros(states.state.shape, dtype=np.bool_),
+        closed_grade=np.full(states.state.shape, np.nan),
     )
 
 
@@ -167,6 +170,7 @@ def _with_fire_tank(
         tank_level=level,
         tank_flow=np.where(np.isfinite(now.flow), tank_flow, np.nan),
         tank_draws_down=draws_down,
+        closed_grade=closed.entry_grade,
     )
 
 

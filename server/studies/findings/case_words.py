@@ -11,6 +11,7 @@ _MADE_TITLES = {
     "alone": "one pump alone at top speed",
     "firm-peak_hour": "firm capacity, peak hour",
     "firm-maximum_day_fire": "firm capacity, maximum day and fire",
+    "firm-tank_refill": "firm capacity, refill of the tank",
 }
 _COMMON_STARTS = (
     "Minimum",
@@ -59,8 +60,14 @@ def scenario_title(station: Station, case: Case) -> str:
     out = "" if case.out is None else f", {slot_title(station, case)} out"
     name = scenario_name(station, case)
     if case.scenario == f"{MADE}hand-over":
-        return f"{case.supply} supply"
-    return f"{name}, {case.supply} supply{out}"
+        return supply_words(case)
+    units = "" if case.units is None else f", {case.units} running"
+    return f"{name}, {supply_words(case)}{units}{out}"
+
+
+def supply_words(case: Case) -> str:
+    """Return the supply state of a case: "low supply"."""
+    return "supply at its cut-out" if case.supply == "cut_out" else f"{case.supply} supply"
 
 
 def horizon_title(station: Station, horizon_id: str) -> str:

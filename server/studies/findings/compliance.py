@@ -3,6 +3,7 @@
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+from server.station.station import Station
 from server.studies.findings.criteria import Criterion
 from server.studies.findings.reading import Reading, worst_first
 from server.studies.shapes import Amount, Case, Finding, Severity, Verdict
@@ -17,6 +18,17 @@ NO_SUCH_CASE = (
 )
 # rules judged by a finding rather than by one number against another
 BY_FINDING = frozenset({"station-off-pressure-min", "gap-narrow"})
+OF_A_MAIN = (
+    "suction-main-minimum", "suction-gauge-minimum", "supplying-zone-fire-min",
+    "supplying-zone-normal-min", "flow-test-age-max", "flow-test-drop-min",
+    "flow-test-extrapolation-max", "flow-test-scatter-max",
+)  # fmt: skip
+OF_POINTS = (
+    "service-pressure-min", "fire-pressure-min", "hydrant-residual-min", "service-pressure-max",
+    "service-pressure-max-abnormal", "station-off-pressure-min",
+)  # fmt: skip
+OF_A_HELD_PRESSURE = ("pressure-per-speed-max", "speed-span-min", "gap-narrow")
+OF_A_DRIVE = ("speed-lowest", "speed-highest")
 NOT_COMPUTED = {
     "hours-outside-region": "energy and hours are not computed in this version",
     "starts-small-max": "starts an hour are not computed in this version",
@@ -43,9 +55,10 @@ class ComplianceRow:
 
 def compliance_rows(
     criteria: dict[str, Criterion], readings: Iterable[Reading], findings: Iterable[Finding],
-    pump_set: str | None,
+    pump_set: str | None, station: Station,
 ) -> tuple[ComplianceRow, ...]:  # fmt: skip
     """Return a row for every criterion, in the order of the sheet, for the set `pump_set`."""
+    elsewhere = _not_here(station, pump_set)
     by_key: dict[str, list[Reading]] = {}
     for reading in readings:
         judged = reading.verdict is not Verdict.NOT_CHECKED and reading.code not in INFORMING
@@ -53,17 +66,37 @@ def compliance_rows(
             by_key.setdefault(reading.criterion.rsplit("/", 1)[-1], []).append(reading)
     found = [f for f in findings if f.pump_set in (None, pump_set)]
     return tuple(
-        _row(criterion, by_key.get(key, []), [f for f in found if f.basis == key], pump_set)
+        _row(criterion, by_key.get(key, []), [f for f in found if f.basis == key], pump_set,
+             elsewhere.get(key, ""))
         for key, criterion in criteria.items()
-    )
+    )  # fmt: skip
+
+
+def _not_here(station: Station, pump_set: str | None) -> dict[str, str]:
+    """Return the rules that this kind of station has no use for, and why."""
+    found: dict[str, str] = {}
+    if station.supply.kind == "tank":
+        found |= dict.fromkeys(OF_A_MAIN, "the station draws from a tank")
+    if station.zone.kind == "tank" and not station.zone.points:
+        found |= dict.fromkeys(OF_POINTS, "no point is named; the tank holds the zone")
+    own = next((each for each in station.sets if each.id == pump_set), None)
+    if own is not None:
+        if own.control.kind in ("fixed_speed", "levels", "held_flow"):
+            found |= dict.fromkeys(OF_A_HELD_PRESSURE, "no pressure is held")
+        if all(slot.drive == "fixed" for slot in own.slots):
+            found |= dict.fromkeys(OF_A_DRIVE, "no unit has a drive")
+    return found
 
 
 def _row(
-    criterion: Criterion, readings: list[Reading], findings: list[Finding], pump_set: str | None
-) -> ComplianceRow:
+    criterion: Criterion, readings: list[Reading], findings: list[Finding],
+    pump_set: str | None, not_here: str,
+) -> ComplianceRow:  # fmt: skip
     limit = None
     if criterion.quantity is not None:
         limit = Amount("limit", criterion.si, criterion.dimension, criterion.rule.decimals)
+    if not_here and not readings and not findings:
+        return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit, because=not_here)
     if criterion.sense in ("setting", "stated") and not readings:
         return ComplianceRow(criterion, Verdict.NOT_APPLICABLE, limit,
                              because="a setting"

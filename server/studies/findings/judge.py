@@ -8,6 +8,7 @@ from server.studies.findings.criteria import Criterion
 from server.studies.findings.judge_after_trip import judge_after_trip
 from server.studies.findings.judge_capacity import judge_capacity
 from server.studies.findings.judge_control import judge_control
+from server.studies.findings.judge_drives import judge_drives
 from server.studies.findings.judge_inputs import judge_inputs, judge_missing
 from server.studies.findings.judge_npsh import judge_npsh
 from server.studies.findings.judge_pipes import judge_pipes
@@ -18,6 +19,7 @@ from server.studies.findings.judge_shut_off import judge_shut_off, levels_not_gi
 from server.studies.findings.judge_staging import judge_staging
 from server.studies.findings.judge_suction import judge_suction
 from server.studies.findings.judge_supply import draws_of, judge_supply
+from server.studies.findings.judge_tank import judge_tank
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.findings.reading import Reading, broken, findings_from
 from server.studies.findings.registry import order_of
@@ -84,6 +86,8 @@ def _of_set(judged: JudgedSet) -> tuple[list[Reading], list[Finding]]:
         judge_after_trip(judged),
         judge_pumps(judged),
         judge_pipes(judged),
+        judge_tank(judged),
+        judge_drives(judged),
     ):
         readings.extend(more)
         findings.extend(found)

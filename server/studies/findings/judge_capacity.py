@@ -6,7 +6,7 @@ from dataclasses import replace
 import numpy as np
 
 from server.studies.duty_result import FirmCapacity, StationOff
-from server.studies.findings.judge_suction import SUCTION_LIMITS
+from server.studies.findings.judge_suction import SUCTION_LIMITS, low_state
 from server.studies.findings.judged_set import JudgedSet, amount
 from server.studies.findings.reading import Reading, broken
 from server.studies.shapes import Case, Finding, Path, Severity
@@ -16,7 +16,11 @@ _OFF_CODES = {
     Severity.STOP: "station_off",
     Severity.NOT_CHECKED: "station_off_not_checked",
 }
-FIRM_CODES = {"peak_hour": "firm_peak_hour_short", "maximum_day_fire": "firm_fire_short"}
+FIRM_CODES = {
+    "peak_hour": "firm_peak_hour_short",
+    "maximum_day_fire": "firm_fire_short",
+    "tank_refill": "firm_refill_short",
+}
 
 
 def judge_capacity(
@@ -94,7 +98,8 @@ def firm_reading(judged: JudgedSet, firm: FirmCapacity, told: bool) -> Reading:
         provided=amount("firm", None if is_open(firm) else firm.by_all, D.FLOW),
         required=amount("required", firm.required_flow, D.FLOW), sense="at_least",
         others=(amount("by_head", firm.by_head, D.FLOW),
-                amount("short", firm.required_flow - firm.by_all, D.FLOW)),
+                amount("short", firm.required_flow - firm.by_all, D.FLOW),
+                amount("hours", firm.hours, D.TIME)),
         names=(("set", judged.title), ("out", slots.get(firm.unit_out, "a unit")),
                ("limit", limit_words(judged, firm.by_all_limit))),
         mend=_mend_firm(judged, firm),
@@ -112,12 +117,14 @@ def limit_words(judged: JudgedSet, limit: str) -> str:
         "suction_gauge": "the suction gauge",
         "npsh": "the NPSH margin",
         "no_unit": "no unit left",
+        "tank_level": "the full tank",
+        "held_flow": "the flow that is held",
     }.get(limit, limit.replace("_", " "))
 
 
 def _mend_firm(judged: JudgedSet, firm: FirmCapacity) -> tuple[Path, ...]:
     if firm.by_all_limit in SUCTION_LIMITS:
-        return ("/supply/states/low", f"{judged.path}/slots")
+        return (low_state(judged), f"{judged.path}/slots")
     order = sorted(range(len(judged.slots)), key=lambda n: judged.slots[n].role == "jockey")
     tables = tuple(dict.fromkeys(f"{judged.curve_path(n)}/table" for n in order))
     # with one unit left none, a larger pump mends nothing: another slot does

@@ -36,11 +36,15 @@ def _not_held(judged: JudgedSet, failing: frozenset[Case]) -> Iterator[Finding]:
     """Yield the set point that is not held although the requirements are met."""
     groups: dict[str, list[tuple[float, int, int]]] = {}
     result = judged.result
+    if result.set_point is None:
+        return
     for c, k in judged.stated:
         state = State(int(result.state[c, k]))
+        if state is State.LOW_SPEED and result.fixed_exceeds[c, k]:
+            continue  # what runs without a drive is told by itself
         if bool(result.set_point_held[c, k]) or judged.case(c) in failing:
             continue
-        lack = (result.set_point or 0.0) - float(result.held_pressure[c, k])
+        lack = float(result.set_pressure[c] - result.held_pressure[c, k])
         if state is State.LOW_SPEED:
             groups.setdefault("low_speed_limit", []).append((lack, c, k))
         else:
@@ -57,20 +61,12 @@ def _not_held(judged: JudgedSet, failing: frozenset[Case]) -> Iterator[Finding]:
             subject=control, pump_set=judged.id, governing=judged.case(c),
             cases=tuple(judged.case(each) for _, each, _ in cases),
             provided=amount("held", float(result.held_pressure[c, k]), D.PRESSURE, 0),
-            required=amount("set_point", result.set_point, D.PRESSURE),
+            required=amount("set_point", float(result.set_pressure[c]), D.PRESSURE),
             others=(amount("speed", float(np.nanmax(result.speed[c, k])), D.RATIO, 1),),
-            names=(("set", judged.title), ("held", _held_words(judged))), basis="physics",
+            names=(("set", judged.title), ("held", judged.held_words)), basis="physics",
             mend=(f"{control}/lowest_speed",) if low else (f"{control}/pressure",
                                                            f"{control}/highest_speed"),
         )  # fmt: skip
-
-
-def _held_words(judged: JudgedSet) -> str:
-    return (
-        judged.points[judged.held_index].title
-        if judged.held_index >= 0
-        else "the discharge gauge"
-    )
 
 
 def _trips(judged: JudgedSet) -> Iterator[Reading]:
@@ -122,6 +118,8 @@ def _limiter(judged: JudgedSet) -> Iterator[Finding]:
 
 def _speed_range(judged: JudgedSet) -> Iterator[Reading]:
     """Yield the typed speeds against the range of the criteria."""
+    if all(slot.fixed for slot in judged.slots):
+        return
     control = f"{judged.path}/control"
     for field, code, key, value, sense in (
         (
@@ -197,7 +195,7 @@ def _steepness(judged: JudgedSet) -> Iterator[Reading]:
             provided=amount("change", change, D.PRESSURE, 1),
             required=amount("required", limit, D.PRESSURE, 0), sense="at_most",
             others=(amount("limit", limit, D.PRESSURE, 0),), mend=mend,
-            names=(("set", judged.title), ("held", _held_words(judged))),
+            names=(("set", judged.title), ("held", judged.held_words)),
         )  # fmt: skip
         yield over
         if not broken(over) and not result.is_fire[c]:

@@ -44,7 +44,8 @@ def judge_defaults(station: Station) -> Iterator[Finding]:
         if pump.minimum_flow is None:
             yield default_used(f"/pumps/{pump.id}/minimum_flow", "the criteria row")
     for each in station.sets:
-        for name in ("lowest_speed", "highest_speed"):
+        drives = any(slot.drive == "variable" for slot in each.slots)
+        for name in ("lowest_speed", "highest_speed") if drives else ():
             if each.control.kind is not None and getattr(each.control, name) is None:
                 yield default_used(f"/sets/{each.id}/control/{name}", "the criteria row")
     for leg in station.legs:

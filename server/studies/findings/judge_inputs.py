@@ -68,7 +68,7 @@ def judge_inputs(
     ]  # fmt: skip
     findings.extend(_missing(path, "absent", False, None) for path in _unasked(station))
     for each in station.sets:
-        findings.extend(_protections(each))
+        findings.extend(_protections(station, each))
         findings.extend(_ratings(station, each))
     return list(_fires(station, criteria)), findings
 
@@ -135,7 +135,8 @@ def _scenarios(station: Station) -> Iterator[Finding]:
                     (*names, ("demand", words)),
                     subject=f"/horizons/{horizon.id}/demand/{demand}",
                 )
-        if station.fires and not any(scenario.fire is not None for scenario in own):
+        pumped = [fire for fire in station.fires if fire.carried_by != "storage"]
+        if pumped and not any(scenario.fire is not None for scenario in own):
             yield _not_checked("fire_scenario_missing",
                                _scenario_field(station, horizon.id, None), names,
                                subject=f"/horizons/{horizon.id}")  # fmt: skip
@@ -229,11 +230,14 @@ def _under_criteria(station: Station, criteria: dict[str, Criterion]) -> Iterato
                 )  # fmt: skip
 
 
-def _protections(each: PumpSet) -> Iterator[Finding]:
+def _protections(station: Station, each: PumpSet) -> Iterator[Finding]:
     """Yield the protections that are not entered: what they protect is not checked."""
     base, trips = f"/sets/{each.id}/trips", each.trips
+    # a tank's cut-out level stops the pumps before they draw air
+    from_tank = station.supply.kind == "tank" and station.supply.tank.cut_out is not None
     for field, value, needed in (
-        ("low_suction_trip", trips.low_suction_trip, True),
+        ("high_level_trip", trips.high_level_trip, each.control.kind == "levels"),
+        ("low_suction_trip", trips.low_suction_trip, not from_tank),
         ("low_suction_delay", trips.low_suction_delay, trips.low_suction_trip is not None),
         ("high_discharge_trip", trips.high_discharge_trip, True),
         (

@@ -2,6 +2,8 @@
 
 from collections.abc import Iterator
 
+import numpy as np
+
 from server.studies.duty_result import OnePumpAlone, Place
 from server.studies.findings.judge_suction import low_state, no_water
 from server.studies.findings.judged_set import JudgedSet, amount
@@ -15,7 +17,29 @@ ALONE = "alone"
 def judge_npsh(judged: JudgedSet) -> list[Reading]:
     """Return the readings of NPSH: broken, by ratio, by margin."""
     alone = judged.result.made.one_pump_alone
-    return [*_in_cases(judged), *(() if alone is None else _alone(judged, alone))]
+    return [
+        *_in_cases(judged),
+        *_at_cut_out(judged),
+        *(() if alone is None else _alone(judged, alone)),
+    ]
+
+
+def _at_cut_out(judged: JudgedSet) -> Iterator[Reading]:
+    """Yield what runs with the supply tank at its cut-out level."""
+    made = judged.result.made.cut_out
+    if made is None:
+        return
+    for m, case in enumerate(made.cases):
+        kinds: dict[object, int] = {}
+        for n in np.flatnonzero(np.isfinite(made.npsh_required[m])):
+            slot = judged.slots[int(n)]
+            leg = judged.leg_of_slot[int(n)]
+            kinds.setdefault((slot.pump, slot.curve, slot.diameter, leg, slot.fixed), int(n))
+        for first in kinds.values():
+            yield from _of_pump(
+                judged, case, first, judged.slot_title(first),
+                float(made.npsh_available[m, first]), float(made.npsh_required[m, first]), True,
+            )  # fmt: skip
 
 
 def _in_cases(judged: JudgedSet) -> Iterator[Reading]:

@@ -62,7 +62,8 @@ def _run(title: str) -> str:
 
 def _mend(judged: JudgedSet, n: int, left: bool) -> tuple[Path, ...]:
     pump = f"{judged.curve_path(n)}/table"
-    return (pump, f"{judged.path}/control/pressure") if left else (pump, f"{judged.path}/slots")
+    set_point = judged.result.set_point is not None
+    return (pump, f"{judged.path}/{'control/pressure' if left and set_point else 'slots'}")
 
 
 def _edge(judged: JudgedSet, common: Reading, share: float, low: float, high: float) -> Reading:
@@ -109,6 +110,9 @@ def _without_duty(judged: JudgedSet) -> Iterator[Reading]:
         code = _why(judged, c)
         if code is None:
             continue  # there is no water to pump: the suction side tells it
+        if result.zone_kind == "floating_tank":
+            yield _against_tank(judged, c, code)
+            continue
         end, speed = _end(judged, c)
         demand = float(result.demand[c])
         yield Reading(
@@ -121,6 +125,26 @@ def _without_duty(judged: JudgedSet) -> Iterator[Reading]:
         )  # fmt: skip
 
 
+def _against_tank(judged: JudgedSet, c: int, code: str) -> Reading:
+    """Return a case without a duty against a tank: there the flow follows, and none fits."""
+    result, k = judged.result, int(judged.result.chosen[c])
+    ended = code == "end_of_curve"
+    if k < 0:
+        lacks = np.where(result.available[c], np.abs(result.lack[c]), np.inf)
+        k = int(np.argmin(np.nan_to_num(lacks, nan=np.inf)))
+    lack = abs(float(result.lack[c, k]))
+    end = float(result.flow_at_end[c, k])
+    provided = amount("flow_at_end", end, D.FLOW) if ended else amount("lack", lack, D.HEAD, 1)
+    return Reading(
+        code=code, severity=Severity.STOP, subject=judged.path, pump_set=judged.id,
+        criterion=None, case=judged.case(c), provided=provided,
+        required=amount("demand", float(result.demand[c]), D.FLOW), sense="at_least",
+        without_number=True, others=(amount("surplus", lack, D.HEAD, 1),),
+        names=(("set", judged.title), ("state", "tank" if ended else "")),
+        mend=_mend_no_duty(judged, code),
+    )  # fmt: skip
+
+
 def _why(judged: JudgedSet, c: int) -> str | None:
     result = judged.result
     k = int(result.chosen[c])
@@ -130,6 +154,8 @@ def _why(judged: JudgedSet, c: int) -> str | None:
         return None
     if State.END_OF_CURVE in states:
         return "end_of_curve"
+    if State.BELOW_STATIC in states and result.zone_kind == "floating_tank":
+        return "static_head_not_reached"
     # a combination with a unit held shut is never chosen: all that may run have one
     return "held_shut" if states & {State.BELOW_STATIC, State.HELD_SHUT} else "no_unit"
 

@@ -100,8 +100,11 @@ def _main_and_gauge(judged: JudgedSet) -> Iterator[Reading]:
     under its limit, with the gauge beside it, else under the gauge's row.
     """
     firm = suction_capacity(judged)
+    from_tank = judged.result.supply_kind == "tank"
     for c in judged.supplied:
         yield from _below_atmosphere(judged, c)
+        if from_tank:
+            continue  # the limits guard a main and its other customers: a tank has none
         main = _suction(judged, c, "suction-main-minimum",
                         float(judged.result.connection_pressure[c]),
                         (low_state(judged), "/supply/connection_level"))  # fmt: skip

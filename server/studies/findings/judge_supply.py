@@ -32,19 +32,25 @@ def draws_of(results: list[DutyResult]) -> Draws | None:
     """Return the largest draws of the solved sets, None when no set is solved."""
     if not results:
         return None
-    normal = [
-        float(q) for r in results for q, f in zip(r.demand, r.is_fire, strict=True) if not f
-    ]
-    fire = [float(q) for r in results for q, f in zip(r.demand, r.is_fire, strict=True) if f]
+    drawn = [each for result in results for each in _drawn(result)]
+    normal = [q for q, in_fire, _ in drawn if not in_fire]
+    fire = [q for q, in_fire, _ in drawn if in_fire]
     largest = max([*normal, *fire], default=0.0)
-    cases = tuple(
-        case
-        for case, q in zip(results[0].cases, results[0].demand, strict=True)
-        if q >= largest
-    )
+    cases = tuple(case for q, _, case in _drawn(results[0]) if q >= largest)
     return Draws(
         max(normal, default=0.0), max(fire, default=None), results[0].density, largest, cases
     )
+
+
+def _drawn(result: DutyResult) -> Iterator[tuple[float, bool, Case]]:
+    """Yield what each case draws from the supply: the demand, or what fills a tank."""
+    for c, case in enumerate(result.cases):
+        k = int(result.chosen[c])
+        drawn = float(result.demand[c])
+        if result.zone_kind == "floating_tank":
+            drawn = float(result.flow[c, k]) if k >= 0 else float("nan")
+        if drawn == drawn:
+            yield drawn, bool(result.is_fire[c]), case
 
 
 def judge_supply(

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from server.hydraulics import operating_region
 from server.hydraulics.operating_region import region
 from server.hydraulics.states import State
+from server.station.demand import Scenario
 from server.station.pump_set import PumpSet
 from server.station.station import Station
 from server.studies.duty_result import DutyResult, Place, PointFacts, SlotFacts
@@ -17,6 +18,7 @@ from server.studies.findings.criteria import Criterion
 from server.studies.shapes import SUPPLY_STATES, Amount, Case, Path, PipeAge, Region
 from server.units import Dimension
 
+_GAUGE = "the discharge gauge"
 MADE = "made:"  # scenario ids of cases that are always made
 STATED = (
     State.SOLVED,
@@ -100,6 +102,27 @@ class JudgedSet:
         """Index of the point whose pressure is held, -1 when it is the discharge gauge."""
         ids = [point.id for point in self.result.points]
         return ids.index(self.result.held_point) if self.result.held_point in ids else -1
+
+    @property
+    def held_words(self) -> str:
+        """Where the pressure is held, in words."""
+        return self.points[self.held_index].title if self.held_index >= 0 else _GAUGE
+
+    @cached_property
+    def pump_tables(self) -> tuple[Path, ...]:
+        """Curves of the pumps, each once, those of jockeys last."""
+        order = sorted(range(len(self.slots)), key=lambda n: self.slots[n].role == "jockey")
+        return tuple(dict.fromkeys(f"{self.curve_path(n)}/table" for n in order))
+
+    def scenario_of(self, c: int) -> Scenario | None:
+        """Return the scenario of case `c`."""
+        own = self.result.cases[c].scenario
+        return next((each for each in self.station.scenarios if each.id == own), None)
+
+    def held_grade(self, c: int) -> float:
+        """Return the least grade at a fire tank's node that a held set point gives [m]."""
+        grades = self.result.closed_grade[c, self.result.tank_draws_down[c]]
+        return float(np.nanmin(grades)) if grades.size else float("nan")
 
     @cached_property
     def suction_bores(self) -> tuple[Path, ...]:

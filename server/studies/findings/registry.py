@@ -3,8 +3,11 @@
 from server.studies.findings.finding_code import FindingCode
 from server.studies.findings.input_codes import INPUT_CODES
 from server.studies.findings.result_codes import RESULT_CODES
+from server.studies.findings.tank_codes import TANK_CODES
 
-CODES: dict[str, FindingCode] = {each.code: each for each in RESULT_CODES + INPUT_CODES}
+CODES: dict[str, FindingCode] = {
+    each.code: each for each in RESULT_CODES + TANK_CODES + INPUT_CODES
+}
 _ORDER = {code: index for index, code in enumerate(CODES)}
 
 # what a memo must not leave unsaid: nothing in these words is computed, in any station

@@ -19,6 +19,11 @@ _TITLES = {
     "suction_main": "{supply}, {limit} at the connection",
     "highest_pressure": "Highest pressure, {limit} at {point}",
     "supplying_zone": "Supplying zone, both ways",
+    "tank_refill": "Maximum day into the full tank in {hours}",
+    "region": "Every number running, every pump in its preferred region",
+    "submergence": "Water over the outlet of the supply tank at its cut-out",
+    "motor": "Motor not overloaded up to the last row",
+    "fire_storage": "Fire from the tank",
 }
 _POINTS = {
     "peak_hour": "the critical customer", "maximum_day": "the critical customer",
@@ -27,6 +32,7 @@ _POINTS = {
 _LIMITS = {
     "connection": "supplying main", "suction_gauge": "suction gauge", "npsh": "NPSH margin",
     "curve_end": "end of the pump curve", "no_unit": "no unit left",
+    "tank_level": "full tank", "held_flow": "held flow",
 }  # fmt: skip
 MOST_REASONS = 3
 

@@ -11,7 +11,10 @@ RESULT_CODES: tuple[FindingCode, ...] = (
     code("end_of_curve", "past the end of the curve", "sets",
          "{set} reaches the end of its pump curves in {case}: {required} is asked, the curves "
          "end at "
-         "{provided} at {speed} speed. No duty is stated{also}."),
+         "{provided} at {speed} speed. No duty is stated{also}.",
+         tank="{set} runs past the end of its pump curves in {case}: with {provided} flowing "
+              "the tank asks for {surplus} less head than they give. No duty is "
+              "stated{also}."),
     code("held_shut", "held shut", "sets",
          "{set} has no duty in {case}: in every combination that may run the others, or its "
          "own cracking "
