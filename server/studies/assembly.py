@@ -36,6 +36,14 @@ class Solved:
     held_pressure: Floats  # (C, K) at the held point, else at the discharge gauge [Pa]
     npsh_available: Floats  # (C, K, N) [m]
 
+    @property
+    def some_supply(self) -> Flags:
+        """Where water reaches the manifold, for some combination at least, (C,)."""
+        has = self.has_supply
+        if has.ndim == 1 or not has.shape[1]:
+            return has if has.ndim == 1 else np.ones(has.shape[0], dtype=np.bool_)
+        return np.asarray(has.any(axis=1), dtype=np.bool_)
+
     @classmethod
     def of_zone(
         cls, of: LoweredSet, cases: Cases, available: Flags, combinations: Flags,
@@ -113,8 +121,8 @@ def assembled(
         """Return what belongs to a case: at the combination that runs, where that tells."""
         return values[rows] if not zone.own_ways else running.at_chosen(values)
 
-    has_supply = solved.has_supply
     required = zone.heads.required_head
+    has_supply = solved.has_supply if required.ndim == 2 else solved.some_supply
     velocity = case(zone.velocity)
     demand = draw.flow[rows]
     nearest = nearest_states(

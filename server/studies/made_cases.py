@@ -37,7 +37,9 @@ def made_cases(
             one_pump_alone=tank_made.one_pump_alone(of),
             firm_capacity=firm_capacity(of, limits),
             cut_out=emptied,
-            several=tank_made.several_states(of, cases, running, solved.combinations),
+            several=tank_made.several_states(
+                of, cases, solved.states.state, solved.combinations
+            ),
             single_points=single,
         )
     holds = of.control.kind in ("zone_point_pressure", "discharge_pressure", "flow_compensated")

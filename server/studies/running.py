@@ -72,9 +72,7 @@ def running_of(
         held, state = _spare(of, solved), states.state
         set_point = np.zeros(draw.flow.shape)
     required = solved.zone.heads.required_head
-    known = np.asarray(np.isfinite(required) & solved.has_supply, dtype=np.bool_)
-    if known.ndim == 2:  # a fire tank: each combination has its own way
-        known = np.asarray(known.any(axis=1), dtype=np.bool_)
+    known = np.asarray(np.isfinite(required) & solved.some_supply, dtype=np.bool_)
     units = at_common_speed(of, solved.combinations)
     chosen, classes = choose(
         of.slots,
@@ -110,9 +108,7 @@ def _filling(
 ) -> Running:
     states = solved.states
     stages = stage_combinations(of, cases, masks)
-    known = np.isfinite(solved.zone.static_head)
-    if solved.has_supply.shape[1]:
-        known &= solved.has_supply.any(axis=1)
+    known = np.isfinite(solved.zone.static_head) & solved.some_supply
     chosen, classes = choose_filling(
         of,
         stages=stages,

@@ -1,12 +1,15 @@
 """Cases always made where a tank floats on the zone: shut-off, station off, one pump alone."""
 
+from dataclasses import replace
+
 import numpy as np
+from numpy.typing import NDArray
 
 from server.hydraulics.operating_points import all_operating_points
+from server.hydraulics.states import State
 from server.studies.cases import Cases, installed_slots, largest, shifts
 from server.studies.duty_result import OnePumpAlone, SeveralStates, StationOff, ZeroFlow
 from server.studies.lowering.lowered import Flags, LoweredSet
-from server.studies.running import Running
 from server.studies.set_states import full_speeds
 from server.studies.shapes import PipeAge
 from server.studies.suction_side import suction_side
@@ -15,6 +18,7 @@ from server.studies.tank_states import tank_states, tank_way
 
 LAST = 10**6  # order of a horizon after all: every slot is installed
 LOW, TOP = 0, 2  # places of the tank's levels
+MOST_SCANS = 4  # combinations of a case that are scanned for more than one state
 
 
 def zero_flow(of: LoweredSet) -> ZeroFlow | None:
@@ -104,26 +108,28 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
 
 
 def several_states(
-    of: LoweredSet, cases: Cases, running: Running, combinations: Flags
+    of: LoweredSet, cases: Cases, states: NDArray[np.int8], combinations: Flags
 ) -> tuple[SeveralStates, ...]:
-    """Return the shown states of humped pumps that are not the only ones, by a scan.
+    """Return the states that humped pumps could keep but not be started into, by a scan.
 
-    Legs that fall throughout have one operating point: for them nothing is looked for.
+    Legs that fall throughout have one operating point. A humped one has several only where the
+    head stands above its shut-off head: then its combination is marked held shut.
     """
     legs = [of.units[slot.unit].leg for slot in of.slots]
-    if all(leg.shares_uniquely for leg in legs) or of.control.kind == "held_flow":
+    humped = np.array([not leg.shares_uniquely for leg in legs], dtype=np.bool_)
+    if not humped.any() or of.control.kind == "held_flow":
         return ()
     way = tank_way(of, cases.draw, cases.tank_state)
     system, speeds, known = way.system(), full_speeds(of).tolist(), way.known
     found = []
-    for c in np.flatnonzero(running.shown):
-        k, row = int(running.chosen[c]), int(running.rows[c])
-        if k < 0 or not known[row]:
-            continue
-        every = all_operating_points(
-            legs, system=system, case=row, speeds=speeds, on=combinations[k].tolist()
-        )
-        flows = tuple(point.flow for point in every.points)
-        if len(flows) > 1:
-            found.append(SeveralStates(case=running.cases[c], combination=k, flows=flows))
+    for c in np.flatnonzero(cases.shown & known):
+        stuck = (states[c] == State.HELD_SHUT) & (combinations & humped).any(axis=1)
+        for k in np.flatnonzero(stuck)[:MOST_SCANS]:
+            every = all_operating_points(
+                legs, system=system, case=int(c), speeds=speeds, on=combinations[k].tolist()
+            )
+            flows = tuple(point.flow for point in every.points)
+            if len(flows) > 1:
+                case = replace(cases.cases[c], units=int(combinations[k].sum()))
+                found.append(SeveralStates(case=case, combination=int(k), flows=flows))
     return tuple(found)

@@ -127,11 +127,11 @@ def test_the_results_say_why_a_number_is_null_where_there_is_no_water() -> None:
     assert case["connection_pressure_pa"] is None
     assert case["null_because"] == dict.fromkeys(
         ("required_head_m", "supply_grade_m", "connection_pressure_pa", "suction_pressure_pa",
-         "suction_grade_m"), "no_water")  # fmt: skip
+         "suction_grade_m"), "no_water") | {"tank_level_m": "not_applicable"}  # fmt: skip
     states = {each["state"] for each in case["combinations"]}
     assert states <= {"no_water", "end_of_curve", "not_available"}
     dry = next(each for each in case["combinations"] if each["state"] == "no_water")
-    assert set(dry["null_because"].values()) == {"no_water"}
+    assert set(dry["null_because"].values()) == {"no_water", "not_applicable"}
     assert set(dry["units"][0]["null_because"].values()) == {"no_water"}
     assert set(dry["points"][0]["null_because"].values()) == {"no_water"}
 

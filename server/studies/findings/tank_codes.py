@@ -47,8 +47,8 @@ TANK_CODES: tuple[FindingCode, ...] = (
          "The impeller in {slot} is cut to {provided} of the tested diameter; under "
          "{required} the rule by which its curve is drawn grows doubtful. Ask the maker."),
     code("operating_point_not_unique", "more than one operating point", "pumps",
-         "{set} can stand at {number} flows in {case}, among them {provided} and {required}: "
-         "which one comes depends on how its pumps are started."),
+         "{set} could stand at {number} flows in {case}, from {required} to {provided}: which "
+         "one comes depends on what runs already, and it cannot be started into the largest."),
     code("valve_wastes_head", "head wasted in the reducing valve", "sets",
          "The reducing valve of {set} takes away {provided} of head in {case}, {power} of "
          "water power{also}."),

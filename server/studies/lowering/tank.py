@@ -26,11 +26,11 @@ def zone_tank(station: Station, needs: Needs) -> ZoneTank | None:
         if quantity is None and name in used:
             needs.stop(f"/zone/tank/{name}")
         levels.append(NAN if quantity is None else quantity.si)
-    if entered.top is None:
+    fire_only = zone.kind == "both" and entered.use == "fire_only"
+    if entered.top is None and not fire_only:
         # firm capacity stands on the full tank
         needs.leave_out("/zone/tank/top")
     area = needs.part("/zone/tank/area", entered.area)
-    fire_only = zone.kind == "both" and entered.use == "fire_only"
     if fire_only and entered.demand_at is not None:
         needs.leave_out("/zone/tank/demand_at", NOT_BESIDE_FIRE)
     return ZoneTank(

@@ -1,5 +1,6 @@
 """For every finding code: edits that make it appear, and the one field that mends it."""
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 from server.station import paths
@@ -94,6 +95,7 @@ class CodeCase:
     mend: str
     value: object
     subject: str | None = None
+    base: Callable[[], Station] = demo
 
 
 def case(
@@ -298,7 +300,7 @@ CASES = (*RESULT_CASES, *INPUT_CASES)
 
 def started(given: CodeCase) -> Station:
     """Return the station in which the code appears."""
-    station = demo()
+    station = given.base()
     for step in given.steps:
         station = step(station)
     return station

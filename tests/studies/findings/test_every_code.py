@@ -10,9 +10,12 @@ from server.studies.findings import words
 from server.studies.findings.registry import CODES
 from server.studies.shapes import Finding
 from server.units import View
-from tests.studies.findings.code_cases import CASES, CodeCase, mended, started
+from tests.studies.findings.code_cases import CASES as OF_CLOSED_ZONE
+from tests.studies.findings.code_cases import CodeCase, mended, started
 from tests.studies.findings.demo import assessed
+from tests.studies.findings.tank_code_cases import TANK_CASES
 
+CASES = (*OF_CLOSED_ZONE, *TANK_CASES)
 IDS = [given.code for given in CASES]
 BY_CODE = {given.code: given for given in CASES}
 
