@@ -223,3 +223,17 @@ def test_every_route_that_is_read_was_asked_for(swept, live):
         if "GET" in route.methods and not any(route.path_regex.match(path) for path in paths)
     ]
     assert unasked == []
+
+
+def test_the_sweep_sees_a_faint_word_a_nameless_field_and_a_wide_block(swept):
+    swept.goto("about:blank")
+    swept.set_content(
+        '<html lang="en"><title>bad</title><main><h1>Bad</h1><p style="color:#ccc">faint</p>'
+        '<input><div style="width:1500px">wide</div></main></html>'
+    )
+
+    assert len(too_wide(swept)) == len(WIDTHS)
+    (nameless,) = axe(swept, STRUCTURE)
+    (faint,) = axe(swept, CONTRAST)
+    assert nameless.startswith("label: ")
+    assert faint.startswith("color-contrast: ")
