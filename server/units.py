@@ -4,7 +4,7 @@ Nothing here knows a station. A value keeps the unit it was entered in; `to_si` 
 float the physics uses, `from_si` brings a result to the unit a person reads.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from enum import StrEnum
 from fractions import Fraction
 from math import isfinite
@@ -46,6 +46,11 @@ class Unit:
     words: str
     factor: Fraction
     offset: Fraction = Fraction(0)
+    ratio: float = field(init=False)  # the factor as a float, made once
+
+    def __post_init__(self) -> None:
+        """Make the float of the factor."""
+        object.__setattr__(self, "ratio", float(self.factor))
 
     def to_si(self, value: float) -> float:
         """Return `value` of this unit in SI."""
@@ -53,13 +58,13 @@ class Unit:
             # exact: 140 degF is 60 degC, the end of a range, and not a rounding error above it
             return float(Fraction(value) * self.factor + self.offset)
         # one product of floats: the rounding stays under one part in 1e15
-        return value * float(self.factor)
+        return value * self.ratio
 
     def from_si(self, value: float) -> float:
         """Return the SI `value` in this unit."""
         if self.offset and isfinite(value):
             return float((Fraction(value) - self.offset) / self.factor)
-        return value / float(self.factor)
+        return value / self.ratio
 
 
 FOOT = Fraction(3048, 10000)

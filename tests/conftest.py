@@ -163,36 +163,44 @@ class Watch:
         if status >= 500:
             self.errors.append(f"{status} {url}")
 
+    @property
+    def bad(self) -> list[str]:
+        """All that went wrong."""
+        return [*self.outside, *self.errors, *self.console]
+
     def forget_refusals(self) -> None:
         """Take out what Chromium says of an answer 4xx that the test wanted."""
         said = "Failed to load resource: the server responded with a status of 4"
         self.console = [text for text in self.console if not text.startswith(said)]
 
 
+def watched_page(browser: Any, home: str, **options: Any) -> Any:
+    """Open a page in a browser of its own; `page.watch` tells what went wrong in it."""
+    context = browser.new_context(base_url=home, **options)
+    # told on the console, so that a violation without a visible effect fails too
+    context.add_init_script(
+        "document.addEventListener('securitypolicyviolation', (e) => console.error("
+        "'Content Security Policy: ' + e.violatedDirective + ' ' + e.blockedURI));"
+    )
+    page = context.new_page()
+    page.watch = Watch()
+    page.watch.on(page, home)
+    return page
+
+
 @pytest.fixture
 def new_page(browser: Any, live: LiveServer) -> Iterator[Callable[..., Any]]:
-    """Open a page in a browser of its own; `page.watch` tells what went wrong in it."""
-    contexts: list[Any] = []
-    watches: list[Watch] = []
+    """Open watched pages, each in a browser of its own."""
+    pages: list[Any] = []
 
     def opened(**options: Any) -> Any:
-        context = browser.new_context(base_url=live.url, **options)
-        # told on the console, so that a violation without a visible effect fails too
-        context.add_init_script(
-            "document.addEventListener('securitypolicyviolation', (e) => console.error("
-            "'Content Security Policy: ' + e.violatedDirective + ' ' + e.blockedURI));"
-        )
-        page = context.new_page()
-        page.watch = Watch()
-        page.watch.on(page, live.url)
-        contexts.append(context)
-        watches.append(page.watch)
-        return page
+        pages.append(watched_page(browser, live.url, **options))
+        return pages[-1]
 
     yield opened
-    for context in contexts:
-        context.close()
-    assert [watch for watch in watches if watch.outside or watch.errors or watch.console] == []
+    for page in pages:
+        page.context.close()
+    assert [page.watch for page in pages if page.watch.bad] == []
 
 
 @pytest.fixture

@@ -32,7 +32,7 @@ def homologous_flow(flow: ArrayLike, *, speed: ArrayLike) -> FloatArray:
         If `speed` is zero or less.
     """
     ratio = np.asarray(speed, dtype=np.float64)
-    if np.any(ratio <= 0):
+    if (ratio <= 0).any():
         raise ValueError(f"speed must be above zero; got {float(np.nanmin(ratio)):g}")
     return np.asarray(np.asarray(flow, dtype=np.float64) / ratio, dtype=np.float64)
 

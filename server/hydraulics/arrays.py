@@ -12,7 +12,7 @@ IndexArray = NDArray[np.intp]
 def finite(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it is not a finite number."""
     array = np.asarray(value, dtype=np.float64)
-    if not np.all(np.isfinite(array)):
+    if not np.isfinite(array).all():
         raise ValueError(
             f"{name} must be a finite number; got {_first(array, ~np.isfinite(array))} {unit}"
         )
@@ -22,7 +22,7 @@ def finite(name: str, value: ArrayLike, unit: str) -> FloatArray:
 def not_infinite(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats, nan for what is not known; ValueError if any is infinite."""
     array = np.asarray(value, dtype=np.float64)
-    if np.any(np.isinf(array)):
+    if np.isinf(array).any():
         raise ValueError(
             f"{name} must not be infinite; got {_first(array, np.isinf(array))} {unit}"
         )
@@ -33,7 +33,7 @@ def within(name: str, value: ArrayLike, low: float, high: float, unit: str) -> F
     """Return `value` as floats; ValueError if any of it lies outside `low` to `high`."""
     array = finite(name, value, unit)
     wrong = (array < low) | (array > high)
-    if np.any(wrong):
+    if wrong.any():
         raise ValueError(
             f"{name} must be between {low:g} and {high:g} {unit};"
             f" got {_first(array, wrong)} {unit}"
@@ -43,16 +43,19 @@ def within(name: str, value: ArrayLike, low: float, high: float, unit: str) -> F
 
 def positive(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it is zero or less."""
-    array = finite(name, value, unit)
-    if np.any(array <= 0):
+    array = np.asarray(value, dtype=np.float64)
+    # in one pass for the arrays that are right, which nearly all are
+    if not ((array > 0) & (array < np.inf)).all():
+        finite(name, array, unit)
         raise ValueError(f"{name} must be above zero; got {_first(array, array <= 0)} {unit}")
     return array
 
 
 def not_negative(name: str, value: ArrayLike, unit: str) -> FloatArray:
     """Return `value` as floats; ValueError if any of it is below zero."""
-    array = finite(name, value, unit)
-    if np.any(array < 0):
+    array = np.asarray(value, dtype=np.float64)
+    if not ((array >= 0) & (array < np.inf)).all():
+        finite(name, array, unit)
         raise ValueError(
             f"{name} must not be below zero; got {_first(array, array < 0)} {unit}"
         )

@@ -7,7 +7,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from server.hydraulics.arrays import BoolArray, FloatArray, IndexArray, StateArray
-from server.hydraulics.balance import energy_residual, residuals
+from server.hydraulics.balance import residuals
 from server.hydraulics.errors import SolutionNotFound
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
@@ -259,8 +259,9 @@ def _polish(
     """
     for _ in range(3):
         head = system.head(flow.sum(axis=1), case=every)
-        residual = energy_residual(flow, leg_state, head, legs, speed)
-        rough = (residual > 1e-3 * HEAD_TOLERANCE) & (residual < _JUMP)
+        energy, mass = residuals(flow, leg_state, head, legs, speed)
+        rough = (energy > 1e-3 * HEAD_TOLERANCE) | (mass > 0.1 * FLOW_TOLERANCE)
+        rough &= energy < _JUMP
         rough &= ~np.any(leg_state == State.END_OF_CURVE, axis=1)
         if not rough.any():
             return

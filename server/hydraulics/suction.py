@@ -60,14 +60,14 @@ def npsh_available(
     12.312
     """
     air = not_infinite("atmospheric_pressure", atmospheric_pressure, "Pa")
-    if np.any(air <= 0):
+    if (air <= 0).any():
         raise ValueError(
             f"atmospheric_pressure must be above zero; got {float(np.nanmin(air)):g} Pa"
         )
     vapour = not_negative("vapour_pressure", vapour_pressure, "Pa")
     weight = positive("density", density, "kg/m3") * GRAVITY
     lost = not_infinite("branch_loss", branch_loss, "m")
-    if np.any(lost < 0):
+    if (lost < 0).any():
         raise ValueError(
             f"branch_loss must not be below zero; got {float(np.nanmin(lost)):g} m"
         )

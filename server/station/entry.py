@@ -5,7 +5,7 @@ from typing import Literal
 
 from pydantic import BaseModel, ConfigDict
 
-from server.units import Dimension
+from server.units import Dimension, to_si
 
 Sheet = Literal[
     "summary",
@@ -83,6 +83,4 @@ class Quantity(Record):
     @property
     def si(self) -> float:
         """The value in SI; KeyError for a unit that well-formedness would have refused."""
-        from server.units import to_si
-
         return to_si(self.value, self.unit)

@@ -17,7 +17,7 @@ from server.studies.findings.judge import judge
 from server.studies.findings.registry import CODES
 from server.studies.findings.requirement_words import lead
 from server.studies.findings.requirements import RequirementRow, requirement_rows
-from server.studies.limits import limits_of
+from server.studies.limits import limits_by
 from server.studies.shapes import Finding, Path, Severity
 from server.units import View
 
@@ -133,8 +133,8 @@ def forget() -> None:
 
 
 def _assessed(station: Station, key: str) -> Assessment:
-    limits = limits_of(station)
     criteria = criteria_of(station)
+    limits = limits_by(criteria)
     results = {
         each.id: duty(station, each.id, limits, document_hash=key) for each in station.sets
     }

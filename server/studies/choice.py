@@ -6,8 +6,7 @@ slot order. The first that
  1 else holds it with every unit inside the maker's allowable region at all three;
  2 else holds it at all three, before the end of the curve and within the speed limits;
  3 else comes nearest: fewest supply states past the end of a curve or without water, least
-   pressure missing at the worst state, least pressure in excess, largest flow at the end of the
-   curve.
+   pressure missing at the worst state, least in excess, largest flow at the end of the curve.
 A combination with a unit held shut in any state is never chosen, nor one whose state cannot be
 told. Supply states that are not stated, or give no water, are left out of "all". One set for
 all states, because the operator switches by flow and does not know the state of the supply.

@@ -6,7 +6,7 @@ import numpy as np
 
 from server.hydraulics.operating_region import preferred_ends
 from server.station.station import Station
-from server.studies.findings.criteria import criteria_of
+from server.studies.findings.criteria import Criterion, criteria_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,7 +52,11 @@ class StudyLimits:
 
 def limits_of(station: Station) -> StudyLimits:
     """Return the limits of the station's criteria."""
-    criteria = criteria_of(station)
+    return limits_by(criteria_of(station))
+
+
+def limits_by(criteria: dict[str, Criterion]) -> StudyLimits:
+    """Return the limits of criteria that are at hand."""
 
     def si(key: str) -> float:
         value = criteria[key].si

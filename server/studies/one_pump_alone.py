@@ -40,19 +40,23 @@ def one_pump_alone(of: LoweredSet) -> OnePumpAlone | None:
         )  # fmt: skip
         return system_heads(of, draw)
 
-    def gap(y: Floats) -> Floats:
+    def short(y: Floats, heads: SystemHeads) -> Floats:
         """Return what the zone asks when wide open less what the pump gives."""
-        heads = heads_at(y)
         asked = (of.points.elevation + heads.zone_loss).T
         easiest = np.fmin.reduce(asked) + heads.main_loss - heads.suction_grade
         return np.asarray(easiest - top**2 * y, dtype=np.float64)
 
-    end, peak = alone.last_head, alone.peak_head
-    found = falling_root(gap, end, peak)
-    to_last_row = found.at_low <= 0
-    flows = to_last_row | np.isfinite(found.root)
-    y = np.where(to_last_row, end, np.where(flows, found.root, peak))
-    heads = heads_at(y)
+    end = alone.last_head
+    at_end = heads_at(end)
+    to_last_row = short(end, at_end) <= 0
+    y, heads = end, at_end
+    if not to_last_row.all():
+        found = falling_root(lambda y: short(y, heads_at(y)), end, alone.peak_head).root
+        y = np.where(to_last_row, end, found)
+    flows = np.isfinite(y)
+    y = np.where(flows, y, end)
+    if not to_last_row.all():
+        heads = heads_at(y)
     side = suction_side(of, heads)
     flow = np.where(flows, top * alone.total(y), np.nan)
     read = [

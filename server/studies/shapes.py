@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass
 from enum import StrEnum
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from server.units import Dimension
 
@@ -45,9 +45,11 @@ class Region(StrEnum):
     NOT_CHECKED = "not_checked"
 
 
-@dataclass(frozen=True, slots=True)
-class Amount:
-    """An SI number that knows its dimension; `value` is None when it could not be had."""
+class Amount(NamedTuple):
+    """An SI number that knows its dimension; `value` is None when it could not be had.
+
+    A tuple, because a judgement makes two thousand of them between an edit and its answer.
+    """
 
     name: str
     value: float | None

@@ -1,4 +1,4 @@
-"""What htmx could not do fails a browser test: the watch is proved by failures made on purpose."""
+"""What htmx could not do fails a browser test: the watch is proved by planted failures."""
 
 import pytest
 from playwright.sync_api import Page

@@ -1,4 +1,4 @@
-"""Two people at one station: what does not meet is merged, what meets is shown to the second."""
+"""Two people at one station: what does not meet is merged, what meets is shown to both."""
 
 from collections.abc import Callable
 from typing import Any

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 from server.station.station import Station
 from server.studies.findings.criteria import Criterion
-from server.studies.findings.reading import Reading, worst_first
+from server.studies.findings.reading import Reading, broken, worst_first
 from server.studies.shapes import Amount, Case, Finding, Severity, Verdict
 from server.units import Dimension
 
@@ -64,9 +64,12 @@ def compliance_rows(
         judged = reading.verdict is not Verdict.NOT_CHECKED and reading.code not in INFORMING
         if judged and reading.criterion is not None and reading.pump_set in (None, pump_set):
             by_key.setdefault(reading.criterion.rsplit("/", 1)[-1], []).append(reading)
-    found = [f for f in findings if f.pump_set in (None, pump_set)]
+    found: dict[str, list[Finding]] = {}
+    for finding in findings:
+        if finding.pump_set in (None, pump_set):
+            found.setdefault(finding.basis, []).append(finding)
     return tuple(
-        _row(criterion, by_key.get(key, []), [f for f in found if f.basis == key], pump_set,
+        _row(criterion, by_key.get(key, []), found.get(key, []), pump_set,
              elsewhere.get(key, ""))
         for key, criterion in criteria.items()
     )  # fmt: skip
@@ -105,13 +108,10 @@ def _row(
         return _by_finding(criterion, limit, findings, pump_set)
     if not readings:
         return _unread(criterion, limit, findings)
-    worst = worst_first(readings)[0]
-    for reading in worst_first(readings):
-        if reading.verdict is Verdict.DOES_NOT_MEET:
-            worst = reading
-            break
-    else:
-        worst = min(readings, key=lambda r: r.relative_margin)
+    failing = [reading for reading in readings if broken(reading)]
+    worst = (
+        worst_first(failing)[0] if failing else min(readings, key=lambda r: r.relative_margin)
+    )
     return ComplianceRow(
         criterion, worst.verdict, limit if worst.without_number else worst.required,
         worst.provided, worst.case, worst.subject,

@@ -210,23 +210,31 @@ class JudgedSet:
                 found.setdefault(c, Place.PUMP_EYE)
         return found
 
-    def running(self, c: int, k: int) -> Iterator[int]:
-        """Yield the slots that pass water in case `c` with combination `k`."""
-        flows = self.result.leg_flow[c, k]
-        for n in np.flatnonzero(self.result.combinations[k]):
-            if flows[n] > 0:
-                yield int(n)
+    def running(self, c: int, k: int) -> tuple[int, ...]:
+        """Return the slots that pass water in case `c` with combination `k`."""
+        on = self.result.combinations[k] & (self.result.leg_flow[c, k] > 0)
+        return tuple(on.nonzero()[0].tolist())
 
-    def running_kinds(self, c: int, k: int) -> Iterator[tuple[int, str]]:
-        """Yield the first of each kind of running unit, with the names of all that run alike.
+    def running_kinds(self, c: int, k: int) -> tuple[tuple[int, str], ...]:
+        """Return the first of each kind of running unit, with the names of all that run alike.
 
         Equal units at one speed pass the same flow: they are judged, and told, together.
         """
+        kept = self._running_kinds
+        if (c, k) not in kept:
+            kept[c, k] = tuple(self._told_together(c, k))
+        return kept[c, k]
+
+    @cached_property
+    def _running_kinds(self) -> dict[tuple[int, int], tuple[tuple[int, str], ...]]:
+        """What `running_kinds` has found: every judge of pumps asks for it."""
+        return {}
+
+    def _told_together(self, c: int, k: int) -> Iterator[tuple[int, str]]:
         alike: dict[tuple[object, ...], list[int]] = {}
-        shares = self.result.best_efficiency_share[c, k]
+        shares = self.result.best_efficiency_share[c, k].tolist()
         for n in self.running(c, k):
-            slot = self.result.slots[n]
-            share = float(shares[n])
+            slot, share = self.result.slots[n], shares[n]
             key = (
                 slot.pump,
                 slot.curve,

@@ -16,7 +16,7 @@ Sense = Literal["at_least", "at_most"]
 Names = tuple[tuple[str, str], ...]
 
 
-@dataclass(slots=True, kw_only=True, eq=False)
+@dataclass(kw_only=True, eq=False)
 class Reading:
     """One comparison; `severity` is how it weighs when the limit is not met.
 
@@ -52,7 +52,7 @@ class Reading:
             return
         self.margin = provided - required if self.sense == "at_least" else required - provided
         scale = abs(required)
-        if self.margin < -ROUNDING * max(scale, 1e-12):
+        if self.margin < -ROUNDING * (scale or 1e-12):
             self.verdict = Verdict.DOES_NOT_MEET
         else:
             at_limit = self.margin < self.at_limit_share * scale
@@ -61,8 +61,7 @@ class Reading:
     def varied(self, **changes: object) -> "Reading":
         """Return the same reading with some of it changed, compared anew."""
         new = object.__new__(Reading)
-        for name in self.__slots__:
-            setattr(new, name, changes[name] if name in changes else getattr(self, name))
+        new.__dict__.update(self.__dict__, **changes)
         new.__post_init__()
         return new
 

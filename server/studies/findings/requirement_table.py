@@ -2,6 +2,7 @@
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from itertools import chain
 
 from server.station.station import Station
 from server.studies.duty_result import FirmCapacity
@@ -52,14 +53,18 @@ class Table:
 
     station: Station
     readings: list[Reading]
+    by_code: dict[str, list[Reading]]
 
     def _kept(self, codes: tuple[str, ...], keep: Keep, horizon: str) -> list[Reading]:
         """Return a row's readings at a horizon; a made case without one counts at each."""
         return [
             r
-            for r in self.readings
-            if (not codes or r.code in codes)
-            and (r.case is None or r.case.horizon in ("", horizon))
+            for r in (
+                chain.from_iterable(self.by_code.get(code, ()) for code in codes)
+                if codes
+                else self.readings
+            )
+            if (r.case is None or r.case.horizon in ("", horizon))
             and r.verdict is not Verdict.NOT_CHECKED
             and keep(r)
         ]
@@ -103,8 +108,8 @@ class Table:
         for horizon in self.station.horizons:
             capacity = [
                 r for r in self.readings
-                if r.case is not None and r.case.scenario == f"{MADE}firm-{key}"
-                and r.case.horizon == horizon.id
+                if r.case is not None and r.case.horizon == horizon.id
+                and r.case.scenario == f"{MADE}firm-{key}"
             ]  # fmt: skip
             scenarios = self._kept(codes, keep, horizon.id)
             failing = [r for r in capacity if broken(r)] or [r for r in scenarios if broken(r)]

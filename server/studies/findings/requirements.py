@@ -54,7 +54,10 @@ def requirement_rows(
     def in_fire(r: Reading) -> bool:
         return r.case is not None and r.case.scenario in fires
 
-    table = Table(station, own)
+    by_code: dict[str, list[Reading]] = {}
+    for reading in own:
+        by_code.setdefault(reading.code, []).append(reading)
+    table = Table(station, own, by_code)
     firm: dict[str, list[FirmCapacity]] = {}
     for capacity in result.made.firm_capacity:
         firm.setdefault(capacity.requirement, []).append(capacity)

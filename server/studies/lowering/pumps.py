@@ -128,7 +128,8 @@ def _facts(
 ) -> SlotFacts:
     of = unit.curve
     region = pump.allowable_region
-    preferred = limits.preferred_region(of.specific_speed)
+    specific_speed, rise = _figures(of)
+    preferred = limits.preferred_region(specific_speed)
     minimum = si_or_none(pump.minimum_flow)
     return SlotFacts(
         id=slot.id,
@@ -159,11 +160,17 @@ def _facts(
         ),
         motor_efficiency=si_or_none(pump.motor_efficiency),
         drive_efficiency=None if math.isnan(unit.drive_efficiency) else unit.drive_efficiency,
-        specific_speed=of.specific_speed,
-        rise_to_shutoff=of.rise_to_shutoff,
+        specific_speed=specific_speed,
+        rise_to_shutoff=rise,
         suction_bore=unit.suction_bore,
         discharge_bore=unit.discharge_bore,
     )
+
+
+@lru_cache(maxsize=KEPT)
+def _figures(curve: PumpCurve) -> tuple[float | None, float | None]:
+    """Return specific speed and rise to shut-off, alike for all slots that share a curve."""
+    return curve.specific_speed, curve.rise_to_shutoff
 
 
 @lru_cache(maxsize=KEPT)

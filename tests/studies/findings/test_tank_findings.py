@@ -47,7 +47,9 @@ def test_one_pump_alone_stands_at_the_edge_of_its_region() -> None:
 def test_the_rows_of_the_summary_are_those_of_a_filling_station() -> None:
     station = tank_demo()
     rows = {row.key: row for row in assessed(station).requirements}
-    assert list(rows) == ["tank_refill", "region", "npsh", "motor", "submergence", "fire_storage"]
+    assert list(rows) == [
+        "tank_refill", "region", "npsh", "motor", "submergence", "fire_storage",
+    ]  # fmt: skip
     say = requirement_words
     assert say.requirement_title(rows["tank_refill"], "si") == (
         "Maximum day into the full tank in 22\u00a0h"
