@@ -187,7 +187,7 @@ def test_a_kind_that_is_not_computed_yet_says_so_beside_it_and_in_the_way_on(sen
     page = opened("sets")
 
     assert "Kept, but not computed in this version" in page.words
-    assert "Running rule: what is chosen is kept, but not computed" in page.words
+    assert "running rule: what is chosen is kept, but not computed" in page.words
 
 
 def test_the_way_on_asks_for_the_rows_of_a_pump_before_there_is_a_set(client):
