@@ -2,6 +2,7 @@
 
 from collections import OrderedDict
 from dataclasses import dataclass
+from functools import cached_property
 from threading import Lock
 
 from server.station import fields
@@ -13,7 +14,7 @@ from server.studies.duty import duty
 from server.studies.duty_result import DutyResult, NotSolved
 from server.studies.findings.compliance import ComplianceRow, compliance_rows
 from server.studies.findings.criteria import Criterion, criteria_of
-from server.studies.findings.judge import judge
+from server.studies.findings.judge import Judgement, judge
 from server.studies.findings.registry import CODES
 from server.studies.findings.requirement_words import lead
 from server.studies.findings.requirements import RequirementRow, requirement_rows
@@ -24,19 +25,45 @@ from server.units import View
 KEPT = 16  # assessments in memory: a station's last edits, or as many stations
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@dataclass(frozen=True, eq=False)
 class Assessment:
-    """Everything that is known of a station without being entered."""
+    """Everything that is known of a station without being entered.
+
+    The two tables are made when they are first read: most edits show neither.
+    """
 
     station: Station
     document_hash: str
     results: dict[str, DutyResult | NotSolved]
-    findings: tuple[Finding, ...]  # worst first
     criteria: dict[str, Criterion]
-    requirements: tuple[
-        RequirementRow, ...
-    ]  # of the proposed set; empty while it is not solved
-    compliance: tuple[ComplianceRow, ...]
+    judgement: Judgement
+
+    @property
+    def findings(self) -> tuple[Finding, ...]:
+        """Every finding, worst first."""
+        return self.judgement.findings
+
+    @cached_property
+    def requirements(self) -> tuple[RequirementRow, ...]:
+        """Requirements of the proposed set by horizon; empty while it is not solved."""
+        solved = self._solved
+        if solved is None:
+            return ()
+        return requirement_rows(self.station, solved, self.judgement.readings, self.criteria)
+
+    @cached_property
+    def compliance(self) -> tuple[ComplianceRow, ...]:
+        """Each criterion with what is required, what is provided and the verdict."""
+        solved = self._solved
+        judged = None if solved is None else solved.pump_set
+        return compliance_rows(
+            self.criteria, self.judgement.readings, self.findings, judged, self.station
+        )
+
+    @property
+    def _solved(self) -> DutyResult | None:
+        result = self.results.get(self.proposed) if self.proposed is not None else None
+        return result if isinstance(result, DutyResult) else None
 
     @property
     def proposed(self) -> str | None:
@@ -138,20 +165,4 @@ def _assessed(station: Station, key: str) -> Assessment:
     results = {
         each.id: duty(station, each.id, limits, document_hash=key) for each in station.sets
     }
-    judgement = judge(station, results, criteria)
-    proposed = proposed_of(station)
-    result = results.get(proposed) if proposed is not None else None
-    solved = result if isinstance(result, DutyResult) else None
-    rows = (
-        ()
-        if solved is None
-        else requirement_rows(station, solved, judgement.readings, criteria)
-    )
-    table = compliance_rows(
-        criteria,
-        judgement.readings,
-        judgement.findings,
-        None if solved is None else solved.pump_set,
-        station,
-    )
-    return Assessment(station, key, results, judgement.findings, criteria, rows, table)
+    return Assessment(station, key, results, criteria, judge(station, results, criteria))

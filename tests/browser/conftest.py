@@ -37,6 +37,7 @@ def new_page(new_page: Callable[..., Any]) -> Callable[..., Any]:
     def opened(**options: Any) -> Any:
         page = new_page(**options)
         page.context.add_init_script(FAILURES)
+        page.set_default_timeout(15_000)
         return page
 
     return opened

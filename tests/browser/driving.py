@@ -63,9 +63,10 @@ class Driver:
         self.page.watch.forget_refusals()  # type: ignore[attr-defined]
 
     def enter(self, control: Locator, text: str) -> None:
-        """Type a value, or choose it by its words; Enter saves."""
+        """Type a value, or choose it by its words unless it stands there; Enter saves."""
         if control.evaluate("(element) => element.tagName") == "SELECT":
-            self.saved(lambda: control.select_option(label=text))
+            if control.evaluate("(element) => element.selectedOptions[0]?.label") != text:
+                self.saved(lambda: control.select_option(label=text))
         else:
             control.fill(text)
             self.saved(control.press, "Enter")

@@ -108,3 +108,11 @@ def test_the_curves_end_where_the_water_does(station, weak):
     assert np.isnan(curves.required_low[-1])
     for along in curves.along:
         assert not np.any(along.npsh_available < 0)
+
+
+def test_the_memo_says_from_where_pressures_count_and_how_far_one_pump_runs(station):
+    text = re.sub(r"<[^>]+>", " ", memo_html(station, "si", "a4"))
+
+    assert text.count("velocity head is not subtracted") == 1
+    assert "judged at the lowest level entered for each reach" in text
+    assert "One pump alone at top speed, low supply, new pipes" in text
