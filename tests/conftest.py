@@ -174,14 +174,19 @@ class Watch:
         self.console = [text for text in self.console if not text.startswith(said)]
 
 
-def watched_page(browser: Any, home: str, **options: Any) -> Any:
-    """Open a page in a browser of its own; `page.watch` tells what went wrong in it."""
+def new_context(browser: Any, home: str, **options: Any) -> Any:
+    """Make a browser of its own, with nothing in its storage and its cache."""
     context = browser.new_context(base_url=home, **options)
     # told on the console, so that a violation without a visible effect fails too
     context.add_init_script(
         "document.addEventListener('securitypolicyviolation', (e) => console.error("
         "'Content Security Policy: ' + e.violatedDirective + ' ' + e.blockedURI));"
     )
+    return context
+
+
+def watched_page(context: Any, home: str) -> Any:
+    """Open a page; `page.watch` tells what went wrong in it."""
     page = context.new_page()
     page.watch = Watch()
     page.watch.on(page, home)
@@ -194,7 +199,7 @@ def new_page(browser: Any, live: LiveServer) -> Iterator[Callable[..., Any]]:
     pages: list[Any] = []
 
     def opened(**options: Any) -> Any:
-        pages.append(watched_page(browser, live.url, **options))
+        pages.append(watched_page(new_context(browser, live.url, **options), live.url))
         return pages[-1]
 
     yield opened

@@ -203,7 +203,7 @@ def test_the_saved_memo_stands_alone(demo_driver: Driver, new_page: Any, tmp_pat
     alone = tmp_path / "memo.html"
     told.value.save_as(alone)
 
-    other = new_page(offline=True)
+    other = new_page("offline")
     asked: list[str] = []
     other.on("request", lambda request: asked.append(request.url))
     other.goto(alone.as_uri())

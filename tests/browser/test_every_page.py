@@ -5,7 +5,7 @@ sideways scrolling at 390 px is of the kind of WCAG 2.2 success criterion 1.4.10
 """
 
 import re
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from itertools import product
 from typing import Any
@@ -17,7 +17,7 @@ from playwright.sync_api import Page, expect
 from server.pages.links import named_routes
 from server.station.edits import Edit
 from server.station.station import Identity, Station
-from tests.browser.conftest import FAILURES
+from tests.browser.driving import Driver
 from tests.conftest import LiveServer, watched_page
 
 WIDTHS = (1440, 1024, 390)
@@ -117,14 +117,14 @@ def ids(live: LiveServer) -> dict[str, str]:
 
 
 @pytest.fixture(scope="module")
-def swept(browser: Any, live: LiveServer) -> Iterator[Any]:
-    """Open the one page in which all addresses are looked at, for the cache of its browser."""
-    page = watched_page(browser, live.url, reduced_motion="reduce")
-    page.context.add_init_script(FAILURES)
+def swept(contexts: Callable[[str], Any], live: LiveServer) -> Iterator[Any]:
+    """Open the one page in which all addresses are looked at."""
+    page = watched_page(contexts("first"), live.url)
+    page.emulate_media(reduced_motion="reduce")
     page.asked, page.seen = set(), set()
     page.on("request", lambda request: page.asked.add(request.url))
     yield page
-    page.context.close()
+    page.close()
 
 
 def too_wide(page: Page) -> list[str]:
@@ -201,6 +201,28 @@ def test_a_page_that_does_not_exist_is_a_page_too(swept, ids):
     expect(swept.locator("h1")).to_have_count(1)
     assert too_wide(swept) == []
     assert axe(swept, STRUCTURE) + axe(swept, CONTRAST) == []
+    assert swept.watch.bad == []
+
+
+def test_a_refused_value_and_a_changed_field_are_accessible_and_fit(swept, ids, live):
+    driver = Driver(swept, live, ids["demo"]).open("supply")
+    swept.set_viewport_size({"width": WIDTHS[0], "height": 900})
+    for path, text, status in (
+        ("/site/altitude", "99999", 422),
+        ("/site/floor_level", "1", 409),
+    ):
+        if status == 409:
+            number = live.store.load(driver.id).number
+            theirs = Edit("set", path, {"value": 109.25, "unit": "m"})
+            live.store.save(driver.id, [theirs], number, "a colleague")
+        driver.at(path).fill(text)
+        driver.refused(status, driver.at(path).press, "Enter")
+
+    expect(swept.get_by_role("button", name="Keep theirs")).to_be_visible()
+    assert too_wide(swept) == []
+    assert axe(swept, STRUCTURE) == []
+    swept.evaluate(THIN)
+    assert axe(swept, CONTRAST) == []
     assert swept.watch.bad == []
 
 

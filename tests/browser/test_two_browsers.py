@@ -17,7 +17,9 @@ ALTITUDE, FLOOR, EYE = "/site/altitude", "/site/floor_level", "/site/eye_level"
 def two(new_page: Callable[..., Any], live: LiveServer) -> tuple[Driver, Driver]:
     """Open the supply sheet of one station in two browsers."""
     station_id = live.demo_copy()
-    first, second = (Driver(new_page(), live, station_id).open("supply") for _ in range(2))
+    first, second = (
+        Driver(new_page(name), live, station_id).open("supply") for name in ("first", "second")
+    )
     return first, second
 
 
