@@ -183,11 +183,11 @@ def test_a_solved_station_is_not_told_what_is_missing(opened):
 
 
 def test_a_kind_that_is_not_computed_yet_says_so_beside_it_and_in_the_way_on(send, opened):
-    send("/sets/st-v3a7pe/control/running_rule", "least_power", base="1", look="choice")
-    page = opened("sets")
+    send("/supply/kind", "tank", base="1", look="choice")
+    page = opened("supply")
 
     assert "Kept, but not computed in this version" in page.words
-    assert "running rule: what is chosen is kept, but not computed" in page.words
+    assert "Kind of supply: what is chosen is kept, but not computed" in page.words
 
 
 def test_the_way_on_asks_for_the_rows_of_a_pump_before_there_is_a_set(client):
