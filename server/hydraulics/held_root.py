@@ -176,15 +176,30 @@ def _solve(
     ceiling: FloatArray,
 ) -> None:
     """Find the roots of the marked rows and put them into `root`."""
-    a, b, low, high = fixed[rows], factor[rows], floor[rows].copy(), ceiling[rows].copy()
+    a, b = fixed[rows], factor[rows]
     count = sharing.count
-    u = 0.5 * (low + high)
+    u = _bracketed_root(sharing, a, b, floor[rows].copy(), ceiling[rows].copy())
+    x, _ = sharing.flows(u)
+    wanted = a + b * np.sqrt(np.maximum(u, 0.0))
+    # A gap that is left is a jump of the largest flow: no share of these legs fits the demand.
+    jumped = np.abs((count * x).sum(axis=1) - wanted) > _JUMP * np.maximum(wanted, _SMALL_FLOW)
+    jumped &= ~sharing.shares_uniquely
+    _mend(sharing, a, b, u, x, ~jumped)
+    root.u[rows], root.x[rows], root.unknown[rows] = u, x, jumped
+
+
+def _bracketed_root(
+    sharing: Sharing, a: FloatArray, b: FloatArray, low: FloatArray, high: FloatArray
+) -> FloatArray:
+    """Return where the flow of the legs meets a + b sqrt(u); rows that are found drop out."""
+    answer = 0.5 * (low + high)
+    place, of, u = np.arange(a.size), sharing, answer.copy()
     for step in range(_STEPS):
-        x, gain = sharing.flows(u)
+        x, gain = of.flows(u)
         wave = np.sqrt(np.maximum(u, 0.0))
-        off = (count * x).sum(axis=1) - a - b * wave
+        off = (of.count * x).sum(axis=1) - a - b * wave
         bend = np.where(wave > 0, 0.5 * b / np.where(wave > 0, wave, 1.0), 0.0)
-        slope = (count * gain).sum(axis=1) - bend
+        slope = (of.count * gain).sum(axis=1) - bend
         low, high = np.where(off > 0, u, low), np.where(off < 0, u, high)
         newton = u - off / np.where(slope < 0, slope, -1.0)
         bisect = (slope >= 0) | (newton < low) | (newton > high)
@@ -193,15 +208,15 @@ def _solve(
         ahead = np.where(bisect, 0.5 * (low + high), newton)
         near = (off == 0) | (np.abs(ahead - u) <= _ROUNDING * np.maximum(1.0, np.abs(u)))
         u = np.where(off == 0, u, ahead)
-        if near.all():
-            break
-    x, _ = sharing.flows(u)
-    wanted = a + b * np.sqrt(np.maximum(u, 0.0))
-    # A gap that is left is a jump of the largest flow: no share of these legs fits the demand.
-    jumped = np.abs((count * x).sum(axis=1) - wanted) > _JUMP * np.maximum(wanted, _SMALL_FLOW)
-    jumped &= ~sharing.shares_uniquely
-    _mend(sharing, a, b, u, x, ~jumped)
-    root.u[rows], root.x[rows], root.unknown[rows] = u, x, jumped
+        if near.any():
+            answer[place[near]] = u[near]
+            left = ~near
+            if not left.any():
+                return answer
+            place, of, u = place[left], of.take(left), u[left]
+            a, b, low, high = a[left], b[left], low[left], high[left]
+    answer[place] = u
+    return answer
 
 
 def _mend(

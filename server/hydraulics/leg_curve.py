@@ -137,7 +137,7 @@ class LegCurve:
         rough = np.abs(excess) > enough
         if rough.any():
             cubic = tuple(c[rough] for c in (c0, c1, c2, c3))
-            t[rough] = _bracketed(cubic, low[rough], high[rough], enough)
+            t[rough] = _bracketed(cubic, t[rough], low[rough], high[rough], enough)
         slope = np.minimum((triple * t + double) * t + c2, _LEVEL)
         flow = np.where(shut, 0.0, np.where(past, self.last_flow, base + t))
         gain = np.where(shut | past, 0.0, 1.0 / slope)
@@ -171,11 +171,14 @@ class LegCurve:
 
 
 def _bracketed(
-    cubic: tuple[FloatArray, ...], low: FloatArray, high: FloatArray, enough: float
-) -> FloatArray:
-    """Return the roots of falling cubics by Newton steps kept inside a shrinking bracket."""
+    cubic: tuple[FloatArray, ...], t: FloatArray, low: FloatArray, high: FloatArray,
+    enough: float,
+) -> FloatArray:  # fmt: skip
+    """Return the roots of falling cubics by Newton steps kept inside a shrinking bracket.
+
+    They start at `t`, which is near.
+    """
     c0, c1, c2, c3 = cubic
-    t = 0.5 * (low + high)
     for _ in range(_STEPS):
         excess = ((c0 * t + c1) * t + c2) * t + c3
         slope = np.minimum((3.0 * c0 * t + 2.0 * c1) * t + c2, _LEVEL)

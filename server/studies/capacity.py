@@ -173,7 +173,8 @@ def _npsh_excess(
     for t, x in enumerate(each):
         if not np.any(units.count[:, t]):
             continue
-        one, flow = of.units[t], of.control.highest_speed * x
+        # beyond the set's own kinds stand the same ones with weaker curves
+        one, flow = of.units[t % len(of.units)], of.control.highest_speed * x
         speed = of.control.highest_speed * units.relative[t]
         required = affinity.npsh_required(
             one.curve, flow, speed=speed, exponent=one.npsh_exponent

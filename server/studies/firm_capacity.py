@@ -44,27 +44,18 @@ def firm_capacity(of: LoweredSet, limits: StudyLimits) -> tuple[FirmCapacity, ..
     for one in asked:
         for counts in (together(of, _installed(of, one)), *_without(of, one).values()):
             jobs.setdefault((counts, one.physics), one)
-    solved = _solve(of, limits, jobs, tuple(unit.leg for unit in of.units))
-    worst = [
-        worst_out([(solved[n, one.physics], out) for out, n in _without(of, one).items()])
-        for one in asked
-    ]
-    corner: Jobs = {}
-    for one, (_, out) in zip(asked, worst, strict=True):
-        corner.setdefault((_without(of, one)[out], one.physics), one)
-    weak = _solve(of, limits, corner, _weak_legs(of))
-    return tuple(
-        _of(of, limits, one, pair, solved, weak) for one, pair in zip(asked, worst, strict=True)
-    )
+    solved, weak = _solve(of, limits, jobs)
+    return tuple(_of(of, limits, one, solved, weak) for one in asked)
 
 
 def _of(
-    of: LoweredSet, limits: StudyLimits, one: Requirement, worst: tuple[Capacity, int],
-    solved: dict[Job, Capacity], weak: dict[Job, Capacity],
+    of: LoweredSet, limits: StudyLimits, one: Requirement, solved: dict[Job, Capacity],
+    weak: dict[Job, Capacity],
 ) -> FirmCapacity:  # fmt: skip
     """Return one capacity with the unit that is out; the lower corner has the same one out."""
-    capacity, out = worst
-    without = {i: solved[counts, one.physics] for i, counts in _without(of, one).items()}
+    counts = _without(of, one)
+    without = {out: solved[n, one.physics] for out, n in counts.items()}
+    worst, out = worst_out([(capacity, i) for i, capacity in without.items()])
     by_head = min(without.values(), key=lambda each: each.by_head)
     not_counted = dict.fromkeys(name for each in without.values() for name in each.not_counted)
     return FirmCapacity(
@@ -74,13 +65,13 @@ def _of(
         required_flow=one.required_flow,
         by_head=by_head.by_head,
         by_head_limit=by_head.by_head_limit,
-        by_all=capacity.by_all,
-        by_all_limit=capacity.by_all_limit,
+        by_all=worst.by_all,
+        by_all_limit=worst.by_all_limit,
         unit_out=of.slots[out].facts.id,
         all_running=solved[together(of, _installed(of, one)), one.physics].by_head,
         best_efficiency_share=by_head.share,
-        runs_out=runs_out(of, one, capacity.by_all),
-        by_all_weak=weak[_without(of, one)[out], one.physics].by_all,
+        runs_out=runs_out(of, one, worst.by_all),
+        by_all_weak=weak[counts[out], one.physics].by_all,
         test_grade=grades_of(of),
         hours=limits.tank_hours if one.name == TANK_REFILL else None,
         not_counted=tuple(not_counted),
@@ -111,18 +102,29 @@ def worst_out(without: Sequence[tuple[Capacity, int]]) -> tuple[Capacity, int]:
 
 
 def _solve(
-    of: LoweredSet, limits: StudyLimits, jobs: Jobs, legs: tuple[LegCurve, ...]
-) -> dict[Job, Capacity]:
-    """Return every capacity that is looked up, solved side by side."""
-    solved = {key: NO_UNIT for key in jobs if not any(key[0])}
+    of: LoweredSet, limits: StudyLimits, jobs: Jobs
+) -> tuple[dict[Job, Capacity], dict[Job, Capacity]]:
+    """Return every capacity that is looked up, and those of pumps that just pass their test.
+
+    All are solved side by side: the weak pumps stand beside the others as further kinds.
+    """
+    still = {key: NO_UNIT for key in jobs if not any(key[0])}
     rest = {key: one for key, one in jobs.items() if any(key[0])}
     if not rest:
-        return solved
+        return still, still
     counts = np.array([n for n, _ in rest], dtype=np.float64)
-    units = CommonSpeed(legs=legs, count=counts, relative=relative_speeds(of))
-    found = capacities(of, limits, units, asked_of(tuple(rest.values())))
-    solved.update(zip(rest, found, strict=True))
-    return solved
+    none = np.zeros(counts.shape)
+    units = CommonSpeed(
+        legs=(*(unit.leg for unit in of.units), *_weak_legs(of)),
+        count=np.block([[counts, none], [none, counts]]),
+        relative=2 * relative_speeds(of),
+    )
+    found = capacities(of, limits, units, asked_of(2 * tuple(rest.values())))
+    own, weak = found[: len(rest)], found[len(rest) :]
+    return (
+        still | dict(zip(rest, own, strict=True)),
+        still | dict(zip(rest, weak, strict=True)),
+    )
 
 
 def _weak_legs(of: LoweredSet) -> tuple[LegCurve, ...]:

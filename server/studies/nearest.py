@@ -1,11 +1,11 @@
 """What binds where a control is not held or nothing is solved, and the nearest state."""
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from server.hydraulics.falling_root import falling_root
 from server.hydraulics.states import State
 from server.studies.duty_result import Binding
 from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
@@ -13,6 +13,7 @@ from server.studies.set_ends import at_common_speed
 from server.studies.set_states import SetStates
 from server.studies.system_heads import Draw, system_heads
 
+LOOKS, ZOOMS = 65, 3  # places looked at beside each other, and how often
 _BINDINGS = {
     State.TOP_SPEED: Binding.HEAD,
     State.LOW_SPEED: Binding.LOWEST_SPEED,
@@ -80,21 +81,44 @@ def _at_full_speed(
     top = of.control.highest_speed
 
     def part(values: object) -> NDArray[np.generic]:
-        return np.broadcast_to(np.asarray(values), draw.flow.shape)[rows]
-
-    fire = part(draw.fire)
+        column = np.broadcast_to(np.asarray(values), draw.flow.shape)[rows, None]
+        return np.broadcast_to(column, (rows.size, LOOKS))
 
     def gap(y: Floats) -> Floats:
+        """Return the head that lacks for the head asked, falling as the flow does, (M, L)."""
         total = top * units.total(y)
-        burning = np.minimum(total, fire)
+        burning = np.minimum(total, part(draw.fire))
         heads = system_heads(
             of,
             Draw(domestic=total - burning, fire=burning, fire_point=part(draw.fire_point),
-                 aged=part(draw.aged), shift=draw.shift[rows], way=part(draw.way)),
+                 aged=part(draw.aged), shift=np.asarray(part(draw.shift), dtype=np.float64),
+                 way=part(draw.way)),
         )  # fmt: skip
         valve = of.control.valve_loss * total * total
         return np.asarray(heads.required_head + valve - top**2 * y, dtype=np.float64)
 
-    found = falling_root(gap, units.last_head, units.peak_head)
-    held = top * units.total(np.where(np.isfinite(found.root), found.root, units.peak_head))
-    flow[rows, chosen[rows]] = np.where(found.at_high > 0, 0.0, held)
+    y, at_rest = _zoomed(gap, units.last_head, units.peak_head)
+    flow[rows, chosen[rows]] = np.where(at_rest > 0, 0.0, top * units.total(y))
+
+
+def _zoomed(
+    gap: Callable[[Floats], Floats], low: Floats, high: Floats
+) -> tuple[Floats, Floats]:
+    """Return where falling gaps pass zero, and their values at the upper ends.
+
+    By looking at many places at once, three times over: to 1e-6 of the bracket and its chord.
+    """
+    share, own = np.linspace(0.0, 1.0, LOOKS), np.arange(low.size)
+    at_high = np.empty(low.shape)
+    left, right = np.array(low), np.array(high)
+    for turn in range(ZOOMS):
+        places = left[:, None] + (right - left)[:, None] * share
+        values = gap(places)
+        if turn == 0:
+            at_high = values[:, -1]
+        above = np.clip((values > 0).sum(axis=1), 1, LOOKS - 1)
+        left, right = places[own, above - 1], places[own, above]
+        upper, lower = values[own, above - 1], values[own, above]
+    fall = upper - lower
+    part = np.clip(np.where(fall > 0, upper / np.where(fall > 0, fall, 1.0), 0.0), 0.0, 1.0)
+    return left + (right - left) * part, at_high

@@ -51,19 +51,19 @@ def system_heads(of: LoweredSet, draw: Draw) -> SystemHeads:
     suction = supply - lost[..., : of.suction_reaches].sum(axis=-1)
     main = lost[..., of.suction_reaches :].sum(axis=-1)
     zone = of.points.loss(draw.domestic, draw.fire, draw.fire_point)
-    asked = _asked(of, draw, main, zone)
     return SystemHeads(
         supply_grade=supply, suction_grade=suction, main_loss=main, zone_loss=zone,
-        # where no point asks for anything, no head is asked for
-        required_head=np.where(np.isneginf(asked), 0.0 * suction, asked - suction),
+        required_head=_asked(of, draw, main, zone, suction) - suction,
     )  # fmt: skip
 
 
 def reach_losses(of: LoweredSet, flow: Floats, aged: ArrayLike, way: ArrayLike) -> Floats:
     """Return the head lost in each reach, suction line first, (..., R) [m]."""
     viscosity = of.water.kinematic_viscosity
-    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
     lost = of.ways[0].reach_losses(flow, aged, viscosity)
+    if len(of.ways) == 1:
+        return lost
+    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
     for i, line in enumerate(of.ways[1:], start=1):
         rows = which == i
         if rows.any():
@@ -74,8 +74,10 @@ def reach_losses(of: LoweredSet, flow: Floats, aged: ArrayLike, way: ArrayLike) 
 
 def reach_velocities(of: LoweredSet, flow: Floats, way: ArrayLike) -> Floats:
     """Return the velocity in each reach, suction line first, (..., R) [m/s]."""
-    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
     velocity = of.ways[0].velocities(flow)
+    if len(of.ways) == 1:
+        return velocity
+    which = np.broadcast_to(np.asarray(way, dtype=np.intp), flow.shape)
     for i, line in enumerate(of.ways[1:], start=1):
         rows = which == i
         if rows.any():
@@ -83,7 +85,9 @@ def reach_velocities(of: LoweredSet, flow: Floats, way: ArrayLike) -> Floats:
     return velocity
 
 
-def _asked(of: LoweredSet, draw: Draw, main: Floats, zone: Floats) -> Floats:
+def _asked(
+    of: LoweredSet, draw: Draw, main: Floats, zone: Floats, suction: Floats
+) -> Floats:
     """Return the grade at the discharge manifold that the control, else the zone, asks for.
 
     Behind a reducing valve where there is one. Fixed speed holds nothing: there it is the
@@ -93,8 +97,12 @@ def _asked(of: LoweredSet, draw: Draw, main: Floats, zone: Floats) -> Floats:
     if control.kind == "fixed_speed":
         # a point whose figures are absent is named elsewhere; the others ask what they ask
         most = np.fmax.reduce(_required_grade(of, draw) + zone, axis=-1, initial=-np.inf)
-        return np.where(np.isfinite(most), main + most, -np.inf)
-    held = set_pressure(of, draw.flow) / of.water.weight
+        # where no point asks for anything, no head is asked for
+        return np.where(np.isfinite(most), main + most, suction)
+    pressure = control.pressure
+    held = (
+        pressure if control.kind != "flow_compensated" else set_pressure(of, draw.flow)
+    ) / of.water.weight
     if control.point < 0:
         return np.asarray(control.discharge_gauge_level + held)
     at = control.point
