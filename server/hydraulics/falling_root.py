@@ -23,7 +23,11 @@ class FallingRoot:
 
 
 def falling_root(
-    function: Callable[[FloatArray], FloatArray], low: FloatArray, high: FloatArray
+    function: Callable[[FloatArray], FloatArray],
+    low: FloatArray,
+    high: FloatArray,
+    *,
+    width: float = ENOUGH,
 ) -> FallingRoot:
     """Return where a falling function passes zero: secants, kept inside a shrinking bracket.
 
@@ -33,12 +37,14 @@ def falling_root(
         Gives the value for an array of the shape of the brackets; called only inside them.
     low, high : ndarray, shape (...)
         Brackets, finite.
+    width : float
+        Of a last bracket, as a share of its larger end. [-]
 
     Returns
     -------
     FallingRoot
-        Roots, to 1e-9 of the bracket's larger end at worst, to rounding for smooth functions;
-        nan where the value is below zero at `low`, above zero at `high`, or not a number.
+        Roots, to that width at worst, to rounding for smooth functions; nan where the value is
+        below zero at `low`, above zero at `high`, or not a number.
 
     Raises
     ------
@@ -53,7 +59,7 @@ def falling_root(
     below, above = np.array(low, dtype=np.float64), np.array(high, dtype=np.float64)
     value_below, value_above = function(below), function(above)
     at_low, at_high = value_below, value_above
-    enough = ENOUGH * np.maximum(np.abs(below), np.abs(above))
+    enough = width * np.maximum(np.abs(below), np.abs(above))
     bracketed = (at_low >= 0) & (at_high <= 0)
     # a root on a bound is a bracket of no width
     above = np.where(bracketed & (at_low == 0), below, above)

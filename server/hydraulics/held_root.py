@@ -6,11 +6,12 @@ import numpy as np
 
 from server.hydraulics.arrays import BoolArray, FloatArray, StateArray
 from server.hydraulics.equal_legs import equal_legs
+from server.hydraulics.falling_root import falling_root
 from server.hydraulics.leg_curve import LegCurve
 from server.hydraulics.states import State
 
-_STEPS = 100
-_NEWTON_ONLY = 12  # steps after which every other one is a bisection
+_NEWTON_ONLY = 12  # steps after which the few rows that are left are settled by secants
+_LAST_WIDTH = 1e-13  # of their last bracket, as a share of the head
 _ROUNDING = 1e-14  # share of the head below which a step changes nothing
 _MEND = 1e-12  # share of the flow missing above which the shares are mended
 _LEAST_STEP = 1e-6  # share of the head within which a mended root must stay
@@ -191,10 +192,14 @@ def _solve(
 def _bracketed_root(
     sharing: Sharing, a: FloatArray, b: FloatArray, low: FloatArray, high: FloatArray
 ) -> FloatArray:
-    """Return where the flow of the legs meets a + b sqrt(u); rows that are found drop out."""
+    """Return where the flow of the legs meets a + b sqrt(u); rows that are found drop out.
+
+    Where a leg is about to open, flow runs as a root of head and Newton steps fail: secants in
+    the bracket settle the few such rows.
+    """
     answer = 0.5 * (low + high)
     place, of, u = np.arange(a.size), sharing, answer.copy()
-    for step in range(_STEPS):
+    for _ in range(_NEWTON_ONLY):
         x, gain = of.flows(u)
         wave = np.sqrt(np.maximum(u, 0.0))
         off = (of.count * x).sum(axis=1) - a - b * wave
@@ -203,8 +208,6 @@ def _bracketed_root(
         low, high = np.where(off > 0, u, low), np.where(off < 0, u, high)
         newton = u - off / np.where(slope < 0, slope, -1.0)
         bisect = (slope >= 0) | (newton < low) | (newton > high)
-        if step > _NEWTON_ONLY and step % 2:
-            bisect = np.ones_like(bisect)
         ahead = np.where(bisect, 0.5 * (low + high), newton)
         near = (off == 0) | (np.abs(ahead - u) <= _ROUNDING * np.maximum(1.0, np.abs(u)))
         u = np.where(off == 0, u, ahead)
@@ -215,7 +218,14 @@ def _bracketed_root(
                 return answer
             place, of, u = place[left], of.take(left), u[left]
             a, b, low, high = a[left], b[left], low[left], high[left]
-    answer[place] = u
+
+    def gap(head: FloatArray) -> FloatArray:
+        x, _ = of.flows(head)
+        return np.asarray((of.count * x).sum(axis=1) - a - b * np.sqrt(np.maximum(head, 0.0)))
+
+    found = falling_root(gap, low, high, width=_LAST_WIDTH).root
+    # a gap that never passes zero is a jump of the largest flow, or lies at an end
+    answer[place] = np.where(np.isfinite(found), found, u)
     return answer
 
 

@@ -12,6 +12,7 @@ from server.hydraulics.mixed_control import hold_head_mixed
 from server.hydraulics.reducing_valve import reduced_head
 from server.hydraulics.states import State
 from server.studies.lowering.lowered import Flags, Floats, LoweredSet
+from server.studies.set_ends import at_common_speed, flow_at_end
 from server.studies.set_states import (
     RawStates,
     SetStates,
@@ -87,7 +88,7 @@ def _held_beside_fixed(
         fixed_speeds=1.0, lowest_speed=low, highest_speed=top,
     )  # fmt: skip
     # the end of the curves at full speed: with unlike speeds it has no homologous point
-    ends = impose_flow(flow, legs=legs, combinations=combinations, speeds=full_speeds(of))
+    end = flow_at_end(of, at_common_speed(of, combinations))
     return RawStates(
         state=held.state,
         flow=_imposed(flow, held.head),
@@ -96,7 +97,7 @@ def _held_beside_fixed(
         speed=held.speed,
         held_shut=held.held_shut,
         cannot_start=held.cannot_start,
-        flow_at_end=ends.last_row_flow,
+        flow_at_end=np.broadcast_to(end, held.state.shape),
         speed_at_end=np.full(held.state.shape, top),
         lack=asked[:, None] - held.head,
         fixed_exceeds=held.fixed_exceeds,

@@ -45,7 +45,7 @@ def cut_out(
     level = float(of.supply.grade(0.0, of.supply.cut_out))
     return CutOut(
         cases=tuple(
-            replace(low.cases[i], units=int(number[j]) if of.floats else None) for i, j in pairs
+            low.cases[i].with_units(int(number[j]) if of.floats else None) for i, j in pairs
         ),
         combination=k,
         state=again.states.state[c, k],

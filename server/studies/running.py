@@ -1,7 +1,7 @@
 """What runs in each case: chosen by the demand, and each stage where a level rules."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -125,7 +125,7 @@ def _filling(
     all_chosen = np.concatenate([chosen, more]).astype(np.intp)
     number = solved.combinations.sum(axis=1)
     named = tuple(
-        replace(cases.cases[c], units=int(number[k]) if k >= 0 else None)
+        cases.cases[c].with_units(int(number[k]) if k >= 0 else None)
         for c, k in zip(all_rows, all_chosen, strict=True)
     )
     return Running(

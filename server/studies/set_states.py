@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from server.hydraulics import affinity
 from server.hydraulics.states import State
-from server.studies.lowering.lowered import Flags, Floats, LoweredSet
+from server.studies.lowering.lowered import Flags, Floats, Indices, LoweredSet
 
 PER_SLOT = (
     "speed", "leg_flow", "best_efficiency_share", "efficiency", "npsh_required", "shaft_power",
@@ -103,6 +103,24 @@ def states_of(
         energy_residual=raw.energy_residual * blank,
         mass_residual=raw.mass_residual * blank,
         slot=slot,
+    )
+
+
+def taken(states: SetStates, rows: Indices) -> SetStates:
+    """Return the states of some rows of cases."""
+    return SetStates(
+        state=states.state[rows],
+        flow=states.flow[rows],
+        station_head=states.station_head[rows],
+        valve_loss=states.valve_loss[rows],
+        head_per_per_cent=states.head_per_per_cent[rows],
+        flow_at_end=states.flow_at_end[rows],
+        speed_at_end=states.speed_at_end[rows],
+        lack=states.lack[rows],
+        fixed_exceeds=states.fixed_exceeds[rows],
+        energy_residual=states.energy_residual[rows],
+        mass_residual=states.mass_residual[rows],
+        slot={name: values[rows] for name, values in states.slot.items()},
     )
 
 

@@ -69,6 +69,12 @@ class Case:
     out: str | None
     units: int | None = None  # running, where the level of a tank and not the demand tells
 
+    def with_units(self, units: int | None) -> "Case":
+        """Return the case with some number of units running; quicker than `replace`."""
+        return Case(
+            self.scenario, self.pump_set, self.horizon, self.supply, self.pipes, self.out, units
+        )
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Finding:

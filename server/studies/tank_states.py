@@ -9,6 +9,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import ArrayLike, NDArray
 
 from server.hydraulics.case_system import TabledSystem
 from server.hydraulics.combinations import solve_combinations, spread
@@ -22,6 +23,7 @@ from server.studies.set_states import (
     SetStates,
     full_speeds,
     states_of,
+    taken,
     without_drive,
 )
 from server.studies.system_heads import Draw, reach_losses, reach_velocities
@@ -42,6 +44,38 @@ class TankWay:
         """Where supply state and tank level are stated, (C,)."""
         shift = np.asarray(self.draw.shift, dtype=np.float64)
         return np.asarray(np.isfinite(shift) & np.isfinite(self.level), dtype=np.bool_)
+
+    def alike(self) -> tuple[Indices, Indices]:
+        """Return the first of each kind of case that is one state, and each case's kind."""
+        assert self.of.tank is not None
+        at_tank = bool(np.all(self.of.tank.before_draw >= 1.0))
+        shape = self.level.shape
+        drawn = np.zeros(shape) if at_tank else self.draw.flow
+        keys = np.stack([
+            np.broadcast_to(np.asarray(column, dtype=np.float64), shape)
+            for column in (self.level, self.draw.shift, self.draw.aged, self.draw.way, drawn)
+        ], axis=1)  # fmt: skip
+        _, first, back = np.unique(
+            np.nan_to_num(keys, nan=-np.inf), axis=0, return_index=True, return_inverse=True
+        )
+        return first.astype(np.intp), back.reshape(-1).astype(np.intp)
+
+    def take(self, rows: Indices) -> "TankWay":
+        """Return some of the cases."""
+        draw, shape = self.draw, self.level.shape
+
+        def part(values: ArrayLike) -> NDArray[np.generic]:
+            return np.broadcast_to(np.asarray(values), shape)[rows]
+
+        return TankWay(
+            of=self.of,
+            draw=Draw(
+                domestic=draw.domestic[rows], fire=draw.fire[rows],
+                fire_point=part(draw.fire_point), aged=part(draw.aged),
+                shift=draw.shift[rows], way=part(draw.way),
+            ),
+            level=self.level[rows],
+        )  # fmt: skip
 
     def grades(self, flow: Floats, case: Indices) -> "WayGrades":
         """Return grades and losses for station flows of cases, any one shape."""
@@ -110,6 +144,16 @@ class WayGrades:
     draw_grade: Floats  # where the demand is drawn: at the tank, or part-way [m]
     tank_flow: Floats  # into the tank, negative when it feeds [m3/s]
 
+    def taken(self, rows: Indices, tank_flow: Floats) -> "WayGrades":
+        """Return the grades of some rows, each with its own flow into the tank."""
+        return WayGrades(
+            supply_grade=self.supply_grade[rows],
+            suction_grade=self.suction_grade[rows],
+            before_draw=self.before_draw[rows],
+            draw_grade=self.draw_grade[rows],
+            tank_flow=tank_flow,
+        )
+
     @property
     def required_head(self) -> Floats:
         """Head asked between the manifolds [m]."""
@@ -135,7 +179,15 @@ def tank_way(of: LoweredSet, draw: Draw, tank_state: Indices) -> TankWay:
 def tank_states(
     of: LoweredSet, combinations: Flags, way: TankWay
 ) -> tuple[SetStates, WayGrades]:
-    """Return the states of K combinations in the C cases of a way, and the grades there."""
+    """Return the states of K combinations in the C cases of a way, and the grades there.
+
+    Cases that differ by a demand drawn at the tank only are one state: it is solved once.
+    """
+    first, back = way.alike()
+    if first.size < way.level.size:
+        states, grades = tank_states(of, combinations, way.take(first))
+        flow = states.flow[back] - way.draw.flow[:, None]
+        return taken(states, back), grades.taken(back, np.nan_to_num(flow))
     legs = [of.units[slot.unit].leg for slot in of.slots]
     system, known = way.system(), way.known
     found = solve_combinations(
