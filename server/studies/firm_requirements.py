@@ -56,6 +56,8 @@ def requirements(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]
 
 def _refills(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]:
     assert of.tank is not None
+    # drawn at the tank itself, a demand does not change what the pumps meet
+    part_way = bool(np.any(of.tank.before_draw < 1.0))
     if np.isnan(of.tank.levels[-1]):
         return ()
     return tuple(
@@ -68,7 +70,7 @@ def _refills(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]:
             fire_point=-1,
             shift=float(shifts(of, horizon.low_shift)[0]),
             least=np.full(len(of.points.facts), -np.inf),
-            drawn=horizon.maximum_day,
+            drawn=horizon.maximum_day if part_way else 0.0,
         )
         for horizon in of.growth
         if horizon.maximum_day is not None

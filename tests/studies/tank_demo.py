@@ -32,9 +32,14 @@ def _document() -> dict[str, Any]:
     return json.loads(DEMO.read_text(encoding="utf-8"))
 
 
+def tank_document() -> dict[str, Any]:
+    """Return the demo as JSON, to be changed freely."""
+    return copy.deepcopy(_document())
+
+
 def tank_station(**fields: Any) -> Station:
     """Return the demo with fields changed."""
-    tree = copy.deepcopy(_document())
+    tree = tank_document()
     for path, value in fields.items():
         put(tree, path, value)
     return Station.model_validate_json(json.dumps(tree))
