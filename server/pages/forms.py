@@ -9,6 +9,7 @@ from server.pages.sheet import Refusal, SheetView
 from server.station import fields, paths
 from server.station.entry import Entry, Quantity, Source
 from server.station.typed_text import text_of
+from server.studies.findings import words
 from server.studies.findings.profiles import RULES
 from server.units import UNITS, Dimension, View, display_decimals, display_unit, shown, to_si
 
@@ -121,6 +122,15 @@ def entry_at(path: str) -> Entry:
     )
 
 
+def with_rule_title(path: str, sentence: str) -> str:
+    """Return a sentence of the station with a criterion called by its title, not its key."""
+    key = path.split("/")[3] if path.startswith("/criteria/rows/") else ""
+    rule = RULES.get(key)
+    if rule is None:
+        return sentence
+    return sentence.replace(f"criterion {key.replace('-', ' ')}", f"“{rule.title}”")
+
+
 def pattern_of(path: str) -> str:
     """Return the pattern of a path: ids become `*`."""
     return fields.node_at(path).pattern
@@ -136,14 +146,14 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
         symbol = display_unit(_dimension(entry), sheet.view).symbol
     refusal = sheet.refused.get(path)
     cell = look == "cell"
-    words = paths.words(sheet.station, path) if cell else node.title
+    told = words.field_words(sheet.station, path) if cell else node.title
     missing = path in sheet.missing and not stored
     default = default_of(path) if not stored and not sheet.read_only else None
     return FieldView(
         path=path,
         html_id=paths.html_id(path),
         label=node.title,
-        words=words + unit_words(entry, symbol),
+        words=told + unit_words(entry, symbol),
         unit_words=unit_words(entry, symbol),
         kind=node.kind,
         text=refusal.text if refusal is not None else stored,
@@ -151,7 +161,9 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
         unit=_printed(sheet, entry, symbol, cell=cell),
         unit_symbol=symbol or "",
         hint=entry.guidance,
-        said=_missing_words(sheet, path, cell=cell)
+        said=""
+        if missing and refusal
+        else _missing_words(sheet, path, cell=cell)
         if missing
         else _said(sheet, path, entry, value, cell=cell),
         state="refused" if refusal else "missing" if missing else "",
@@ -233,7 +245,7 @@ def _missing_words(sheet: SheetView, path: str, *, cell: bool) -> str:
         return "missing"
     if path in sheet.needed:
         return "Missing: the duty waits for it."
-    return "Missing: what needs it is not checked."
+    return "Missing: its checks are not made."
 
 
 def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: bool) -> str:
@@ -272,6 +284,4 @@ def source_words(source: Source | None) -> str:
         return ""
     # a date is not torn apart at the end of a line
     date = (source.date or "").replace("-", "\u2011")
-    return ", ".join(
-        part for part in (SOURCE_WORDS[source.kind], source.text, date) if part
-    )
+    return ", ".join(part for part in (SOURCE_WORDS[source.kind], source.text, date) if part)
