@@ -11,7 +11,16 @@ from server.station.entry import Entry, Quantity, Source
 from server.station.typed_text import text_of
 from server.studies.findings import words
 from server.studies.findings.profiles import RULES
-from server.units import UNITS, Dimension, View, display_decimals, display_unit, shown, to_si
+from server.units import (
+    UNITS,
+    Dimension,
+    Unit,
+    View,
+    display_decimals,
+    display_unit,
+    shown,
+    to_si,
+)
 
 Look = Literal["line", "cell", "choice"]
 # what decides which other fields are asked for, or how other fields of the same sheet read
@@ -43,6 +52,8 @@ EMPTY_WORDS = {
     "/scenarios/*/fire": "no fire",
     "/horizons/*/pipes": "by the year",
 }
+# where the unit of the dimension would be read wrongly
+OWN_UNITS = {"/fires/*/duration": "h"}
 SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
 SOURCE_WORDS = {
     "survey": "survey",
@@ -142,8 +153,8 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
     entry = entry_at(path)
     stored, symbol = text_of(sheet.station, path, sheet.view)
     value = paths.get(sheet.station, path)
-    if node.kind == "quantity" and symbol is None and entry.dimension is not None:
-        symbol = display_unit(_dimension(entry), sheet.view).symbol
+    if node.kind == "quantity" and not stored and entry.dimension is not None:
+        symbol = usual_unit(path, entry, sheet.view).symbol
     refusal = sheet.refused.get(path)
     cell = look == "cell"
     told = words.field_words(sheet.station, path) if cell else node.title
@@ -158,7 +169,7 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
         kind=node.kind,
         text=refusal.text if refusal is not None else stored,
         stored=stored,
-        unit=_printed(sheet, entry, symbol, cell=cell),
+        unit=_printed(sheet, path, entry, symbol, cell=cell),
         unit_symbol=symbol or "",
         hint=entry.guidance,
         said=""
@@ -233,9 +244,17 @@ def _may_be_negative(entry: Entry) -> bool:
     return entry.dimension in SIGNED or (entry.low is not None and entry.low < 0)
 
 
-def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) -> str:
+def usual_unit(path: str, entry: Entry, view: View) -> Unit:
+    """Return the unit of a field while nothing is entered: a fire lasts hours, not seconds."""
+    own = OWN_UNITS.get(fields.node_at(path).pattern)
+    return UNITS[own] if own else display_unit(_dimension(entry), view)
+
+
+def _printed(
+    sheet: SheetView, path: str, entry: Entry, symbol: str | None, *, cell: bool
+) -> str:
     """Return the unit beside the entry; in a table only where it is not the column's."""
-    if not symbol or (cell and symbol == display_unit(_dimension(entry), sheet.view).symbol):
+    if not symbol or (cell and symbol == usual_unit(path, entry, sheet.view).symbol):
         return ""
     return UNITS[symbol].printed
 
@@ -255,7 +274,7 @@ def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: boo
     if not isinstance(value, Quantity):
         return ""
     if cell:
-        own = value.unit == display_unit(_dimension(entry), sheet.view).symbol
+        own = value.unit == usual_unit(path, entry, sheet.view).symbol
         return "" if own and not value.typed else reading(entry, value, sheet.view)
     told = [reading(entry, value, sheet.view), source_words(value.source)]
     return "; ".join(part for part in told if part)
@@ -265,17 +284,20 @@ def reading(entry: Entry, value: Quantity, view: View) -> str:
     """Return "= 20.3 psi" for an entry in kPa; the reader's own unit first, if it differs."""
     dimension = _dimension(entry)
     other: View = "si" if view == "us" else "us"
-    for reader in (view, other):
+    told = []
+    if value.typed:
+        told.append(f"{value.value:g}\u00a0{UNITS[value.unit].printed}")
+    # a time is read as it stands
+    for reader in () if dimension is Dimension.TIME else (view, other):
         unit = display_unit(dimension, reader)
         if unit.symbol != value.unit and (value.value or unit.offset):
             decimals = entry.decimals
             if decimals is None:
                 decimals = display_decimals(dimension, reader)
             number = shown(to_si(value.value, value.unit), dimension, reader, decimals)
-            return f"= {number}\u00a0{unit.printed}"
-    if value.typed:
-        return f"= {value.value:g}\u00a0{UNITS[value.unit].printed}"
-    return ""
+            told.append(f"{number}\u00a0{unit.printed}")
+            break
+    return " ".join(f"= {reading}" for reading in told)
 
 
 def source_words(source: Source | None) -> str:

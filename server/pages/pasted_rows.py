@@ -5,14 +5,14 @@ from collections.abc import Sequence
 from pydantic import JsonValue
 
 from server.entry_text import EntryRefused, read_entry
-from server.pages.forms import entry_at
+from server.pages.forms import entry_at, usual_unit
 from server.station import fields, paths
 from server.station.edits import Edit, apply_edits
 from server.station.faults import BadStation, Fault, quoted
 from server.station.fresh import new_item
 from server.station.station import Station
 from server.station.typed_text import value_from_text
-from server.units import UNITS, View, display_unit
+from server.units import UNITS, View
 
 LONGEST_PASTE = 500
 
@@ -102,7 +102,7 @@ def _column_unit(path: str, view: View) -> str:
     entry = fields.entry_for(path)
     if fields.kind_of(path) != "quantity" or entry.dimension is None:
         return ""
-    return display_unit(entry.dimension, view).symbol
+    return usual_unit(path, entry, view).symbol
 
 
 def _is_head(list_path: str, names: Sequence[str], cells: Sequence[str]) -> bool:

@@ -36,7 +36,7 @@ def place_of(items: object, item_id: str) -> int | None:
 
 
 def _own_title(item: object) -> str:
-    for name in ("title", "kind", "section"):
+    for name in ("title", "kind"):
         text = member(item, name)
         if (
             isinstance(text, str)
