@@ -118,9 +118,9 @@
         return;
       }
       places.forEach(({ at, unit }) => { if (unit) form.querySelectorAll("thead select")[at].value = unit; });
-      // flow and head say a whole curve: rows of the one before do not stay under it
+      // flow and head say a whole curve: nothing of the one before stays under or beside it
       const whole = startRow === 0 && [0, 1].every((at) => places.some((place) => place.at === at));
-      if (whole) from.slice(rows.length).flat().forEach((cell) => { cell.value = ""; });
+      if (whole) from.flat().forEach((cell) => { cell.value = ""; });
     }
     rows.forEach((cells, r) => {
       while (startRow + r >= form.querySelector("tbody").children.length) addRow(form);

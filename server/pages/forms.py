@@ -245,8 +245,16 @@ def _may_be_negative(entry: Entry) -> bool:
 
 
 def usual_unit(path: str, entry: Entry, view: View) -> Unit:
-    """Return the unit of a field while nothing is entered: a fire lasts hours, not seconds."""
-    own = OWN_UNITS.get(fields.node_at(path).pattern)
+    """Return the unit of a field while nothing is entered: a fire lasts hours, not seconds.
+
+    A criterion's limit is typed in the unit that its profile says it in.
+    """
+    pattern = fields.node_at(path).pattern
+    own = OWN_UNITS.get(pattern)
+    rule = RULES.get(path.split("/")[3]) if pattern == "/criteria/rows/*/limit" else None
+    limit = rule and (rule.us if view == "us" else rule.si)
+    if limit:
+        own = limit.unit
     return UNITS[own] if own else display_unit(_dimension(entry), view)
 
 
