@@ -24,6 +24,7 @@ from server.station.titles import lowered
 from server.studies.shapes import Severity
 
 WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "memo")
+INPUT_SHEETS: tuple[Sheet, ...] = ("supply", "main-and-zone", "demand", "pumps", "sets")
 MISSING_SHOWN = 8
 
 
@@ -240,7 +241,9 @@ def next_of(sheet: SheetView) -> Next | None:
                 place if first == title else f"{place}: {first}",
                 sheet.field_href(there[0]),
             )
-            return Next("Nothing is missing here; the work goes on at", (link,), "")
+            entered_here = sheet.sheet in INPUT_SHEETS
+            told = "Nothing is missing here" if entered_here else "The duty is not solved yet"
+            return Next(f"{told}; the work goes on at", (link,), "")
     return None
 
 
