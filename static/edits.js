@@ -67,8 +67,9 @@
 
   // ---- sending
   document.addEventListener("htmx:configRequest", (event) => {
-    const form = event.target.closest("form.edit, form.act");
-    if (!form) return;
+    const form = event.target.closest("form.edit, form.act, form.grid, form.source");
+    // rows that were refused on an older page are still measured against what they were typed over
+    if (!form || form.dataset.base) return;
     const revision = document.getElementById("revision");
     if (revision) event.detail.parameters.set("base", revision.dataset.number);
     const control = controlOf(form);
@@ -182,7 +183,7 @@
 
   // a new item: its first field takes the focus
   document.addEventListener("firmhead:focus", (event) => {
-    const item = document.getElementById(event.detail.id);
+    const item = document.getElementById(event.detail.id) || document.getElementById(`${event.detail.id}--text--field`);
     const control = item && item.querySelector("input:not([type=hidden]), select, textarea");
     if (control) { control.focus(); item.scrollIntoView({ block: "nearest" }); }
   });

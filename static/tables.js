@@ -75,14 +75,60 @@
     const form = gridOf(event.target);
     if (form && event.target.closest("tr") === form.querySelector("tbody").lastElementChild && event.target.value) addRow(form);
   });
+  // ---- headings of pasted rows: a column goes where its heading says, in the unit its heading says
+  const HEADINGS = [["npsh_required", /npsh/], ["efficiency", /eff|η|\beta\b/], ["shaft_power", /power|\bb?hp\b|\bkw\b/],
+    ["flow", /flow|capacity|discharge|\bq\b|gpm|l\/s|m[3³]\/h/], ["head", /head|lift|\btdh\b|\bh\b/]];
+  const SAME_UNIT = { usgpm: "gpm", feet: "ft", foot: "ft", metres: "m", meters: "m", lps: "l/s", cfs: "ft³/s", bhp: "hp", percent: "%" };
+  const plainUnit = (text) => {
+    const unit = text.toLowerCase().replace(/[\s.]/g, "").replace(/(m|ft)3/g, "$1³");
+    return SAME_UNIT[unit] || unit;
+  };
+  const isHeading = (cells) => cells.some((cell) => cell.trim()) && cells.every((cell) => !/^\s*[-+.]?\d/.test(cell));
+  // the place and the unit of each pasted column; a sentence when a heading cannot be read
+  function readHeadings(form, headings) {
+    const names = [...form.querySelectorAll("thead th")].map((head) => head.dataset.column), found = [];
+    for (const heading of headings) {
+      const name = (HEADINGS.find(([, words]) => words.test(heading.toLowerCase())) || [])[0], at = names.indexOf(name);
+      if (at < 0 || found.some((column) => column.at === at)) return `The heading “${heading.trim()}” is not a column of its own here`;
+      const options = [...form.querySelectorAll("thead select")][at].options;
+      const said = /[([]([^)\]]*)[)\]]/.exec(heading), words = said ? [said[1]] : heading.split(/[\s,]+/);
+      const unit = [...options].find((option) => words.some((word) => plainUnit(word) === plainUnit(option.textContent)));
+      if (said && !unit) return `“${said[1]}” in the heading “${heading.trim()}” is not a unit of that column`;
+      found.push({ at, unit: unit && unit.value });
+    }
+    return found;
+  }
   function pasteGrid(control, text) {
     const form = gridOf(control), rows = lines(text);
     const from = rowsOf(form), startRow = from.findIndex((row) => row.includes(control)), startColumn = from[startRow].indexOf(control);
-    const numbers = rows[0].some((cell) => /\d/.test(cell)) ? rows : rows.slice(1);
-    numbers.forEach((cells, r) => {
+    let places = null;
+    if (isHeading(rows[0])) {
+      let headings = rows.shift();
+      // names in one row, units in the next
+      if (rows.length && isHeading(rows[0])) {
+        const units = rows.shift();
+        headings = headings.map((heading, c) => units[c]?.trim() ? `${heading} (${units[c].replace(/[()[\]]/g, "").trim()})` : heading);
+      }
+      while (headings.length && !headings.at(-1).trim()) headings.pop();
+      places = readHeadings(form, headings);
+      if (typeof places === "string") {
+        const said = document.getElementById(`${form.id}--said`);
+        said.className = "refusal";
+        said.textContent = `${places}; nothing was pasted. There are flow, head, efficiency, shaft power and NPSH required; change the heading, or paste the numbers alone.`;
+        return;
+      }
+      places.forEach(({ at, unit }) => { if (unit) form.querySelectorAll("thead select")[at].value = unit; });
+      // flow and head say a whole curve: nothing of the one before stays under or beside it
+      const whole = startRow === 0 && [0, 1].every((at) => places.some((place) => place.at === at));
+      if (whole) from.flat().forEach((cell) => { cell.value = ""; });
+    }
+    rows.forEach((cells, r) => {
       while (startRow + r >= form.querySelector("tbody").children.length) addRow(form);
       const row = rowsOf(form)[startRow + r];
-      cells.forEach((value, c) => { if (row[startColumn + c]) row[startColumn + c].value = value.trim(); });
+      cells.forEach((value, c) => {
+        const cell = row[places ? places[c]?.at : startColumn + c];
+        if (cell) cell.value = value.trim();
+      });
     });
     if (rowsOf(form).at(-1).some((cell) => cell.value)) addRow(form);
     htmx.trigger(form, "submit");
@@ -93,6 +139,8 @@
     form.dataset.sent = gridText(form);
     event.detail.parameters.delete("cell");
     event.detail.parameters.set("grid", form.dataset.sent);
+    if (form.dataset.base) event.detail.parameters.set("base", form.dataset.base);
+    form.dataset.sentBase = event.detail.parameters.get("base");
   });
   document.addEventListener("firmhead:cells", (event) => {
     const form = document.getElementById(event.detail.id);
@@ -104,9 +152,10 @@
     }));
     const key = `firmhead:${form.closest("[data-station]").dataset.station}:${form.querySelector("[name=path]").value}`;
     try {
-      if (event.detail.refused) sessionStorage.setItem(key, JSON.stringify({ grid: gridText(form), sentence: event.detail.refused }));
+      if (event.detail.refused) sessionStorage.setItem(key, JSON.stringify({ grid: gridText(form), sentence: event.detail.refused, base: form.dataset.sentBase }));
       else sessionStorage.removeItem(key);
     } catch { /* the page still holds it */ }
+    if (!event.detail.refused) delete form.dataset.base;
   });
   function putBack() {
     for (const form of document.querySelectorAll("form.grid")) {
@@ -118,6 +167,7 @@
         while (r >= form.querySelector("tbody").children.length) addRow(form);
         cells.forEach((value, c) => { const cell = rowsOf(form)[r][c]; if (cell) cell.value = value; });
       });
+      if (was.base) form.dataset.base = was.base;
       const said = document.getElementById(`${form.id}--said`);
       if (said) { said.className = "refusal"; said.textContent = was.sentence; }
     }

@@ -55,8 +55,12 @@ def residuals(
 
     Parameters
     ----------
-    flow, leg_state, manifold_head, legs, speed
-        As for `energy_residual`.
+    flow, leg_state, speed : ndarray, shape (C, N)
+        Flow [m3/s], state and speed ratio of each leg; legs that are SOLVED count.
+    manifold_head : ndarray, shape (C,)
+        Head that the system asks for at the flow of the set. [m]
+    legs : sequence of LegCurve, length N
+        The legs.
 
     Returns
     -------

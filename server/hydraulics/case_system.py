@@ -96,7 +96,7 @@ def loss_by_case(
     lines : sequence of Conduit
         The variants of the line.
     line_of : array_like of int, shape (C,)
-        Variant of each case.
+        Variant of each case, counted from 0. [-]
     kinematic_viscosity : array_like, shape () or (C,)
         Viscosity of each case. [m2/s]
 

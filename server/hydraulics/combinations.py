@@ -75,7 +75,15 @@ def solve_combinations(
 
 
 def spread(values: ArrayLike, shape: tuple[int, int, int]) -> FloatArray:
-    """Return values for each case, combination and slot from (), (N,), (K, N) or (C, K, N)."""
+    """Return values for each case, combination and slot.
+
+    Parameters
+    ----------
+    values : array_like, shape () or (N,) or (K, N) or (C, K, N)
+        Any quantity, in any unit. [-]
+    shape : tuple of int
+        C, K and N.
+    """
     return np.array(np.broadcast_to(np.asarray(values, dtype=np.float64), shape))
 
 

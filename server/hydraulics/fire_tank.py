@@ -70,8 +70,10 @@ def fire_tank(
         nan where the station cannot pass it. [m]
     closed_held : array_like of bool, shape (C, K)
         Whether that head is a set point held, below the highest speed.
-    legs, combinations
-        Slots and the K combinations of them that run.
+    legs : sequence of LegCurve
+        One for each of the N slots.
+    combinations : array_like of bool, shape (K, N)
+        Combinations of the slots that run.
     speeds : array_like, shape () or (N,) or (K, N) or (C, K, N)
         Speeds with the tank open: the highest, since the set point is then not held. [-]
 

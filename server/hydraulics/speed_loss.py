@@ -80,7 +80,17 @@ def speed_factor(curve: PumpCurve, *, speed: ArrayLike) -> FloatArray:
 
 
 def efficiency(curve: PumpCurve, flow: ArrayLike, *, speed: ArrayLike) -> FloatArray:
-    """Return the efficiency at a speed with the loss of the formula, nan if unknown [-]."""
+    """Return the efficiency at a speed with the loss of the formula, nan if unknown [-].
+
+    Parameters
+    ----------
+    curve : PumpCurve
+        Curve at tested speed.
+    flow : array_like, shape (...)
+        Flow at the running speed, zero or more. [m3/s]
+    speed : array_like, shape (...)
+        Running over tested speed, above zero. [-]
+    """
     plain = affinity.efficiency(curve, flow, speed=speed)
     return np.asarray(plain * speed_factor(curve, speed=speed), dtype=np.float64)
 
@@ -88,6 +98,18 @@ def efficiency(curve: PumpCurve, flow: ArrayLike, *, speed: ArrayLike) -> FloatA
 def shaft_power(
     curve: PumpCurve, flow: ArrayLike, *, speed: ArrayLike, density: ArrayLike
 ) -> FloatArray:
-    """Return the shaft power at a speed with the loss of the formula, nan if unknown [W]."""
+    """Return the shaft power at a speed with the loss of the formula, nan if unknown [W].
+
+    Parameters
+    ----------
+    curve : PumpCurve
+        Curve at tested speed.
+    flow : array_like, shape (...)
+        Flow at the running speed, zero or more. [m3/s]
+    speed : array_like, shape (...)
+        Running over tested speed, above zero. [-]
+    density : array_like, shape (...)
+        Density of the water. [kg/m3]
+    """
     plain = affinity.shaft_power(curve, flow, speed=speed, density=density)
     return np.asarray(plain / speed_factor(curve, speed=speed), dtype=np.float64)

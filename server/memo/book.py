@@ -1,9 +1,9 @@
 """The memo of a station: its head and its sections in order."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 
 from server import __version__
-from server.memo.blocks import Block, MemoBook, TitleBlock
+from server.memo.blocks import Block, Heading, MemoBook, Paragraph, TitleBlock
 from server.memo.sections import (
     basis,
     cautions,
@@ -28,23 +28,23 @@ from server.studies.assess import Assessment
 from server.units import View
 
 Section = Callable[[MemoSource], tuple[Block, ...]]
-SECTIONS: tuple[Section, ...] = (
-    verdict.blocks,
-    basis.blocks,
-    inputs.blocks,
-    demand.blocks,
-    supply.blocks,
-    duty.blocks,
-    firm_capacity.blocks,
-    pressures.blocks,
-    npsh.blocks,
-    motors.blocks,
-    made_cases.blocks,
-    findings.blocks,
-    criteria.blocks,
-    not_checked.blocks,
-    cautions.blocks,
-    record.blocks,
+SECTIONS: tuple[tuple[str, Section], ...] = (
+    ("verdict", verdict.blocks),
+    ("basis", basis.blocks),
+    ("inputs", inputs.blocks),
+    ("demand", demand.blocks),
+    ("supply", supply.blocks),
+    ("duty", duty.blocks),
+    ("firm_capacity", firm_capacity.blocks),
+    ("pressures", pressures.blocks),
+    ("npsh", npsh.blocks),
+    ("motors", motors.blocks),
+    ("made_cases", made_cases.blocks),
+    ("findings", findings.blocks),
+    ("criteria", criteria.blocks),
+    ("not_checked", not_checked.blocks),
+    ("cautions", cautions.blocks),
+    ("record", record.blocks),
 )
 HASH_SHOWN = 12
 
@@ -76,4 +76,18 @@ def memo_book(station: Station, assessment: Assessment, view: View) -> MemoBook:
         program=f"Firmhead {__version__}",
         document=assessment.document_hash[:HASH_SHOWN] or "not stored",
     )
-    return MemoBook(head, tuple(block for section in SECTIONS for block in section(source)))
+    made: list[Block] = []
+    for name, section in SECTIONS:
+        made.extend(section(source))
+        made.extend(_notes(station, name))
+    return MemoBook(head, tuple(made))
+
+
+def _notes(station: Station, section: str) -> Iterator[Block]:
+    """Yield the engineer's notes of a section; one that names no section is in the record."""
+    names = {name for name, _ in SECTIONS}
+    for note in station.memo.notes:
+        own = note.section if note.section in names else "record"
+        if own == section and note.text.strip():
+            yield Heading("Note", 3)
+            yield from (Paragraph((line,)) for line in note.text.split("\n") if line.strip())

@@ -35,6 +35,7 @@ class CriterionRow:
     profile: str
     departs: bool
     limit: FieldView | None
+    unit: str
     source: FieldView | None
     reason: FieldView | None
 
@@ -79,13 +80,17 @@ def _row(sheet: SheetView, criterion: Criterion) -> CriterionRow:
     judged = criterion.sense != "stated"
     own = typed.get(criterion.key) is not None
     path = criterion.path
+    limit = field_view(sheet, f"{path}/limit", "cell") if judged else None
+    # a column of limits has no unit of its own; a field in another unit prints that one itself
+    unit = UNITS[limit.unit_symbol].printed if limit and limit.unit_symbol else ""
     return CriterionRow(
         html_id=f"criterion-{criterion.key}",
         title=criterion.title,
         basis=criterion.rule.source_words,
         profile=_words(criterion),
         departs=criterion.departs,
-        limit=field_view(sheet, f"{path}/limit", "cell") if judged else None,
+        limit=limit,
+        unit="" if limit and limit.unit else unit,
         source=field_view(sheet, f"{path}/source", "cell") if own else None,
         reason=field_view(sheet, f"{path}/reason", "cell") if own else None,
     )

@@ -54,6 +54,7 @@ class CurveGrid:
     rows: tuple[tuple[GridCell, ...], ...]
     said: str
     refused: bool
+    theirs: str
     missing: bool
     action: str
     base: int
@@ -92,6 +93,7 @@ def curve_grid(sheet: SheetView, path: str, caption: str) -> CurveGrid:
         rows=rows,
         said=refusal.sentence if refusal else "",
         refused=refusal is not None,
+        theirs=(refusal.theirs or "") if refusal else "",
         missing=path in sheet.missing and not table.rows,
         action=sheet.action("edits"),
         base=sheet.loaded.number,

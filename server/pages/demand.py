@@ -10,6 +10,7 @@ from server.pages.frame import SheetPage, register, show
 from server.pages.items import ItemTable, item_table
 from server.pages.rights import needs
 from server.pages.sheet import SheetView, open_sheet
+from server.station.station import Station
 
 router = APIRouter()
 
@@ -77,7 +78,7 @@ def build(sheet: SheetView) -> DemandPage:
         scenarios=item_table(
             sheet,
             "/scenarios",
-            SCENARIO,
+            _scenario_columns(sheet.station),
             "Scenarios",
             note="Each is solved at the low, normal and high supply; the row shows its own.",
             empty="No scenario yet. The usual ones can be made from horizons and fires.",
@@ -85,6 +86,23 @@ def build(sheet: SheetView) -> DemandPage:
         can_add_usual=not sheet.read_only and bool(sheet.station.horizons),
         action=sheet.action("edits"),
         base=sheet.loaded.number,
+    )
+
+
+def _scenario_columns(station: Station) -> tuple[str, ...]:
+    """Return the columns of the scenarios without those that this station has no use for.
+
+    A tank's level where the zone has none, and a barrel out where every reach has one, stay
+    away unless a scenario names them.
+    """
+    idle = {
+        "tank_state": station.zone.kind == "closed",
+        "barrel_out": all(reach.barrels == 1 for reach in station.discharge_main.reaches),
+    }
+    return tuple(
+        name
+        for name in SCENARIO
+        if not idle.get(name) or any(getattr(s, name) for s in station.scenarios)
     )
 
 

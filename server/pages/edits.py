@@ -13,8 +13,9 @@ from fastapi import APIRouter, Depends, Header, HTTPException, Request
 from fastapi.responses import HTMLResponse, RedirectResponse, Response
 
 from server.pages.came_from import came_from
-from server.pages.forms import GOVERNING, field_view, pattern_of
+from server.pages.forms import GOVERNING, field_view, pattern_of, with_rule_title
 from server.pages.frame import SheetPage, frame_of, page_of, show
+from server.pages.history import shown_value
 from server.pages.posted import Asked, Posted, asked, posted_form
 from server.pages.rendering import render
 from server.pages.rights import actor_of, needs
@@ -61,7 +62,9 @@ def save_edit(
             return _refused(sheet, posted, stale, 409, hx_request)
         loaded = store.save(station_id, wanted.edits, base.number, actor_of(request).name)
     except BadStation as bad:
-        sentence = " ".join(dict.fromkeys(fault.sentence for fault in bad.faults))
+        sentence = ("\n" if posted.op == "paste" else " ").join(
+            dict.fromkeys(with_rule_title(posted.path, fault.sentence) for fault in bad.faults)
+        )
         cells = frozenset(fault.cell for fault in bad.faults if fault.cell is not None)
         return _refused(
             sheet, posted, Refusal(_typed(posted), sentence, cells=cells), 422, hx_request
@@ -160,8 +163,15 @@ def _conflict(posted: Posted, conflict: Conflict, newest: Loaded) -> Refusal:
     """Return the refusal of an edit that meets another; both values if of one field."""
     own = _conflict_of(newest, conflict)
     if posted.look == "grid":
-        more = "Load the page again to see theirs; your rows are kept in this window."
-        return Refusal(_typed(posted), f"{own.sentence} {more}")
+        stands = paths.has(newest.station, posted.path)
+        theirs = (
+            shown_value(
+                newest.station, posted.path, paths.get_json(newest.station, posted.path)
+            )
+            if stands
+            else None
+        )
+        return Refusal(_typed(posted), own.sentence, theirs)
     theirs = own.theirs if conflict.path == posted.path and posted.op == "set" else None
     return Refusal(_typed(posted), own.sentence, theirs)
 
@@ -227,9 +237,14 @@ def _stored(
     answer.saved = posted.path
     answer.frame = posted.look != "source"
     answer.focus = wanted.focus
-    if posted.op == "sort" or any(
-        change.op != "set" or change.path not in own or pattern_of(change.path) in GOVERNING
-        for change in changed
+    theirs_taken = posted.look == "grid" and posted.keep == "theirs"
+    if (
+        theirs_taken
+        or posted.op == "sort"
+        or any(
+            change.op != "set" or change.path not in own or pattern_of(change.path) in GOVERNING
+            for change in changed
+        )
     ):
         answer.content = True
     elif posted.look == "grid":
@@ -248,6 +263,7 @@ class Said:
     place: str
     sentence: str
     refused: bool
+    theirs: str = ""
 
 
 class _Answer:
@@ -317,5 +333,8 @@ class _Answer:
                 f"{name}--rows-said", refusal.sentence if refusal else "", refusal is not None
             )
         return Said(
-            f"{name}--said", refusal.sentence if refusal else "Saved.", refusal is not None
+            f"{name}--said",
+            refusal.sentence if refusal else "Saved.",
+            refusal is not None,
+            (refusal.theirs or "") if refusal and posted.look == "grid" else "",
         )

@@ -9,8 +9,18 @@ from server.pages.sheet import Refusal, SheetView
 from server.station import fields, paths
 from server.station.entry import Entry, Quantity, Source
 from server.station.typed_text import text_of
+from server.studies.findings import words
 from server.studies.findings.profiles import RULES
-from server.units import UNITS, Dimension, View, display_decimals, display_unit, shown, to_si
+from server.units import (
+    UNITS,
+    Dimension,
+    Unit,
+    View,
+    display_decimals,
+    display_unit,
+    shown,
+    to_si,
+)
 
 Look = Literal["line", "cell", "choice"]
 # what decides which other fields are asked for, or how other fields of the same sheet read
@@ -42,6 +52,8 @@ EMPTY_WORDS = {
     "/scenarios/*/fire": "no fire",
     "/horizons/*/pipes": "by the year",
 }
+# where the unit of the dimension would be read wrongly
+OWN_UNITS = {"/fires/*/duration": "h"}
 SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
 SOURCE_WORDS = {
     "survey": "survey",
@@ -121,6 +133,15 @@ def entry_at(path: str) -> Entry:
     )
 
 
+def with_rule_title(path: str, sentence: str) -> str:
+    """Return a sentence of the station with a criterion called by its title, not its key."""
+    key = path.split("/")[3] if path.startswith("/criteria/rows/") else ""
+    rule = RULES.get(key)
+    if rule is None:
+        return sentence
+    return sentence.replace(f"criterion {key.replace('-', ' ')}", f"“{rule.title}”")
+
+
 def pattern_of(path: str) -> str:
     """Return the pattern of a path: ids become `*`."""
     return fields.node_at(path).pattern
@@ -132,26 +153,28 @@ def field_view(sheet: SheetView, path: str, look: Look = "line") -> FieldView:
     entry = entry_at(path)
     stored, symbol = text_of(sheet.station, path, sheet.view)
     value = paths.get(sheet.station, path)
-    if node.kind == "quantity" and symbol is None and entry.dimension is not None:
-        symbol = display_unit(_dimension(entry), sheet.view).symbol
+    if node.kind == "quantity" and not stored and entry.dimension is not None:
+        symbol = usual_unit(path, entry, sheet.view).symbol
     refusal = sheet.refused.get(path)
     cell = look == "cell"
-    words = paths.words(sheet.station, path) if cell else node.title
+    told = words.field_words(sheet.station, path) if cell else node.title
     missing = path in sheet.missing and not stored
     default = default_of(path) if not stored and not sheet.read_only else None
     return FieldView(
         path=path,
         html_id=paths.html_id(path),
         label=node.title,
-        words=words + unit_words(entry, symbol),
+        words=told + unit_words(entry, symbol),
         unit_words=unit_words(entry, symbol),
         kind=node.kind,
         text=refusal.text if refusal is not None else stored,
         stored=stored,
-        unit=_printed(sheet, entry, symbol, cell=cell),
+        unit=_printed(sheet, path, entry, symbol, cell=cell),
         unit_symbol=symbol or "",
         hint=entry.guidance,
-        said=_missing_words(sheet, path, cell=cell)
+        said=""
+        if missing and refusal
+        else _missing_words(sheet, path, cell=cell)
         if missing
         else _said(sheet, path, entry, value, cell=cell),
         state="refused" if refusal else "missing" if missing else "",
@@ -221,9 +244,25 @@ def _may_be_negative(entry: Entry) -> bool:
     return entry.dimension in SIGNED or (entry.low is not None and entry.low < 0)
 
 
-def _printed(sheet: SheetView, entry: Entry, symbol: str | None, *, cell: bool) -> str:
+def usual_unit(path: str, entry: Entry, view: View) -> Unit:
+    """Return the unit of a field while nothing is entered: a fire lasts hours, not seconds.
+
+    A criterion's limit is typed in the unit that its profile says it in.
+    """
+    pattern = fields.node_at(path).pattern
+    own = OWN_UNITS.get(pattern)
+    rule = RULES.get(path.split("/")[3]) if pattern == "/criteria/rows/*/limit" else None
+    limit = rule and (rule.us if view == "us" else rule.si)
+    if limit:
+        own = limit.unit
+    return UNITS[own] if own else display_unit(_dimension(entry), view)
+
+
+def _printed(
+    sheet: SheetView, path: str, entry: Entry, symbol: str | None, *, cell: bool
+) -> str:
     """Return the unit beside the entry; in a table only where it is not the column's."""
-    if not symbol or (cell and symbol == display_unit(_dimension(entry), sheet.view).symbol):
+    if not symbol or (cell and symbol == usual_unit(path, entry, sheet.view).symbol):
         return ""
     return UNITS[symbol].printed
 
@@ -233,7 +272,7 @@ def _missing_words(sheet: SheetView, path: str, *, cell: bool) -> str:
         return "missing"
     if path in sheet.needed:
         return "Missing: the duty waits for it."
-    return "Missing: what needs it is not checked."
+    return "Missing: its checks are not made."
 
 
 def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: bool) -> str:
@@ -243,7 +282,7 @@ def _said(sheet: SheetView, path: str, entry: Entry, value: object, *, cell: boo
     if not isinstance(value, Quantity):
         return ""
     if cell:
-        own = value.unit == display_unit(_dimension(entry), sheet.view).symbol
+        own = value.unit == usual_unit(path, entry, sheet.view).symbol
         return "" if own and not value.typed else reading(entry, value, sheet.view)
     told = [reading(entry, value, sheet.view), source_words(value.source)]
     return "; ".join(part for part in told if part)
@@ -253,17 +292,20 @@ def reading(entry: Entry, value: Quantity, view: View) -> str:
     """Return "= 20.3 psi" for an entry in kPa; the reader's own unit first, if it differs."""
     dimension = _dimension(entry)
     other: View = "si" if view == "us" else "us"
-    for reader in (view, other):
+    told = []
+    if value.typed:
+        told.append(f"{value.value:g}\u00a0{UNITS[value.unit].printed}")
+    # a time is read as it stands
+    for reader in () if dimension is Dimension.TIME else (view, other):
         unit = display_unit(dimension, reader)
         if unit.symbol != value.unit and (value.value or unit.offset):
             decimals = entry.decimals
             if decimals is None:
                 decimals = display_decimals(dimension, reader)
             number = shown(to_si(value.value, value.unit), dimension, reader, decimals)
-            return f"= {number}\u00a0{unit.printed}"
-    if value.typed:
-        return f"= {value.value:g}\u00a0{UNITS[value.unit].printed}"
-    return ""
+            told.append(f"{number}\u00a0{unit.printed}")
+            break
+    return " ".join(f"= {reading}" for reading in told)
 
 
 def source_words(source: Source | None) -> str:
@@ -272,6 +314,4 @@ def source_words(source: Source | None) -> str:
         return ""
     # a date is not torn apart at the end of a line
     date = (source.date or "").replace("-", "\u2011")
-    return ", ".join(
-        part for part in (SOURCE_WORDS[source.kind], source.text, date) if part
-    )
+    return ", ".join(part for part in (SOURCE_WORDS[source.kind], source.text, date) if part)

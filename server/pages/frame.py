@@ -7,6 +7,7 @@ from functools import cache
 
 from fastapi.responses import HTMLResponse
 
+from server.pages.items import items_of
 from server.pages.rendering import render
 from server.pages.sheet import OPEN, SHEET_NUMBERS, SHEETS, SheetView
 from server.pages.strip_view import (
@@ -23,6 +24,7 @@ from server.station.titles import lowered
 from server.studies.shapes import Severity
 
 WITHOUT_STRIP: tuple[Sheet, ...] = ("history", "memo")
+INPUT_SHEETS: tuple[Sheet, ...] = ("supply", "main-and-zone", "demand", "pumps", "sets")
 MISSING_SHOWN = 8
 
 
@@ -191,7 +193,23 @@ def needed_on(sheet: SheetView, name: Sheet) -> tuple[str, ...]:
         for path in sheet.needed
         if (node := fields.find(path)) is not None and node.sheet == name
     ]
-    return tuple(sorted(found, key=lambda path: (_order()[fields.node_at(path).pattern], path)))
+    return tuple(
+        sorted(
+            found,
+            key=lambda path: (_order()[fields.node_at(path).pattern], _places(sheet, path)),
+        )
+    )
+
+
+def _places(sheet: SheetView, path: str) -> tuple[int, ...]:
+    """Return where the items on the way to a path stand in their lists, outermost first."""
+    parts = path.split("/")
+    found = []
+    for end in range(2, len(parts)):
+        ids = [item.rpartition("/")[2] for item in items_of(sheet, "/".join(parts[:end]))]
+        if parts[end] in ids:
+            found.append(ids.index(parts[end]))
+    return tuple(found)
 
 
 @cache
@@ -218,8 +236,14 @@ def next_of(sheet: SheetView) -> Next | None:
         there = needed_on(sheet, name)
         if there:
             first = needed_words(sheet, there[0])
-            link = (f"{SHEET_NUMBERS[name]} {title}: {first}", sheet.field_href(there[0]))
-            return Next("Nothing is missing here; the work goes on at", (link,), "")
+            place = f"{SHEET_NUMBERS[name]} {title}"
+            link = (
+                place if first == title else f"{place}: {first}",
+                sheet.field_href(there[0]),
+            )
+            entered_here = sheet.sheet in INPUT_SHEETS
+            told = "Nothing is missing here" if entered_here else "The duty is not solved yet"
+            return Next(f"{told}; the work goes on at", (link,), "")
     return None
 
 

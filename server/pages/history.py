@@ -19,6 +19,7 @@ from server.station.changes import Change
 from server.station.faults import BadStation
 from server.station.station import Station
 from server.store.revisions import RevisionRow
+from server.studies.findings import words
 from server.units import UNITS
 
 router = APIRouter()
@@ -57,7 +58,9 @@ class RevisionLine:
     made: str
     kind: str
     changes: tuple[ChangeLine, ...]
+    more: int
     href: str
+    compare: str
     newest: bool
 
 
@@ -154,26 +157,28 @@ def _line(sheet: SheetView, row: RevisionRow) -> RevisionLine:
         when(row.made_at),
         kind,
         tuple(_change(sheet, sheet.station, change) for change in row.changes[:CHANGES_SHOWN]),
+        max(0, len(row.changes) - CHANGES_SHOWN),
         sheet.href("summary", at=f"r{row.number}"),
+        sheet.action("compare", left=str(row.number - 1), right=str(row.number)),
         row.number == sheet.loaded.newest,
     )
 
 
 def _change(sheet: SheetView, station: Station, change: Change) -> ChangeLine:
-    words = paths.words(station, change.path)
+    told = words.field_words(station, change.path)
     match change.op:
         case "insert":
             title = _title(change.value)
             return ChangeLine(
-                f"{words if not title else _place(change.path, title)}: added", "", "", ""
+                f"{told if not title else _place(change.path, title)}: added", "", "", ""
             )
         case "remove":
             return ChangeLine(f"{_place(change.path, _title(change.was))}: removed", "", "", "")
         case "move":
-            return ChangeLine(f"{words}: moved", "", "", "")
+            return ChangeLine(f"{told}: moved", "", "", "")
     href = sheet.field_href(change.path) if paths.has(sheet.station, change.path) else ""
     return ChangeLine(
-        words,
+        told,
         shown_value(station, change.path, change.was),
         shown_value(station, change.path, change.value),
         href,

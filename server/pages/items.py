@@ -3,11 +3,10 @@
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from server.pages.forms import FieldView, field_view
+from server.pages.forms import FieldView, field_view, usual_unit
 from server.pages.sheet import Refusal, SheetView
 from server.station import fields, paths
 from server.station.titles import lowered
-from server.units import display_unit
 
 
 @dataclass(frozen=True, slots=True)
@@ -154,7 +153,7 @@ def _column(sheet: SheetView, pattern: str, name: str) -> Column:
     title = f"{node.group_title}, {lowered(node.title)}" if node.with_group else node.title
     unit = ""
     if kind == "quantity" and entry.dimension is not None:
-        unit = display_unit(entry.dimension, sheet.view).printed
+        unit = usual_unit(pattern, entry, sheet.view).printed
     return Column(name, title, unit, kind in ("quantity", "number", "integer"))
 
 

@@ -29,6 +29,7 @@ class NoteView:
     """A note of the engineer's."""
 
     steps: Steps
+    section: FieldView
     text: FieldView
 
 
@@ -68,7 +69,11 @@ def build(sheet: SheetView) -> MemoPage:
         fields=field_views(sheet, "/memo", FIELDS),
         paper=field_view(sheet, "/display/paper", "choice"),
         notes=tuple(
-            NoteView(steps_of(sheet, path), field_view(sheet, f"{path}/text"))
+            NoteView(
+                steps_of(sheet, path),
+                field_view(sheet, f"{path}/section"),
+                field_view(sheet, f"{path}/text"),
+            )
             for path in items_of(sheet, NOTES)
         ),
         adding=adding(sheet, NOTES),

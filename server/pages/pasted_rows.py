@@ -4,14 +4,15 @@ from collections.abc import Sequence
 
 from pydantic import JsonValue
 
-from server.pages.forms import entry_at
+from server.entry_text import EntryRefused, read_entry
+from server.pages.forms import entry_at, usual_unit
 from server.station import fields, paths
 from server.station.edits import Edit, apply_edits
 from server.station.faults import BadStation, Fault, quoted
 from server.station.fresh import new_item
 from server.station.station import Station
 from server.station.typed_text import value_from_text
-from server.units import UNITS, View, display_unit
+from server.units import UNITS, View
 
 LONGEST_PASTE = 500
 
@@ -48,8 +49,12 @@ def pasted_rows(
             f"{LONGEST_PASTE} rows",
             f"More than {LONGEST_PASTE} rows cannot be pasted at once.",
         )
-    if _is_head(list_path, names, lines[0]):
+    units: dict[str, str] = {}
+    first_row = 1
+    if len(lines) > 1 and _is_head(list_path, names, lines[0]):
+        names, units = _head_read(list_path, names, lines[0])
         lines = lines[1:]
+        first_row = 2
     items = [f"{list_path}/{i}" for i in ids_of(station, list_path)]
     at = items.index(first) if first in items else len(items)
     edits: list[Edit] = []
@@ -66,18 +71,23 @@ def pasted_rows(
                 edit = Edit(
                     "set",
                     path,
-                    typed_value(station, path, cell, view=view, unit=_column_unit(path, view)),
+                    typed_value(
+                        station,
+                        path,
+                        cell,
+                        view=view,
+                        unit=units.get(name) or _column_unit(path, view),
+                    ),
                 )
                 station = apply_edits(station, [edit])
                 edits.append(edit)
             except BadStation as bad:
-                title = fields.label(path)
                 faults.extend(
                     _fault(
                         path,
                         cell,
                         fault.allowed,
-                        f"Row {number + 1}, {title}: {fault.sentence}",
+                        f"Row {number + first_row}: {fault.sentence}",
                         (number, column),
                     )
                     for fault in bad.faults
@@ -92,16 +102,77 @@ def _column_unit(path: str, view: View) -> str:
     entry = fields.entry_for(path)
     if fields.kind_of(path) != "quantity" or entry.dimension is None:
         return ""
-    return display_unit(entry.dimension, view).symbol
+    return usual_unit(path, entry, view).symbol
 
 
 def _is_head(list_path: str, names: Sequence[str], cells: Sequence[str]) -> bool:
-    """Whether a pasted line is the table's head: each cell begins with its column's title."""
-    titles = [fields.label(f"{list_path}/*/{name}").lower() for name in names]
-    return all(
+    """Whether a pasted line is a head: the columns' own titles, or words for numbers."""
+    titles = [_title(f"{list_path}/*/{name}").lower() for name in names]
+    if all(
         cell.strip().lower().startswith(title)
         for title, cell in zip(titles, cells, strict=False)
-    )
+    ):
+        return True
+    numeric = [
+        cell.strip()
+        for name, cell in zip(names, cells, strict=False)
+        if fields.kind_of(f"{list_path}/*/{name}") in ("quantity", "number", "integer")
+    ]
+    starts = {cell.strip()[:1] for cell in cells}
+    return any(numeric) and not any(s.isdigit() or s in ("-", "+", ".") for s in starts if s)
+
+
+def _head_read(
+    list_path: str, names: Sequence[str], cells: Sequence[str]
+) -> tuple[list[str], dict[str, str]]:
+    """Return the columns that a head names, and the units that it gives them.
+
+    Raises
+    ------
+    BadStation
+        For a head or a unit that cannot be read: neither is ever guessed.
+    """
+    titles = {_title(f"{list_path}/*/{name}").lower(): name for name in names}
+    found: list[str] = []
+    units: dict[str, str] = {}
+    for number, cell in enumerate(cells):
+        said, _, unit = cell.strip().lower().partition("(")
+        if not any(c.strip() for c in cells[number:]):
+            break
+        words = said.split()
+        like = (
+            [said.strip()]
+            if said.strip() in titles
+            else [title for title in titles if words and set(words) <= set(title.split())]
+        )
+        if len(like) != 1 or titles[like[0]] in found:
+            known = ", ".join(titles)
+            raise _refused(
+                list_path,
+                cell,
+                known,
+                f"Row 1 has the heading {quoted(cell.strip())}, which names no one column. "
+                f"There are: {known}. Change it, or paste the rows without headings.",
+            )
+        name = titles[like[0]]
+        found.append(name)
+        dimension = fields.entry_for(f"{list_path}/*/{name}").dimension
+        if unit.strip(" )") and dimension is not None:
+            try:
+                units[name] = read_entry(f"1 {unit.strip(' )')}", dimension, "").unit
+            except EntryRefused as refused:
+                raise _refused(
+                    list_path,
+                    cell,
+                    refused.allowed,
+                    f"Row 1, heading {quoted(cell.strip())}: {refused.sentence}",
+                ) from None
+    return found, units
+
+
+def _title(pattern: str) -> str:
+    node = fields.node_at(pattern)
+    return f"{node.group_title}, {node.title}" if node.with_group else node.title
 
 
 def ids_of(station: Station, list_path: str) -> list[str]:

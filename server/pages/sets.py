@@ -94,8 +94,10 @@ def build(sheet: SheetView) -> SetsPage:
             "/legs",
             LEG,
             "Legs: the pipe round a pump",
-            note="One leg serves many slots; its check valve is in the discharge branch.",
-            empty="No leg yet. A slot without one loses nothing round its pump.",
+            note="The pipe round one pump, to and from the manifolds; the check valve is in "
+            "the discharge branch. One leg serves many slots.",
+            empty="No leg yet. A leg is the pipe round one pump: its suction branch, and its "
+            "discharge branch with the check valve.",
         ),
         proposed=field_view(sheet, "/proposed_set"),
         sets=sets,
@@ -120,7 +122,8 @@ def _set(sheet: SheetView, path: str) -> SetCard:
             f"{path}/slots",
             SLOT,
             f"Slots of {title}",
-            note="Standby counts as installed; a jockey runs alone at small flow.",
+            note="One pump in its place. Standby counts as installed; a jockey runs alone "
+            "at small flow.",
         ),
         control=field_view(sheet, f"{control}/kind"),
         settings=field_views(sheet, control, held + SPEEDS),

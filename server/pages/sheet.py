@@ -15,6 +15,7 @@ from server.station.station import Station
 from server.store.store import Loaded
 from server.studies.assess import Assessment, assess
 from server.studies.duty_result import DutyResult
+from server.studies.findings import words
 from server.studies.shapes import Finding, Severity
 from server.units import View
 
@@ -122,7 +123,7 @@ class SheetView:
 
     def field_words(self, path: str) -> str:
         """Return a field in words, without the name of the sheet when it is this one."""
-        told = paths.words(self.station, path)
+        told = words.field_words(self.station, path)
         short = told.removeprefix(f"{fields.SHEET_TITLES[self.sheet]}, ")
         return short[:1].upper() + short[1:]
 

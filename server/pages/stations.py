@@ -53,6 +53,7 @@ class StationsPage:
     refused_file: str
     faults: tuple[FaultLine, ...]
     said: str
+    us: bool
 
 
 @router.get("/", name="root", dependencies=[needs("read")])
@@ -73,9 +74,9 @@ def make_station(
 ) -> Response:
     """Make an empty station and open it."""
     name = unicodedata.normalize("NFC", " ".join(title.split()))
-    if not name:
-        return _list(request, said="Enter a name for the new station.", status=422)
     us = units == "us"
+    if not name:
+        return _list(request, said="Enter a name for the new station.", us=us, status=422)
     station = Station(
         identity=Identity(title=name[:300]),
         display=Display(units="us" if us else "si", paper="letter" if us else "a4"),
@@ -168,6 +169,7 @@ def _list(
     refused_file: str = "",
     faults: tuple[Fault, ...] = (),
     said: str = "",
+    us: bool = False,
     status: int = 200,
 ) -> HTMLResponse:
     store = store_of(request)
@@ -188,6 +190,7 @@ def _list(
         refused_file,
         tuple(FaultLine(_where(fault), fault.sentence) for fault in faults),
         said,
+        us,
     )
     return render(request, "stations/page.html", {"page": page}, status=status)
 

@@ -160,7 +160,7 @@ def findings_list(sheet: OpenedSheet, findings: Iterable[Finding]) -> tuple[Find
             sentence=words.sentence(finding, sheet.station, sheet.view),
             basis=_basis(sheet, finding),
             mends=tuple(
-                (words.field_words(sheet.station, path), sheet.field_href(path))
+                (sheet.field_words(path), sheet.field_href(path))
                 for path in finding.mend[:MOST_MENDS]
             ),
             answer=answer_to(finding, sheet.station),

@@ -80,7 +80,8 @@ def build(sheet: SheetView) -> SupplyPage:
             "/supply/flow_tests",
             FLOW_TEST,
             "Flow tests on the main",
-            note="Pressures are gauge; the flow is drawn in addition to that day's demand.",
+            note="Pressures are gauge; the flow is drawn in addition to that day's demand. "
+            "Dates as 2026-05-14 07:30.",
             empty="No flow test yet. The supply is known by at least one.",
         ),
         states=field_views(sheet, "/supply/states", ("low", "normal", "high")),

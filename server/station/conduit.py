@@ -65,7 +65,7 @@ class Roughness(Record):
         Entry(
             "Roughness, new",
             "main-and-zone",
-            "Lined iron about 0.1 mm (common practice).",
+            "Lined iron about 0.1 mm or 0.004 in (common practice).",
             D.ROUGHNESS,
             0,
             0.02,

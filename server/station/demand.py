@@ -156,7 +156,7 @@ class Scenario(Record):
             "Unit out",
             "demand",
             "The largest unit counts as missing.",
-            choices=(("none", "none"), ("largest", "the largest unit")),
+            choices=(("none", "none"), ("largest", "the largest")),
         ),
     ] = "none"
 

@@ -98,7 +98,7 @@ class Pump(Record):
     """A pump as its maker states it."""
 
     id: str
-    title: Annotated[str, Entry("Pump", "pumps")] = ""
+    title: Annotated[str, Entry("Name of the pump", "pumps")] = ""
     kind: Annotated[
         Literal[
             "end_suction",

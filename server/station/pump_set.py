@@ -266,7 +266,7 @@ class PumpSet(Record):
     """An arrangement of pumps with its control; a station may compare several."""
 
     id: str
-    title: Annotated[str, Entry("Set", "sets")] = ""
+    title: Annotated[str, Entry("Name of the set", "sets")] = ""
     slots: Annotated[tuple[Slot, ...], Part("Slots", "sets", "Slot")] = ()
     control: Annotated[Control, Part("Control", "sets")] = Control()
     trips: Annotated[Trips, Part("Protections", "sets")] = Trips()

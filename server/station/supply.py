@@ -60,7 +60,7 @@ class Site(Record):
         Entry(
             "Altitude above sea level",
             "supply",
-            "Sets air pressure, so NPSH. Type 0 m at sea level.",
+            "Sets air pressure, so NPSH. Type 0 at sea level.",
             D.LEVEL,
             -400,
             5000,
@@ -177,8 +177,8 @@ class States(Record):
         Entry(
             "Low state, shift from the test",
             "supply",
-            "Negative: summer evening, reservoir low. Often 35 to 70 kPa under the test "
-            "(common practice).",
+            "Negative: summer evening, reservoir low. Often 35 to 70 kPa (5 to 10 psi) under "
+            "the test (common practice).",
             D.PRESSURE,
             -2e6,
             2e6,

@@ -36,7 +36,7 @@ def place_of(items: object, item_id: str) -> int | None:
 
 
 def _own_title(item: object) -> str:
-    for name in ("title", "kind", "section"):
+    for name in ("title", "kind"):
         text = member(item, name)
         if (
             isinstance(text, str)
@@ -127,7 +127,7 @@ def words(station: object, path: str) -> str:
         return path
     node, items = found
     parts = [SHEET_TITLES[node.sheet], *(title for _, title in items)]
-    if node.with_group:
+    if node.with_group or (node.kind == "list" and node.group_title):
         parts.append(lowered(node.group_title))
     if node.name != "*" and node.pattern:
         parts.append(lowered(node.title))

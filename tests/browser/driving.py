@@ -26,6 +26,14 @@ class Driver:
         self.page.goto(f"/stations/{self.id}/{sheet}{query}")
         return self
 
+    def without_live_figures(self) -> "Driver":
+        """Leave the charting script empty, which takes seconds; the server's drawings stand."""
+        self.page.route(
+            "**/plotly.min.js",
+            lambda route: route.fulfill(body="", content_type="text/javascript"),
+        )
+        return self
+
     def at(self, path: str) -> Locator:
         """Return the control of the field at a path of the document."""
         return self.page.locator(f"[id='{html_id(path)}']")

@@ -101,7 +101,7 @@ def test_units_of_reading_are_switched_and_go_along_while_values_stay_as_entered
     demo_driver: Driver,
 ):
     driver, page = demo_driver, demo_driver.page
-    driver.open("supply", "?case=sc-f2re9k")
+    driver.without_live_figures().open("supply", "?case=sc-f2re9k")
     result = solved(driver.stored)
     suction = float(result.suction_pressure[case_index(result, "sc-f2re9k", "low")])
     psi = shown(suction, Dimension.PRESSURE, "us")
@@ -131,8 +131,7 @@ def test_units_of_reading_are_switched_and_go_along_while_values_stay_as_entered
 
 
 def test_the_station_can_be_set_to_us_units_for_everybody(demo_driver: Driver):
-    driver = demo_driver.open("summary")
-
+    driver = demo_driver.without_live_figures().open("summary")
     legend = driver.page.locator("[id='display--units']")
     driver.saved(legend.get_by_role("radio").nth(1).check)
 

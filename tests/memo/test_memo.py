@@ -15,7 +15,7 @@ from server.memo.source import memo_source
 from server.memo.to_html import css_string, memo_html, page_css
 from server.station import fields, paths
 from server.station.canonical import canonical_bytes, document_hash
-from server.station.station import Answer, Station
+from server.station.station import MEMO_SECTIONS, Answer, MemoNote, Station
 from server.studies.assess import assess
 from server.studies.findings.answers import answer_key
 from server.units import from_si
@@ -52,6 +52,29 @@ def test_the_record_names_program_method_and_document(memo, words, demo):
     assert f"Firmhead {__version__}" in text
     assert document_hash(canonical_bytes(demo)) in text
     assert "study “duty”, version" in text
+
+
+def test_a_note_stands_at_the_end_of_its_section_and_one_without_in_the_record(demo, words):
+    notes = (
+        MemoNote(id="mn-aaaaaa", section="basis", text="Basis note."),
+        MemoNote(id="mn-bbbbbb", text="Plain note."),
+        MemoNote(id="mn-cccccc", section="of a later program", text="Strange note."),
+    )
+    text = words(
+        memo_html(changed(demo, memo=demo.memo.model_copy(update={"notes": notes})), "si", "a4")
+    )
+
+    assert (
+        text.index("Never checked")
+        > text.index("Inputs and their sources")
+        > text.index("Basis note.")
+        > text.index("The job and the basis of design")
+    )
+    assert text.index("Strange note.") > text.index("Plain note.") > text.index("SHA-256")
+
+
+def test_every_section_that_takes_a_note_is_a_section_of_the_memo():
+    assert {key for key, _ in MEMO_SECTIONS if key} == {n for n, _ in SECTIONS} - {"record"}
 
 
 def test_every_default_is_listed(memo, words, demo):
@@ -236,7 +259,7 @@ def test_a_kind_of_supply_that_is_not_computed_still_has_a_memo(demo, kind, word
     assert "What is proposed" in words(memo_html(other, "si", "a4"))
 
 
-@pytest.mark.parametrize("section", SECTIONS, ids=lambda s: s.__module__.rsplit(".", 1)[-1])
+@pytest.mark.parametrize("section", [s for _, s in SECTIONS], ids=[n for n, _ in SECTIONS])
 def test_every_section_begins_with_its_heading_for_any_station(section, demo):
     for station in (Station(), demo):
         first = section(memo_source(station, assess(station), "si"))[0]

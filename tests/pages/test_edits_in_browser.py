@@ -262,3 +262,46 @@ def test_a_link_followed_at_once_shows_the_edit_before_it(page, live, station):
     page.wait_for_url("**/history")
 
     assert "Long Lane main" in page.inner_text("#content-slot")
+
+
+def test_pasted_headings_put_each_column_of_a_curve_in_its_place_and_unit(page, live, station):
+    page.goto(f"/stations/{station}/pumps")
+    page.locator("form.grid input[name=cell]").first.focus()
+    page.evaluate(
+        PASTE, "Head (ft)\tFlow (gpm)\tNPSHr (ft)\n160\t0\t\n150\t100\t6\n120\t200\t9"
+    )
+    revision(page, 2)
+    table = live.store.load(station).station.pumps[0].curves[0].table
+
+    assert (table.units.flow, table.units.head, table.units.npsh_required) == (
+        "gpm_us", "ft", "ft",
+    )  # fmt: skip
+    assert (table.units.efficiency, table.units.shaft_power) == (None, None)
+    assert table.rows == ((0, 160, None), (100, 150, 6), (200, 120, 9))
+
+
+@pytest.mark.parametrize("heading", ["Colour", "Head (kPa)"])
+def test_a_pasted_heading_that_cannot_be_read_changes_no_cell(page, live, station, heading):
+    page.goto(f"/stations/{station}/pumps")
+    grid = page.locator("form.grid").first
+    before = grid.locator("input[name=cell]").evaluate_all("all => all.map(c => c.value)")
+    grid.locator("input[name=cell]").first.focus()
+    page.evaluate(PASTE, f"Flow\t{heading}\n0\t160\n100\t150")
+
+    assert heading.split(" (")[0] in grid.locator(".refusal").inner_text()
+    assert before == grid.locator("input[name=cell]").evaluate_all(
+        "all => all.map(c => c.value)"
+    )
+    assert live.store.load(station).number == 1
+
+
+def test_a_grid_and_a_field_changed_in_turn_are_no_merge(page, live, station):
+    page.goto(f"/stations/{station}/pumps")
+    page.fill("#pumps--" + live.store.load(station).station.pumps[0].id + "--rating", "16 bar")
+    page.keyboard.press("Tab")
+    revision(page, 2)
+    page.locator("form.grid input[name=cell]").nth(1).fill("95")
+    page.keyboard.press("Tab")
+    revision(page, 3)
+
+    assert [row.kind for row in live.store.history(station)][:2] == ["edit", "edit"]

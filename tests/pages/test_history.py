@@ -107,3 +107,12 @@ def test_the_sources_of_a_sheet_are_listed_and_saved_one_by_one(opened, send):
         "/site/altitude", base="1", look="source", source_kind="office", source_text="x"
     )
     assert ReadPage(answer.text).oob == ["site--altitude--said", "revision"]
+
+
+def test_a_revision_with_many_changes_counts_those_it_does_not_list(opened, send):
+    rows = "\n".join(f"Test {n}\t10" for n in range(9))
+    send("/supply/flow_tests", base="1", op="paste", columns="title test_flow", rows=rows)
+    page = opened("history")
+
+    assert "and 3 more changes" in page.words
+    assert any(link.endswith("/history/1..2") for link in page.links)

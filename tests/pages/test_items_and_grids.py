@@ -58,7 +58,7 @@ def test_a_paste_with_one_bad_cell_stores_nothing_and_names_the_cell(send, now):
     page = ReadPage(answer.text)
 
     assert answer.status_code == 422
-    assert "Row 2, Test flow: " in page.words
+    assert "Row 2: Test flow of B: " in page.words
     assert page.oob == ["supply--flow_tests--rows-said"]
     assert len(now().supply.flow_tests) == 2
 
@@ -183,11 +183,11 @@ def test_a_solved_station_is_not_told_what_is_missing(opened):
 
 
 def test_a_kind_that_is_not_computed_yet_says_so_beside_it_and_in_the_way_on(send, opened):
-    send("/supply/kind", "tank", base="1", look="choice")
-    page = opened("supply")
+    send("/sets/st-v3a7pe/control/running_rule", "least_power", base="1", look="choice")
+    page = opened("sets")
 
     assert "Kept, but not computed in this version" in page.words
-    assert "Kind of supply: what is chosen is kept, but not computed" in page.words
+    assert "running rule: what is chosen is kept, but not computed" in page.words
 
 
 def test_the_way_on_asks_for_the_rows_of_a_pump_before_there_is_a_set(client):
@@ -199,3 +199,44 @@ def test_the_way_on_asks_for_the_rows_of_a_pump_before_there_is_a_set(client):
     page = ReadPage(client.get(f"/stations/{station}/pumps").text)
 
     assert "tested rows" in page.words.partition("Still missing here")[2][:200]
+
+
+def test_headings_of_pasted_rows_say_their_column_and_their_unit(send, now):
+    rows = "Static (bar)\tPlace\tFlow (gpm)\n3.5\tMill C\t900\n"
+    send(TESTS, base="1", op="paste", columns="title static_pressure test_flow", rows=rows)
+    made = now().supply.flow_tests[-1]
+
+    assert made.title == "Mill C"
+    assert (made.static_pressure.value, made.static_pressure.unit) == (3.5, "bar")
+    assert (made.test_flow.value, made.test_flow.unit) == (900, "gpm_us")
+
+
+@pytest.mark.parametrize(
+    ("heading", "told"),
+    [("Colour", "names no one column"), ("Static (ft)", "a unit of a head")],
+)
+def test_a_heading_that_cannot_be_read_is_refused_and_never_guessed(send, now, heading, told):
+    rows = f"Place\t{heading}\nMill C\t3.5\n"
+    answer = send(
+        TESTS, base="1", op="paste", columns="title static_pressure test_flow", rows=rows
+    )
+
+    assert answer.status_code == 422
+    assert told in answer.text
+    assert len(now().supply.flow_tests) == 2
+
+
+def test_rows_changed_by_two_people_offer_both_and_theirs_can_be_kept(send, now):
+    form = {"look": "grid", "units": list(UNITS), "sheet": "pumps"}
+    send(TABLE, base="1", grid="0\t80\t\t\t\n10\t70\t\t\t", **form)
+    mine = send(TABLE, base="1", grid="0\t90\t\t\t\n10\t60\t\t\t", **form)
+    assert mine.status_code == 409
+    assert "Keep my rows" in mine.text
+    assert "Keep theirs: 2 rows" in mine.text
+
+    theirs = send(TABLE, base="1", keep="theirs", grid="0\t90\t\t\t", **form)
+    assert "content-slot" in ReadPage(theirs.text).oob
+    assert now().pumps[0].curves[0].table.rows == ((0, 80), (10, 70))
+
+    send(TABLE, base="1", keep="mine", grid="0\t90\t\t\t\n10\t60\t\t\t", **form)
+    assert now().pumps[0].curves[0].table.rows == ((0, 90), (10, 60))

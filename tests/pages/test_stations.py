@@ -1,5 +1,6 @@
 """The list of stations: made, taken in, given out, copied, renamed, put away, refused."""
 
+import re
 from pathlib import Path
 
 import pytest
@@ -111,3 +112,10 @@ def test_a_page_of_no_station_is_404_with_a_sentence(client, sheet):
 
     assert answer.status_code == 404
     assert "There is no such station" in answer.text
+
+
+def test_a_station_without_a_name_is_refused_and_its_units_stay_chosen(client):
+    answer = client.post("/stations", data={"title": " ", "units": "us"})
+
+    assert answer.status_code == 422
+    assert re.search(r'value="us"[^>]* checked', answer.text)

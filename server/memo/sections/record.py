@@ -1,7 +1,7 @@
-"""The record: which program, which document, and what the engineer adds."""
+"""The record: which program, which method, which document, who."""
 
 from server import __version__
-from server.memo.blocks import Block, Facts, Heading, Paragraph
+from server.memo.blocks import Block, Facts, Heading
 from server.memo.source import MemoSource
 
 
@@ -37,10 +37,6 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
             )
         ),
     ]
-    for note in memo.notes:
-        if note.text.strip():
-            made.append(Heading("Note", 3))
-            made.extend(Paragraph((line,)) for line in note.text.split("\n") if line.strip())
     return tuple(made)
 
 
