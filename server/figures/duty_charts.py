@@ -17,6 +17,7 @@ from server.figures.head_chart import (
     head_panel,
     head_series,
 )
+from server.figures.system_words import along_words
 from server.studies.along_curves import AlongControl
 from server.studies.duty_curves import DutyCurves
 from server.studies.findings.judged_set import JudgedSet
@@ -63,7 +64,7 @@ def duty_chart(curves: DutyCurves, judged: JudgedSet, chosen: str | None = None)
         key="duty",
         title=f"Duty of {judged.title}",
         caption=caption_of(curves, judged)
-        + f" Below: along the held set point at {curves.along_state} supply; each point in "
+        + f" Below: {along_words(judged.result)} at {curves.along_state} supply; each point in "
         "its own state.",
         alt=alt_of(judged),
         x=flow_axis(curves, judged),
@@ -231,8 +232,8 @@ def _along_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
         name = combination_words(judged, along.combination)
         tables.append(
             BehindTable(
-                f"{name[:1].upper()}{name[1:]} along the held set point, {curves.along_state} "
-                "supply",
+                f"{name[:1].upper()}{name[1:]} {along_words(judged.result)}, "
+                f"{curves.along_state} supply",
                 columns,
                 tuple(_along_row(along, int(i)) for i in at),
             )

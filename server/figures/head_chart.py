@@ -23,6 +23,7 @@ from server.figures.chart import (
     Role,
     Series,
 )
+from server.figures.system_words import asked_words, band_words, end_words
 from server.studies.duty_curves import DutyCurves, RunningSet
 from server.studies.findings.judged_set import JudgedSet
 from server.studies.shapes import Region
@@ -82,6 +83,7 @@ def head_series(
                 named=True,
             )
         )
+    low, high = end_words(judged.result)
     for held in curves.held:
         case = judged.result.cases[held.case]
         if case.scenario == chosen:
@@ -93,8 +95,8 @@ def head_series(
                 )
             )
     for key, name, role, required in (
-        ("required-low", "asked at low supply", Role.SYSTEM_LOW, curves.required_low),
-        ("required-high", "asked at high supply", Role.SYSTEM_HIGH, curves.required_high),
+        ("required-low", low, Role.SYSTEM_LOW, curves.required_low),
+        ("required-high", high, Role.SYSTEM_HIGH, curves.required_high),
     ):
         if np.any(np.isfinite(required)):
             series.append(Series(key, name, role, curves.flow, required, named=True))
@@ -190,7 +192,7 @@ def _duty_table(judged: JudgedSet) -> BehindTable:
             Column("Scenario"),
             Column("Flow", D.FLOW),
             Column("Head delivered", D.HEAD),
-            Column("Head that holds the set point", D.HEAD),
+            Column(_capital(asked_words(result)), D.HEAD),
             Column("Running"),
             Column("Of best-efficiency flow"),
         ),
@@ -210,13 +212,16 @@ def _curve_tables(curves: DutyCurves, judged: JudgedSet) -> list[BehindTable]:
             )
         )
     at = _spread(curves.flow.size)
+    ends = ("Low supply", "High supply")
+    if judged.result.zone_kind == "floating_tank":
+        ends = ("Low supply, full tank", "High supply, low tank")
     tables.append(
         BehindTable(
-            f"Head that holds the set point, {curves.pipes} pipes",
+            f"{_capital(asked_words(judged.result))}, {curves.pipes} pipes",
             (
                 Column("Flow", D.FLOW),
-                Column("Low supply", D.HEAD),
-                Column("High supply", D.HEAD),
+                Column(ends[0], D.HEAD),
+                Column(ends[1], D.HEAD),
             ),
             tuple(
                 (
@@ -270,9 +275,7 @@ def caption_of(curves: DutyCurves, judged: JudgedSet) -> str:
     return (
         "Curves of the pumps that run together, at top speed; hatched where all of them are "
         "in their"
-        " preferred region. Blue: the head that holds the set point from low to high supply, "
-        f"{curves.pipes}"
-        " pipes, all flow as demand of the zone."
+        f" preferred region. Blue: {band_words(curves, judged.result)}."
     )
 
 

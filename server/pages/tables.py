@@ -24,7 +24,7 @@ DUTY_COLUMNS: tuple[Column, ...] = (
     ("Pipes", None, lambda r: r.of.pipes),
     ("State of the scenario itself", None, lambda r: "yes" if r.own else "no"),
     ("Flow", D.FLOW, lambda r: r.flow),
-    ("Head that holds the set point", D.HEAD, lambda r: r.required_head),
+    ("Head asked of the station", D.HEAD, lambda r: r.required_head),
     ("Head delivered", D.HEAD, lambda r: r.head),
     ("Running", None, lambda r: r.running),
     ("Speed", D.RATIO, lambda r: r.speed),

@@ -64,6 +64,7 @@ class DutyCurves:
     )
     required_high: Floats  # (n,)
     pipes: PipeAge
+    easiest_pipes: PipeAge  # of required_high; another age towards a tank only
     along: tuple[AlongControl, ...]
     along_state: SupplyState
 
@@ -94,7 +95,10 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
     furthest = max((float(s.flow[-1]) for s in sets), default=0.0)
     asked = float(np.nanmax(result.demand)) if result.demand.size else 0.0
     grid = np.linspace(0.0, max(furthest, 1.1 * asked, 1e-3), READINGS)
-    pipes = _pipes(lowered, result)
+    pipes = easiest = _pipes(lowered, result)
+    if lowered.floats:
+        pipes = "aged" if lowered.route.knows("aged") else "new"
+        easiest = "new" if lowered.route.knows("new") else "aged"
     known = [
         s for s in SUPPLY_STATES if np.isfinite(lowered.supply.shift[SUPPLY_STATES.index(s)])
     ]
@@ -104,8 +108,9 @@ def duty_curves(station: Station, result: DutyResult, state: SupplyState = "low"
         held=_held(lowered, result),
         flow=grid,
         required_low=_asked(lowered, result, grid, "low", pipes),
-        required_high=_asked(lowered, result, grid, "high", pipes),
+        required_high=_asked(lowered, result, grid, "high", easiest),
         pipes=pipes,
+        easiest_pipes=easiest,
         along=along_control(lowered, result, drawn, grid, along_state, pipes),
         along_state=along_state,
     )
