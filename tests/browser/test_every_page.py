@@ -120,7 +120,6 @@ def ids(live: LiveServer) -> dict[str, str]:
 def swept(contexts: Callable[[str], Any], live: LiveServer) -> Iterator[Any]:
     """Open the one page in which all addresses are looked at."""
     page = watched_page(contexts("first"), live.url)
-    page.emulate_media(reduced_motion="reduce")
     page.asked, page.seen = set(), set()
     page.on("request", lambda request: page.asked.add(request.url))
     yield page
