@@ -45,6 +45,16 @@ def three_cases(result: DutyResult, scenario: str) -> tuple[int, ...]:
     return tuple(index for index in found if index is not None)
 
 
+def stage_cases(result: DutyResult, scenario: str) -> tuple[int, ...]:
+    """Return the further cases of a scenario: other numbers running, as a level starts them."""
+    three = set(three_cases(result, scenario))
+    return tuple(
+        index
+        for index, case in enumerate(result.cases)
+        if case.scenario == scenario and index not in three
+    )
+
+
 def scenarios_of(result: DutyResult) -> tuple[str, ...]:
     """Return the scenarios of a result in their order."""
     return tuple(dict.fromkeys(case.scenario for case in result.cases))

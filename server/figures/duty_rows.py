@@ -11,6 +11,7 @@ from server.figures.case_words import (
     running_words,
     scenario_title,
     scenarios_of,
+    stage_cases,
     state_words,
     three_cases,
 )
@@ -57,11 +58,17 @@ class DutyRow:
 
 @dataclass(frozen=True, slots=True)
 class ScenarioDuty:
-    """A scenario: its own row, and the rows of the three supply states."""
+    """A scenario: its own row, the three supply states, and the further stages of a tank."""
 
     scenario: str
     own: DutyRow
     states: tuple[DutyRow, ...]
+    stages: tuple[DutyRow, ...] = ()
+
+    @property
+    def all_rows(self) -> tuple[DutyRow, ...]:
+        """Every row: the supply states, then the stages."""
+        return (*self.states, *self.stages)
 
 
 def scenario_duties(judged: JudgedSet) -> tuple[ScenarioDuty, ...]:
@@ -70,8 +77,9 @@ def scenario_duties(judged: JudgedSet) -> tuple[ScenarioDuty, ...]:
     for scenario in scenarios_of(judged.result):
         rows = tuple(duty_row(judged, case) for case in three_cases(judged.result, scenario))
         own = next((row for row in rows if row.own), rows[0] if rows else None)
+        stages = tuple(duty_row(judged, case) for case in stage_cases(judged.result, scenario))
         if own is not None:
-            duties.append(ScenarioDuty(scenario, own, rows))
+            duties.append(ScenarioDuty(scenario, own, rows, stages))
     return tuple(duties)
 
 

@@ -85,7 +85,7 @@ def build(sheet: SheetView) -> DutyPage:
         groups=GROUPS,
         rows=tuple(scenario_row(sheet, judged, duty, columns) for duty in duties),
         states=tuple(
-            state_row(sheet, judged, row, columns) for duty in duties for row in duty.states
+            state_row(sheet, judged, row, columns) for duty in duties for row in duty.all_rows
         ),
         figure=None if chart is None else figure_view(chart, sheet.view, live=True),
         csv_href=link(

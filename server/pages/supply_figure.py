@@ -3,7 +3,7 @@
 from server.figures.supply_chart import supply_chart
 from server.pages.charts import FigureView, figure_view, no_figure
 from server.pages.sheet import SheetView
-from server.studies.supply_curve import NoSupplyCurve, supply_curve
+from server.studies.supply_curve import LEVEL, NoSupplyCurve, supply_curve
 
 TITLE = "What the supply gives"
 
@@ -19,9 +19,9 @@ def supply_figure(sheet: SheetView) -> FigureView:
     curve = supply_curve(sheet.station, sheet.result)
     if isinstance(curve, NoSupplyCurve):
         kinds = {missing.reason for missing in curve.missing}
-        if kinds == {"not_in_this_version"}:
+        if kinds == {LEVEL}:
             return no_figure(
-                "supply", TITLE, "This kind of supply is entered but not yet computed."
+                "supply", TITLE, "A tank gives its level, whatever is drawn: it has no curve."
             )
         first = sheet.field_words(curve.missing[0].path)
         return no_figure(

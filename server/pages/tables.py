@@ -63,7 +63,7 @@ def duty_table(judged: JudgedSet, view: View) -> tuple[tuple[str, ...], ...]:
     )
     columns: tuple[Column, ...] = (*DUTY_COLUMNS[:-1], *points, DUTY_COLUMNS[-1])
     heads = tuple(_head(title, dimension, view) for title, dimension, _ in columns)
-    rows = (row for duty in scenario_duties(judged) for row in duty.states)
+    rows = (row for duty in scenario_duties(judged) for row in duty.all_rows)
     return (
         heads,
         *(tuple(_cell(read(row), d, view) for _, d, read in columns) for row in rows),

@@ -15,6 +15,7 @@ from server.studies.lowering.needs import ABSENT, Needs
 from server.studies.shapes import SupplyState
 
 READINGS = 101
+LEVEL = "level_whatever_is_drawn"  # why a tank has no curve
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +66,8 @@ def supply_curve(station: Station, result: DutyResult | None) -> SupplyCurve | N
     """
     needs = Needs()
     water = lowered_supply.water(station.site, needs)
+    if station.supply.kind == "tank":
+        return NoSupplyCurve((Missing("/supply/kind", LEVEL),))
     source = lowered_supply.supply(station, water, needs)
     if source is None or needs.stops or not np.isfinite(source.connection_level):
         missing = tuple(needs.stops) or (Missing("/supply/connection_level", ABSENT),)

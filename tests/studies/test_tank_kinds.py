@@ -167,8 +167,8 @@ def test_a_fire_tank_opens_where_the_grade_would_fall_below_it() -> None:
     fields = {
         **BOTH,
         "/zone/tank/normal": quantity(176, "m"),
-        "/zone/tank/low": quantity(184, "m"),
-        "/scenarios/sc-f2re9k/tank_state": "low",
+        "/zone/tank/top": quantity(184, "m"),
+        "/scenarios/sc-f2re9k/tank_state": "top",
     }
     result, closed = solved_closed(station_with(**fields)), solved_closed(station_with())
     assert result.zone_kind == "fire_tank"
@@ -229,3 +229,48 @@ def test_the_curves_behind_the_figure_pass_through_the_duty_points() -> None:
     along = next(a for a in curves.along if a.combination == k)
     power = np.interp(result.flow[c, k], along.flow, along.shaft_power)
     assert power == pytest.approx(np.nansum(result.shaft_power[c, k]), rel=1e-3)
+
+
+@pytest.mark.parametrize(
+    ("path", "level", "reason"),
+    [
+        ("/supply/tank/low", 124.9, "tank_levels_out_of_order"),
+        ("/supply/tank/outlet_level", 121.5, "tank_level_not_above_outlet"),
+        ("/zone/tank/low", 183.0, "tank_levels_out_of_order"),
+    ],
+)
+def test_levels_of_a_tank_out_of_order_are_refused(
+    path: str, level: float, reason: str
+) -> None:
+    result = solve(tank_station(**{path: quantity(level, "m")}))
+    assert isinstance(result, NotSolved)
+    assert reason in {missing.reason for missing in result.missing}
+
+
+def test_a_demand_past_the_end_of_the_main_is_refused() -> None:
+    result = solve(tank_station(**{"/zone/tank/demand_at": quantity(4000, "m")}))
+    assert isinstance(result, NotSolved)
+    assert Missing("/zone/tank/demand_at", "past_the_main") in result.missing
+
+
+@pytest.mark.parametrize(
+    "path",
+    ["/zone/tank/low", "/zone/tank/normal", "/zone/tank/top", f"{CONTROL}/stages"],
+)
+def test_what_a_filling_station_cannot_do_without_is_named(path: str) -> None:
+    result = solve(tank_station(**{path: [] if path.endswith("stages") else None}))
+    assert isinstance(result, NotSolved)
+    assert Missing(path, "absent") in result.missing
+
+
+@pytest.mark.parametrize(
+    "path",
+    [
+        "/supply/tank/cut_out", "/supply/tank/outlet_level", "/supply/tank/outlet_bore",
+        "/supply/tank/top", "/zone/tank/area", "/horizons/hz-d4v9ts/demand/maximum_day",
+    ],
+)  # fmt: skip
+def test_what_touches_a_part_is_named_and_the_rest_is_had(path: str) -> None:
+    result = solved(tank_station(**{path: None}))
+    assert (path, "absent") in result.needs_missing
+    assert result.made.one_pump_alone is not None

@@ -16,6 +16,7 @@ from server.memo.blocks import (
     StripFigure,
     Table,
 )
+from server.memo.sections.tanks import stage_table
 from server.memo.source import MemoSource
 from server.studies.duty_curves import duty_curves
 from server.studies.findings.judged_set import JudgedSet
@@ -37,6 +38,8 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     made.append(Figure(duty_chart(duty_curves(of.station, judged.result), judged), scale=0.86))
     made.append(_state_table(of, judged))
     made.append(_region_table(of))
+    if judged.result.zone_kind == "floating_tank":
+        made.append(stage_table(of))
     case = case_index(judged.result, governing)
     if case is not None:
         title = f"Grade line, {case_words(judged, case)}"

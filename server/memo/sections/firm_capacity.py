@@ -7,7 +7,11 @@ from server.studies.findings.judged_set import JudgedSet
 from server.studies.findings.requirement_words import limit_title
 from server.units import Dimension as D
 
-REQUIREMENTS = {"peak_hour": "Peak hour", "maximum_day_fire": "Maximum day and fire"}
+REQUIREMENTS = {
+    "peak_hour": "Peak hour",
+    "maximum_day_fire": "Maximum day and fire",
+    "tank_refill": "Maximum day into the full tank",
+}
 
 
 def blocks(of: MemoSource) -> tuple[Block, ...]:
@@ -32,18 +36,55 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
         )
     )
     made.append(_table(of, of.judged))
+    made.append(_weak(of, of.judged))
+    made.append(Paragraph((_single(of, of.judged),)))
     return tuple(made)
 
 
-def _table(of: MemoSource, judged: JudgedSet) -> Table:
+def _weak(of: MemoSource, judged: JudgedSet) -> Table:
+    """Return the same with every pump at the lower corner of its acceptance grade."""
+    firms = judged.result.made.firm_capacity
+    rows: list[tuple[Cell, ...]] = [
+        (
+            _requirement(of, firm), firm.required_flow,
+            "not checked" if firm.not_counted else _known(firm.by_all_weak),
+        )
+        for firm in firms
+    ]  # fmt: skip
+    return Table(
+        f"Firm capacity with pumps that just pass their acceptance test, grade "
+        f"{firms[0].test_grade}",
+        (Column("Requirement"), Column("Required", D.FLOW), Column("By all limits", D.FLOW)),
+        tuple(rows),
+        ("Lower corner of the grade by ISO 9906 (2B: flow 8 %, head 5 % less; 1B: 5 % and 3 %; "
+         "from memory, to be confirmed), along the whole curve. Information.",),
+    )  # fmt: skip
+
+
+def _single(of: MemoSource, judged: JudgedSet) -> str:
+    """Return the parts in whose place nothing steps."""
+    reaches = {
+        reach.id: reach.title or "a reach"
+        for reach in (*of.station.suction_line.reaches, *of.station.discharge_main.reaches)
+    }
+    names = [reaches.get(each, "the only pump") for each in judged.result.made.single_points]
+    listed = "; ".join([*names, "the supply", "power supply and controls"])
+    return f"Single points of failure, with no second in their place: {listed}."
+
+
+def _requirement(of: MemoSource, firm: FirmCapacity) -> str:
     horizons = {h.id: str(h.year or h.title) for h in of.station.horizons}
+    name = REQUIREMENTS.get(firm.requirement, firm.requirement)
+    return f"{name}, {horizons.get(firm.horizon, '')}"
+
+
+def _table(of: MemoSource, judged: JudgedSet) -> Table:
     slots = {s.id: judged.slot_title(n) for n, s in enumerate(judged.slots)}
     rows: list[tuple[Cell, ...]] = []
     for firm in judged.result.made.firm_capacity:
         rows.append(
             (
-                f"{REQUIREMENTS.get(firm.requirement, firm.requirement)}, "
-                f"{horizons.get(firm.horizon, '')}",
+                _requirement(of, firm),
                 firm.required_flow,
                 firm.by_head,
                 limit_title(firm.by_head_limit, of.station),

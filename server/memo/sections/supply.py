@@ -5,6 +5,7 @@ import numpy as np
 from server.figures.duty_rows import wet, worst
 from server.figures.supply_chart import supply_chart
 from server.memo.blocks import Block, Cell, Column, Figure, Heading, Paragraph, Table
+from server.memo.sections.tanks import tank_blocks
 from server.memo.source import MemoSource
 from server.studies.findings import words
 from server.studies.shapes import SUPPLY_STATES
@@ -16,6 +17,8 @@ def blocks(of: MemoSource) -> tuple[Block, ...]:
     """Return the section."""
     made: list[Block] = [Heading("Supply")]
     curve = supply_curve(of.station, None if of.judged is None else of.judged.result)
+    if of.station.supply.kind == "tank":
+        return (*made, *tank_blocks(of))
     if isinstance(curve, NoSupplyCurve):
         names = "; ".join(words.field_words(of.station, m.path) for m in curve.missing)
         made.append(Paragraph((f"The supply is not computed. What is missing: {names}.",)))

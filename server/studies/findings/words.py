@@ -5,6 +5,7 @@ from server.station.station import Station
 from server.studies.findings.case_words import also_words, horizon_title, scenario_title
 from server.studies.findings.criteria import ROWS, criteria_of
 from server.studies.findings.profiles import RULES
+from server.studies.findings.reason_words import REASONS
 from server.studies.findings.registry import CODES
 from server.studies.findings.rule import BASIS_WORDS
 from server.studies.shapes import Amount, Finding, Path, Region, Severity, Verdict
@@ -35,21 +36,6 @@ REGION_WORDS: dict[Region, str] = {
     Region.OUTSIDE: "outside",
     Region.NOT_CHECKED: "not checked",
 }
-_REASONS = {
-    "absent": "it is not given",
-    "no_npsh_rows": "its rows have no NPSH required",
-    "no_efficiency_rows": "its rows have neither efficiency nor shaft power",
-    "best_efficiency_unknown": "the best-efficiency flow is not bracketed by its rows, so the "
-                               "preferred "
-    "region cannot be judged",
-    "no_shutoff_row": "it has no row at zero flow, so shut-off head is not given",
-    "outside_friction_law": "the roughness is too large for the bore",
-    "residual_not_below_static": "the residual pressure must be below the static pressure",
-    "test_flow_not_positive": "the test flow must be above zero",
-    "lowest_speed_above_highest": "the lowest speed lies above the highest",
-    "too_few_rows": "its rows are too few to draw a curve",
-    "bep_outside_rows": "the stated best-efficiency flow lies outside the rows",
-}  # fmt: skip
 _CHECKS = {
     "peak_hour": "in its own peak hour with the station's largest normal draw",
     "fire_there": "in its own fire and maximum day with the station at peak hour",
@@ -177,7 +163,7 @@ def _derived(
 
 
 def _reason(reason: str) -> str:
-    return _REASONS.get(reason, reason.replace("_", " "))
+    return REASONS.get(reason, reason.replace("_", " "))
 
 
 def _water(finding: Finding, names: dict[str, str], view: View) -> str:

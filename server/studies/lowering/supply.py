@@ -4,6 +4,7 @@ import numpy as np
 
 from server.hydraulics.errors import SupplyRefused
 from server.hydraulics.supply import FixedGradeSupply, FlowTestSupply, fit_flow_tests
+from server.hydraulics.tank_levels import tank_levels
 from server.hydraulics.water import (
     GRAVITY,
     atmospheric_pressure,
@@ -14,7 +15,7 @@ from server.hydraulics.water import (
 from server.station.station import Station
 from server.station.supply import FlowTest, GradeLine, Site, SupplyTank
 from server.studies.lowering.lowered import Bypass, Floats, Supply, Water
-from server.studies.lowering.needs import NAN, Needs
+from server.studies.lowering.needs import NAN, Needs, si_or_none
 
 FRICTION_TEMPERATURE = 10.0  # default where none is entered, criteria.md [degC]
 HIGHEST_TEMPERATURE = 20.0  # default where none is entered [degC]
@@ -142,6 +143,15 @@ def _tank(
     if base is None:
         needs.stop(f"{path}/low")
         return None, levels, NAN
+    try:
+        tank_levels(
+            cut_out=si_or_none(entered.cut_out), low=si_or_none(entered.low),
+            normal=si_or_none(entered.normal), top=si_or_none(entered.top),
+            outlet_level=si_or_none(entered.outlet_level),
+        )  # fmt: skip
+    except SupplyRefused as refused:
+        ordered = refused.reason == "tank_levels_out_of_order"
+        needs.stop(f"{path}/{'low' if ordered else 'outlet_level'}", refused.reason)
     shift = (levels - base) * of.weight
     return FixedGradeSupply(grade_level=base), shift, (cut_out - base) * of.weight
 

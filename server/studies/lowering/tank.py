@@ -26,6 +26,9 @@ def zone_tank(station: Station, needs: Needs) -> ZoneTank | None:
         if quantity is None and name in used:
             needs.stop(f"/zone/tank/{name}")
         levels.append(NAN if quantity is None else quantity.si)
+    known = [level for level in levels if not np.isnan(level)]
+    if known != sorted(known):
+        needs.stop("/zone/tank/low", "tank_levels_out_of_order")
     fire_only = zone.kind == "both" and entered.use == "fire_only"
     if entered.top is None and not fire_only:
         # firm capacity stands on the full tank

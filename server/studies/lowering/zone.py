@@ -217,6 +217,8 @@ def growth(station: Station, needs: Needs) -> tuple[Growth, ...]:
         day = NAN
         if station.zone.kind in ("tank", "both"):
             day = needs.part(f"{path}/demand/maximum_day", horizon.demand.maximum_day)
+        if horizon.low_state is not None and station.supply.kind == "tank":
+            needs.leave_out(f"{path}/low_state", "low_state_not_of_a_tank")
         if horizon.year is None:
             needs.leave_out(f"{path}/year")
         rows.append(

@@ -1,14 +1,18 @@
 """Words at the edge: units by view, digits that do not contradict, the words of grades."""
 
+import re
 from pathlib import Path
 
 from server.studies.findings import words
 from server.studies.findings.judged_set import amount
+from server.studies.findings.reason_words import REASONS
 from server.studies.findings.registry import CODES
 from server.studies.shapes import Case, Finding, Region, Severity, Verdict
 from server.units import Dimension
 from tests.studies.findings.demo import assessed, demo, edited, put, q
 
+# of a search for a trim, and of curves that a station cannot hold
+UNSAID = {"duty_past_last_row", "duty_above_full_diameter", "tested_speeds_differ"}
 GOLDEN = Path(__file__).with_name("finding_codes.txt")
 
 
@@ -80,3 +84,19 @@ def test_basis_names_the_source_of_the_limit_or_that_it_was_typed() -> None:
 def test_criterion_is_named_by_its_rule() -> None:
     said = words.field_words(demo(), "/criteria/rows/suction-main-minimum/limit")
     assert said == "Criteria, Supplying main at the connection, at ground level, limit"
+
+
+def test_every_refusal_of_the_study_has_words_of_its_own() -> None:
+    server = Path(__file__).parents[3] / "server"
+    files = [*(server / "studies" / "lowering").glob("*.py"), server / "hydraulics" / "trim.py",
+             server / "hydraulics" / "diameters.py", server / "hydraulics" / "tank_levels.py",
+             server / "hydraulics" / "smoothed_head.py"]  # fmt: skip
+    told = re.compile(
+        r"(?:needs\.(?:stop|leave_out)\([^)]*?, |(?:Curve|Supply)Refused\(\s*|^[A-Z_]+ = )"
+        r'"([a-z]+(?:_[a-z]+)+)"', re.MULTILINE,
+    )  # fmt: skip
+    reasons = {reason for file in files for reason in told.findall(file.read_text("utf-8"))}
+    assert {"single_barrel", "trim_below_least", "past_the_main"} <= reasons
+    known = {*REASONS, "default_used", "not_in_this_version", "smoothing_degree"}
+    own = {reason for reason in reasons if reason not in known}
+    assert own <= UNSAID
