@@ -7,7 +7,7 @@ from server.studies.findings.judged_set import amount
 from server.studies.findings.registry import CODES
 from server.studies.shapes import Case, Finding, Region, Severity, Verdict
 from server.units import Dimension
-from tests.studies.findings.demo import assessed, demo, edited, put, q
+from tests.studies.findings.demo import DESIGN, SET, assessed, demo, edited, put, q, remove
 
 GOLDEN = Path(__file__).with_name("finding_codes.txt")
 
@@ -80,3 +80,27 @@ def test_basis_names_the_source_of_the_limit_or_that_it_was_typed() -> None:
 def test_criterion_is_named_by_its_rule() -> None:
     said = words.field_words(demo(), "/criteria/rows/suction-main-minimum/limit")
     assert said == "Criteria, Supplying main at the connection, at ground level, limit"
+
+
+def test_what_has_no_name_is_told_by_its_place() -> None:
+    scenarios = [f"/scenarios/{each.id}" for each in demo().scenarios]
+    station = edited(
+        remove(*scenarios),
+        put(f"{DESIGN}/title", ""), put(f"{DESIGN}/year", None), put(f"{SET}/title", ""),
+        put(f"{SET}/trips/high_discharge_trip", None),
+    )  # fmt: skip
+    said = [words.sentence(each, station, "si") for each in assessed(station).findings]
+
+    assert "No scenario in use judges the average day of horizon 2." in said
+    assert "Horizon 2 has no year; when firm capacity runs out is not checked." in said
+    assert any("of set 1 is not given" in each for each in said)
+
+
+def test_assumed_velocity_of_a_check_valve_is_read_in_the_views_units() -> None:
+    finding = next(
+        f for f in assessed(demo()).findings
+        if f.code == "default_used" and f.subject.endswith("/full_open_velocity")
+    )  # fmt: skip
+
+    assert words.sentence(finding, demo(), "us").endswith("stands in (4.9\u00a0ft/s).")
+    assert words.sentence(finding, demo(), "si").endswith("stands in (1.50\u00a0m/s).")
