@@ -18,6 +18,7 @@ from typing import Any
 import pytest
 from fastapi import FastAPI
 from fastapi.testclient import TestClient
+from hypothesis import settings as hypothesis_settings
 
 from server.app import create_app
 from server.demo import load_demo
@@ -25,6 +26,13 @@ from server.settings import LOOPBACK_HOSTS, Settings
 from server.station.reader import read_station
 from server.station.station import Station
 from server.store.store import Store
+from tests.seconds_by_folder import pytest_terminal_summary
+
+__all__ = ["pytest_terminal_summary"]  # a hook is found by its name here
+
+# a busy machine is not a failure of a law
+hypothesis_settings.register_profile("suite", deadline=None)
+hypothesis_settings.load_profile("suite")
 
 ROOT = Path(__file__).parents[1]
 DEMO_FILE = ROOT / "seed_demo" / "closed_zone.json"

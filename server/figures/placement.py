@@ -1,8 +1,7 @@
 """Where the names on a chart stand, so that none lies on another or on a point.
 
 Greedy: each name tries places round its point, near ones first, and takes the first that is
-free,
-or the one that lies on the fewest line points when it cannot be free of lines.
+free, or the one that lies on the fewest line points when it cannot be free of lines.
 """
 
 from collections.abc import Sequence
@@ -14,6 +13,8 @@ from numpy.typing import NDArray
 
 # mean advance of the page's sans-serif, of its size; bold is a little wider
 LETTER = 0.56
+GAP = 1.0  # least room between two names [px]
+TOGETHER = 16  # places weighed at a time: the near ones mostly win
 
 
 @dataclass(frozen=True, slots=True)
@@ -118,41 +119,52 @@ def _place(
     marker: float,
 ) -> Placed:
     wide, high = text_width(name.text, size, bold=True) + 4, size * 1.25
-    best: tuple[float, Placed] | None = None
-    for cost, which, step, side, shift in _tries(len(name.points), name.farthest):
-        if best is not None and cost >= best[0]:
-            break  # what follows is farther still
-        x, y = name.points[which]
-        away = high * (0.4 + 0.22 * step)
-        if name.line < 0:
-            away = marker + high * (0.2 + 0.75 * step)
-        middle_x = min(max(x + shift * wide, bounds.left + wide / 2), bounds.right - wide / 2)
-        middle_y = y + side * away
-        half_wide, half_high = wide / 2, high / 2
-        box = Box(
-            middle_x - half_wide,
-            middle_y - half_high,
-            middle_x + half_wide,
-            middle_y + half_high,
+    cost, which, step, side, shift = _tries(len(name.points), name.farthest)
+    x, y = np.asarray(name.points, dtype=np.float64)[which.astype(np.intp)].T
+    away = high * (0.4 + 0.22 * step)
+    if name.line < 0:
+        away = marker + high * (0.2 + 0.75 * step)
+    middle_x = np.clip(x + shift * wide, bounds.left + wide / 2, bounds.right - wide / 2)
+    middle_y = y + side * away
+    left, right = middle_x - wide / 2, middle_x + wide / 2
+    top, bottom = middle_y - high / 2, middle_y + high / 2
+    free = (top >= bounds.top) & (bottom <= bounds.bottom)
+    if standing:
+        other = np.array([(box.left, box.top, box.right, box.bottom) for box in standing]).T
+        free &= ~np.any(
+            (left[:, None] < other[2] + GAP)
+            & (other[0] < right[:, None] + GAP)
+            & (top[:, None] < other[3] + GAP)
+            & (other[1] < bottom[:, None] + GAP),
+            axis=1,
         )
-        if box.top < bounds.top or box.bottom > bounds.bottom:
-            continue
-        if any(box.meets(other, 1.0) for other in standing):
-            continue
-        whole = cost + _crowding(box, lines, name.line)
-        if best is None or whole < best[0]:
-            best = whole, Placed(middle_x, middle_y, which, box)
-    if best is None:  # no room at all: under the point, so that no name is lost
-        x, y = name.points[0]
-        box = Box(x - wide / 2, y, x + wide / 2, y + high)
-        return Placed(x, y + marker + high, 0, box)
-    return best[1]
+    tries = np.flatnonzero(free)
+    if not tries.size:  # no room at all: under the point, so that no name is lost
+        x0, y0 = name.points[0]
+        under = Box(x0 - wide / 2, y0, x0 + wide / 2, y0 + high)
+        return Placed(x0, y0 + marker + high, 0, under)
+    best, least = int(tries[0]), np.inf
+    for start in range(0, tries.size, TOGETHER):
+        some = tries[start : start + TOGETHER]
+        if cost[some[0]] >= least:
+            break  # what follows is farther still
+        edges = np.stack([left[some], top[some], right[some], bottom[some]])
+        whole = cost[some] + _crowding(edges, lines, name.line)
+        nearest = int(np.argmin(whole))
+        if whole[nearest] < least:
+            best, least = int(some[nearest]), float(whole[nearest])
+    return Placed(
+        float(middle_x[best]),
+        float(middle_y[best]),
+        int(which[best]),
+        Box(float(left[best]), float(top[best]), float(right[best]), float(bottom[best])),
+    )
 
 
 @lru_cache(maxsize=64)
-def _tries(points: int, farthest: int) -> tuple[tuple[float, int, int, int, float], ...]:
-    """Return places to try, the nearest first: cost, point, step, side and shift."""
-    return tuple(
+def _tries(points: int, farthest: int) -> NDArray[np.float64]:
+    """Return places to try, the nearest first: rows cost, point, step, side and shift."""
+    return np.array(
         sorted(
             (
                 step + (0.3 if side < 0 else 0.0) + 1.6 * abs(shift) + 0.15 * which,
@@ -165,19 +177,26 @@ def _tries(points: int, farthest: int) -> tuple[tuple[float, int, int, int, floa
             for step in range(1, farthest + 1)
             for side in (1, -1)
             for shift in (0.0, 0.5, -0.5, 0.9, -0.9)
-        )
-    )
+        ),
+        dtype=np.float64,
+    ).T
 
 
-def _crowding(box: Box, lines: NDArray[np.float64], own: int) -> float:
-    """Return how much a box lies on lines, and whether a line's name would seem another's."""
+def _crowding(
+    edges: NDArray[np.float64], lines: NDArray[np.float64], own: int
+) -> NDArray[np.float64]:
+    """Return how much boxes lie on lines, and whether a line's name would seem another's.
+
+    `edges` has rows left, top, right and bottom, a column a box.
+    """
     if not lines.size:
-        return 0.0
+        return np.zeros(edges.shape[1])
     x, y, line = lines.T
-    aside = np.maximum(np.maximum(box.left - x, x - box.right), 0.0)
-    above = np.maximum(np.maximum(box.top - y, y - box.bottom), 0.0)
+    left, top, right, bottom = edges[:, :, None]
+    aside = np.maximum(np.maximum(left - x, x - right), 0.0)
+    above = np.maximum(np.maximum(top - y, y - bottom), 0.0)
     away = np.hypot(aside, above)
-    cost = 1.5 * float(np.count_nonzero(away == 0))
-    if own >= 0 and int(line[np.argmin(away)]) != own:
-        cost += 12.0
+    cost: NDArray[np.float64] = 1.5 * np.sum(away == 0, axis=1, dtype=np.float64)
+    if own >= 0:
+        cost += np.where(line[np.argmin(away, axis=1)] != own, 12.0, 0.0)
     return cost

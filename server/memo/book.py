@@ -1,9 +1,10 @@
 """The memo of a station: its head and its sections in order."""
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 
 from server import __version__
-from server.memo.blocks import Block, Heading, MemoBook, Paragraph, TitleBlock
+from server.memo.blocks import Block, MemoBook, TitleBlock
+from server.memo.notes import notes_of
 from server.memo.sections import (
     basis,
     cautions,
@@ -79,15 +80,5 @@ def memo_book(station: Station, assessment: Assessment, view: View) -> MemoBook:
     made: list[Block] = []
     for name, section in SECTIONS:
         made.extend(section(source))
-        made.extend(_notes(station, name))
+        made.extend(notes_of(station, name))
     return MemoBook(head, tuple(made))
-
-
-def _notes(station: Station, section: str) -> Iterator[Block]:
-    """Yield the engineer's notes of a section; one that names no section is in the record."""
-    names = {name for name, _ in SECTIONS}
-    for note in station.memo.notes:
-        own = note.section if note.section in names else "record"
-        if own == section and note.text.strip():
-            yield Heading("Note", 3)
-            yield from (Paragraph((line,)) for line in note.text.split("\n") if line.strip())

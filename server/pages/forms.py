@@ -4,6 +4,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, replace
 from typing import Literal
 
+from server.memo.notes import NOTE_SECTIONS
 from server.pages.defaults import default_of, default_words
 from server.pages.sheet import Refusal, SheetView
 from server.station import fields, paths
@@ -52,6 +53,8 @@ EMPTY_WORDS = {
     "/scenarios/*/fire": "no fire",
     "/horizons/*/pipes": "by the year",
 }
+# a text of the document that is chosen here: a file may hold another
+OWN_CHOICES = {"/memo/notes/*/section": NOTE_SECTIONS}
 # where the unit of the dimension would be read wrongly
 OWN_UNITS = {"/fires/*/duration": "h"}
 SIGNED = (Dimension.LEVEL, Dimension.TEMPERATURE)
@@ -205,6 +208,8 @@ def choices_of(sheet: SheetView, path: str) -> tuple[tuple[str, str], ...]:
     """Return value and words of each choice of a field; empty for a field that is typed."""
     node = fields.node_at(path)
     entry = fields.entry_for(path)
+    if node.pattern in OWN_CHOICES:
+        return OWN_CHOICES[node.pattern]
     if node.kind == "reference":
         return (
             ("", EMPTY_WORDS.get(node.pattern, "none chosen")),

@@ -9,6 +9,7 @@ from fastapi import APIRouter, Form, HTTPException, Request
 from fastapi.responses import HTMLResponse, RedirectResponse, Response
 from pydantic import JsonValue
 
+from server.pages.forms import OWN_CHOICES
 from server.pages.frame import SheetPage, register, show, when
 from server.pages.rendering import render
 from server.pages.rights import actor_of, needs
@@ -201,7 +202,7 @@ def shown_value(station: Station, path: str, value: JsonValue) -> str:
     """Return a stored value in a few words, as History and comparisons print it."""
     if value in (None, "", []):
         return "empty"
-    entry = fields.node_at(path).entry
+    pattern, entry = fields.node_at(path).pattern, fields.node_at(path).entry
     if isinstance(value, dict):
         if "rows" in value:
             rows = value["rows"]
@@ -214,9 +215,10 @@ def shown_value(station: Station, path: str, value: JsonValue) -> str:
         return f"{text}\u00a0{unit.printed}".strip() if unit else text
     if isinstance(value, list):
         return f"{len(value)} numbers"
-    if entry is not None and entry.choices:
+    choices = OWN_CHOICES.get(pattern) or (entry.choices if entry is not None else ())
+    if choices:
         key = str(value).lower()
-        return next((words for known, words in entry.choices if known == key), str(value))
+        return next((told for known, told in choices if known == key), str(value))
     if entry is not None and entry.refers_to and isinstance(value, str):
         return _referred(station, entry.refers_to, value)
     text = _number(value)

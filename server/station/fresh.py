@@ -7,6 +7,7 @@ from pydantic import JsonValue
 
 from server.station.canonical import plain
 from server.station.changes import items_of
+from server.station.conduit import Reach
 from server.station.entry import Record
 from server.station.fields import node_at
 from server.station.ids import new_id
@@ -21,7 +22,8 @@ def new_item(station: Station, list_path: str) -> Item:
     """Return an empty item for the list at `list_path`, as JSON data, with a fresh id.
 
     Where the list tells it, a choice is made that the person then sees: the role of a point
-    that is still missing, the pump of the slot before. No engineering number is ever filled in.
+    that is still missing, the pump of the slot before, the friction law of
+    the reach before. No engineering number is ever filled in.
 
     Raises
     ------
@@ -129,6 +131,14 @@ def _fire(station: Station, items: tuple[Record, ...], item: Item, taken: set[st
         item["point"] = hydrants[0]
 
 
+def _reach(station: Station, items: tuple[Record, ...], item: Item, taken: set[str]) -> None:
+    # one job has one friction law: that of the reach before, else of the other line
+    lines = (items, station.discharge_main.reaches, station.suction_line.reaches)
+    before = next((reaches[-1] for reaches in lines if reaches), None)
+    if isinstance(before, Reach):
+        item["roughness"] = {"law": before.roughness.law}
+
+
 def _pump(station: Station, items: tuple[Record, ...], item: Item, taken: set[str]) -> None:
     item["curves"] = [{"id": new_id("/pumps/*/curves", taken)}]
 
@@ -149,6 +159,8 @@ def _slot(station: Station, items: tuple[Record, ...], item: Item, taken: set[st
 
 _FILL: dict[str, Callable[[Station, tuple[Record, ...], Item, set[str]], None]] = {
     "/supply/flow_tests": _flow_test,
+    "/suction_line/reaches": _reach,
+    "/discharge_main/reaches": _reach,
     "/zone/points": _point,
     "/fires": _fire,
     "/scenarios": _scenario,

@@ -4,7 +4,7 @@ from typing import Annotated, Literal
 
 from server.station.conduit import Conduit, Leg
 from server.station.demand import Demands, Fire, Horizon, Scenario
-from server.station.entry import Choices, Entry, Part, Quantity, Record, Source
+from server.station.entry import Entry, Part, Quantity, Record, Source
 from server.station.pump import Pump
 from server.station.pump_set import PumpSet
 from server.station.supply import Site, Supply
@@ -79,40 +79,11 @@ class Answer(Record):
     text: Annotated[str, Entry("Answer", "summary", "", long=True)] = ""
 
 
-# sections of the memo that take a note
-MEMO_SECTIONS: Choices = (
-    ("", "Record, at the end of the memo"),
-    ("verdict", "What is proposed, and does it hold"),
-    ("basis", "The job and the basis of design"),
-    ("inputs", "Inputs and their sources"),
-    ("demand", "Demand and scenarios"),
-    ("supply", "Supply"),
-    ("duty", "Duty"),
-    ("firm_capacity", "Firm capacity"),
-    ("pressures", "Pressures at the named points"),
-    ("npsh", "NPSH"),
-    ("motors", "Motors and power"),
-    ("made_cases", "Cases made besides the scenarios"),
-    ("findings", "Findings in full"),
-    ("criteria", "Criteria and departures"),
-    ("not_checked", "What was not checked"),
-    ("cautions", "Cautions"),
-)
-
-
 class MemoNote(Record):
     """A paragraph of the engineer's in a section of the memo."""
 
     id: str
-    section: Annotated[
-        str,
-        Entry(
-            "Printed at the end of",
-            "memo",
-            "",
-            choices=MEMO_SECTIONS,
-        ),
-    ] = ""
+    section: Annotated[str, Entry("Printed at the end of", "memo")] = ""
     text: Annotated[str, Entry("Note", "memo", "", long=True)] = ""
 
 

@@ -10,12 +10,13 @@ from hypothesis import strategies as st
 from server import __version__
 from server.memo.blocks import Number
 from server.memo.book import SECTIONS, memo_book
+from server.memo.notes import NOTE_SECTIONS
 from server.memo.sections.cautions import CAUTIONS
 from server.memo.source import memo_source
 from server.memo.to_html import css_string, memo_html, page_css
 from server.station import fields, paths
 from server.station.canonical import canonical_bytes, document_hash
-from server.station.station import MEMO_SECTIONS, Answer, MemoNote, Station
+from server.station.station import Answer, MemoNote, Station
 from server.studies.assess import assess
 from server.studies.findings.answers import answer_key
 from server.units import from_si
@@ -74,7 +75,7 @@ def test_a_note_stands_at_the_end_of_its_section_and_one_without_in_the_record(d
 
 
 def test_every_section_that_takes_a_note_is_a_section_of_the_memo():
-    assert {key for key, _ in MEMO_SECTIONS if key} == {n for n, _ in SECTIONS} - {"record"}
+    assert {key for key, _ in NOTE_SECTIONS if key} == {n for n, _ in SECTIONS} - {"record"}
 
 
 def test_every_default_is_listed(memo, words, demo):

@@ -122,3 +122,22 @@ def test_every_item_of_a_station_can_be_copied_and_saved(station):
             copy = copy_item(station, f"{node.pattern}/{item.id}")
             new = apply_edits(station, [Edit("insert", node.pattern, copy, before=item.id)])
             assert read_station(canonical_bytes(new)) == new
+
+
+def test_a_new_reach_has_the_friction_law_of_the_reach_before(demo):
+    assert "roughness" not in new_item(Station(), "/suction_line/reaches")
+    first = demo.suction_line.reaches[0].id
+    changed = apply_edits(
+        demo,
+        [
+            Edit("set", f"/suction_line/reaches/{first}/roughness/law", "hazen_williams"),
+            *(
+                Edit("remove", f"/discharge_main/reaches/{reach.id}")
+                for reach in demo.discharge_main.reaches
+            ),
+        ],
+    )
+
+    assert new_item(changed, "/discharge_main/reaches")["roughness"] == {
+        "law": "hazen_williams"
+    }

@@ -1,6 +1,7 @@
 """Cases in words: scenario, supply state, unit out; and where else a finding stands."""
 
 from server.station.station import Station
+from server.station.titles import item_title
 from server.studies.findings.judged_set import MADE
 from server.studies.shapes import Case, Finding
 
@@ -75,7 +76,8 @@ def horizon_title(station: Station, horizon_id: str) -> str:
     for horizon in station.horizons:
         if horizon.id == horizon_id:
             year = "" if horizon.year is None else str(horizon.year)
-            return ", ".join(part for part in (horizon.title, year) if part)
+            named = ", ".join(part for part in (horizon.title, year) if part)
+            return named or item_title(station, f"/horizons/{horizon_id}")
     return ""
 
 

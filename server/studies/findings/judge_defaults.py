@@ -2,20 +2,23 @@
 
 from collections.abc import Iterator
 
+from server.hydraulics.fittings import FULL_OPEN_VELOCITY
 from server.station.entry import Quantity, Record
 from server.station.station import Station
 from server.studies.findings.criteria import Criterion
 from server.studies.findings.judged_set import amount
-from server.studies.shapes import Finding, Path, Severity
+from server.studies.shapes import Amount, Finding, Path, Severity
+from server.units import Dimension
 
 DEFAULT_USED = "default_used"
 
 
-def default_used(path: Path, said: str = "") -> Finding:
-    """Return the note that a default stands in at `path`."""
+def default_used(path: Path, said: str = "", *others: Amount) -> Finding:
+    """Return the note that a default stands in at `path`; an amount is read in its units."""
     return Finding(
         code="default_used", severity=Severity.NOTE, subject=path, pump_set=None,
-        names=(("said", said),), basis="common_practice", mend=(path,), because=DEFAULT_USED,
+        names=(("said", said),), others=others, basis="common_practice", mend=(path,),
+        because=DEFAULT_USED,
     )  # fmt: skip
 
 
@@ -50,7 +53,9 @@ def judge_defaults(station: Station) -> Iterator[Finding]:
                 yield default_used(f"/sets/{each.id}/control/{name}", "the criteria row")
     for leg in station.legs:
         if leg.discharge_branch.full_open_velocity is None:
-            yield default_used(f"/legs/{leg.id}/discharge_branch/full_open_velocity", "1.5 m/s")
+            path = f"/legs/{leg.id}/discharge_branch/full_open_velocity"
+            assumed = amount("assumed", FULL_OPEN_VELOCITY, Dimension.SPEED)
+            yield default_used(path, "", assumed)
     if station.fires:
         for point in station.zone.points:
             if point.fire_share is None:

@@ -2,6 +2,8 @@
 
 from collections.abc import Iterable, Iterator
 
+from server.station import paths
+from server.station.demand import Horizon
 from server.station.entry import Quantity
 from server.station.pump_set import PumpSet
 from server.station.station import Station
@@ -123,7 +125,7 @@ def _scenarios(station: Station) -> Iterator[Finding]:
     """Yield the demands and years that no scenario in use judges."""
     used = [scenario for scenario in station.scenarios if scenario.on]
     for horizon in station.horizons:
-        names = (("horizon", horizon.title or str(horizon.year or "")),)
+        names = (("horizon", _horizon_name(station, horizon)),)
         own = [scenario for scenario in used if scenario.horizon == horizon.id]
         if horizon.year is None:
             yield _not_checked("horizon_without_year", f"/horizons/{horizon.id}/year", names)
@@ -140,6 +142,12 @@ def _scenarios(station: Station) -> Iterator[Finding]:
             yield _not_checked("fire_scenario_missing",
                                _scenario_field(station, horizon.id, None), names,
                                subject=f"/horizons/{horizon.id}")  # fmt: skip
+
+
+def _horizon_name(station: Station, horizon: Horizon) -> str:
+    """Return the horizon's name, else its year, else its place: "horizon 1"."""
+    year = "" if horizon.year is None else str(horizon.year)
+    return horizon.title or year or paths.item_title(station, f"/horizons/{horizon.id}")
 
 
 def _scenario_field(station: Station, horizon: str, demand: str | None) -> Path:
@@ -159,7 +167,7 @@ def _demands(station: Station) -> Iterator[Finding]:
     """Yield demands that cannot be: night at zero, a smaller demand above a larger one."""
     for horizon in station.horizons:
         base = f"/horizons/{horizon.id}/demand"
-        names = (("horizon", horizon.title),)
+        names = (("horizon", _horizon_name(station, horizon)),)
         night = horizon.demand.minimum_night
         if night is not None and night.si == 0:
             yield Finding(
@@ -225,7 +233,8 @@ def _under_criteria(station: Station, criteria: dict[str, Criterion]) -> Iterato
                     criterion=criteria[key].path,
                     provided=amount("typed", typed.si, D.PRESSURE),
                     required=amount("required", limit, D.PRESSURE),
-                    names=(("point", point.title), ("rule", criteria[key].title)), basis=key,
+                    names=(("point", paths.item_title(station, path)),
+                           ("rule", criteria[key].title)), basis=key,
                     mend=(path, f"{criteria[key].path}/limit"),
                 )  # fmt: skip
 
@@ -247,9 +256,8 @@ def _protections(station: Station, each: PumpSet) -> Iterator[Finding]:
         ),
     ):
         if value is None and needed:
-            yield _not_checked(
-                "protection_missing", f"{base}/{field}", (("set", each.title),), each.id
-            )
+            named = (("set", paths.item_title(station, f"/sets/{each.id}")),)
+            yield _not_checked("protection_missing", f"{base}/{field}", named, each.id)
 
 
 def _ratings(station: Station, each: PumpSet) -> Iterator[Finding]:
@@ -257,9 +265,8 @@ def _ratings(station: Station, each: PumpSet) -> Iterator[Finding]:
     used = {slot.pump for slot in each.slots}
     for pump in station.pumps:
         if pump.id in used and pump.rating is None:
-            yield _not_checked(
-                "rating_missing", f"/pumps/{pump.id}/rating", (("part", pump.title),), each.id
-            )
+            named = (("part", paths.item_title(station, f"/pumps/{pump.id}")),)
+            yield _not_checked("rating_missing", f"/pumps/{pump.id}/rating", named, each.id)
     if each.slots and each.flange_rating is None:
         yield _not_checked("rating_missing", f"/sets/{each.id}/flange_rating",
                            (("part", "the manifold"),), each.id)  # fmt: skip

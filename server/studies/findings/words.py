@@ -155,11 +155,18 @@ def _derived(
         "reason_words": _reason(finding.because or ""),
         "part_words": "the set is not solved" if names.get("state") == "stops"
         else "what hangs on it is not checked",
-        "said_words": f" ({names['said']})" if names.get("said") else "",
+        "said_words": _said(finding, names, view),
         "horizon": names.get("horizon")
         or ("" if finding.governing is None else horizon_title(station,
                                                                finding.governing.horizon)),
     }  # fmt: skip
+
+
+def _said(finding: Finding, names: dict[str, str], view: View) -> str:
+    """Return the default that stands in, in brackets: in words, or as an amount."""
+    assumed = next((each for each in finding.others if each.name == "assumed"), None)
+    said = names.get("said") or ("" if assumed is None else amount_words(assumed, view))
+    return f" ({said})" if said else ""
 
 
 def _reason(reason: str) -> str:

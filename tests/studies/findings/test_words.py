@@ -9,7 +9,7 @@ from server.studies.findings.reason_words import REASONS
 from server.studies.findings.registry import CODES
 from server.studies.shapes import Case, Finding, Region, Severity, Verdict
 from server.units import Dimension
-from tests.studies.findings.demo import assessed, demo, edited, put, q
+from tests.studies.findings.demo import DESIGN, SET, assessed, demo, edited, put, q, remove
 
 # of a search for a trim, and of curves that a station cannot hold
 UNSAID = {"duty_past_last_row", "duty_above_full_diameter", "tested_speeds_differ"}
@@ -100,3 +100,27 @@ def test_every_refusal_of_the_study_has_words_of_its_own() -> None:
     known = {*REASONS, "default_used", "not_in_this_version", "smoothing_degree"}
     own = {reason for reason in reasons if reason not in known}
     assert own <= UNSAID
+
+
+def test_what_has_no_name_is_told_by_its_place() -> None:
+    scenarios = [f"/scenarios/{each.id}" for each in demo().scenarios]
+    station = edited(
+        remove(*scenarios),
+        put(f"{DESIGN}/title", ""), put(f"{DESIGN}/year", None), put(f"{SET}/title", ""),
+        put(f"{SET}/trips/high_discharge_trip", None),
+    )  # fmt: skip
+    said = [words.sentence(each, station, "si") for each in assessed(station).findings]
+
+    assert "No scenario in use judges the average day of horizon 2." in said
+    assert "Horizon 2 has no year; when firm capacity runs out is not checked." in said
+    assert any("of set 1 is not given" in each for each in said)
+
+
+def test_assumed_velocity_of_a_check_valve_is_read_in_the_views_units() -> None:
+    finding = next(
+        f for f in assessed(demo()).findings
+        if f.code == "default_used" and f.subject.endswith("/full_open_velocity")
+    )  # fmt: skip
+
+    assert words.sentence(finding, demo(), "us").endswith("stands in (4.9\u00a0ft/s).")
+    assert words.sentence(finding, demo(), "si").endswith("stands in (1.50\u00a0m/s).")
