@@ -1,6 +1,7 @@
 """Start the program: data folder, demo, socket, address; a refusal is one sentence."""
 
 import errno
+import gc
 import socket
 from collections.abc import Callable
 
@@ -39,6 +40,7 @@ def serve(settings: Settings, say: Callable[[str], None]) -> None:
             raise ServingRefused(str(problem)) from problem
         if settings.demo:
             load_demo(app.state.store)
+        spare_collector()
         server = uvicorn.Server(
             uvicorn.Config(
                 app, log_level="warning", server_header=False, lifespan="on", ws="none"
@@ -52,6 +54,17 @@ def serve(settings: Settings, say: Callable[[str], None]) -> None:
         pass
     finally:
         listening.close()
+
+
+def spare_collector() -> None:
+    """Let the collector of garbage pass over what was loaded at the start, and look less often.
+
+    An edit makes some ten thousand short-lived objects, freed by count; looking through the
+    whole program for cycles every few hundred of them took a tenth of the edit.
+    """
+    gc.collect()
+    gc.freeze()
+    gc.set_threshold(20_000, 20, 20)
 
 
 def _listen(settings: Settings) -> socket.socket:

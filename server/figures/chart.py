@@ -7,6 +7,7 @@ so that the same points stand in both.
 
 from dataclasses import dataclass, field
 from enum import StrEnum
+from math import isfinite
 
 import numpy as np
 from numpy.typing import NDArray
@@ -166,9 +167,11 @@ def shown_points(values: Floats, axis: Axis, view: View) -> tuple[float | None, 
         Finer than anything printed, coarser than binary noise: the figure stays small.
     """
     unit = display_unit(axis.dimension, view)
-    return tuple(
-        round(unit.from_si(float(v)), 4) if np.isfinite(v) else None for v in np.asarray(values)
-    )
+    numbers = np.asarray(values, dtype=np.float64).tolist()
+    if unit.offset:
+        return tuple(round(unit.from_si(v), 4) if isfinite(v) else None for v in numbers)
+    ratio = unit.ratio
+    return tuple(round(v / ratio, 4) if isfinite(v) else None for v in numbers)
 
 
 def axis_title(axis: Axis, view: View) -> str:

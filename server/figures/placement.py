@@ -196,7 +196,8 @@ def _crowding(
     aside = np.maximum(np.maximum(left - x, x - right), 0.0)
     above = np.maximum(np.maximum(top - y, y - bottom), 0.0)
     away = np.hypot(aside, above)
-    cost: NDArray[np.float64] = 1.5 * np.sum(away == 0, axis=1, dtype=np.float64)
+    on_line = np.count_nonzero(away == 0, axis=1)
+    cost = np.asarray(1.5 * on_line, dtype=np.float64)
     if own >= 0:
         cost += np.where(line[np.argmin(away, axis=1)] != own, 12.0, 0.0)
     return cost

@@ -105,11 +105,10 @@ def _step_back(request: Request, station_id: str, step: str) -> Response:
     except Conflict as conflict:
         sheet = view_of(request, before, place.sheet, place.query, None)
         return show(sheet.with_refusal(conflict.path, _conflict_of(before, conflict)), 409)
-    except BadStation as bad:
+    except BadStation:
+        # nothing of one's own is left, or the station is archived, which its sheets say
         sheet = view_of(request, before, place.sheet, place.query, None)
-        return show(
-            sheet.with_refusal("", Refusal("", " ".join(f.sentence for f in bad.faults))), 409
-        )
+        return RedirectResponse(sheet.href(said=None if before.archived else step), 303)
     sheet = view_of(request, loaded, place.sheet, place.query, None)
     changed = paths.diff(before.station, loaded.station)
     if changed and fields.find(changed[0].path) is not None:

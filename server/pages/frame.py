@@ -9,7 +9,9 @@ from fastapi.responses import HTMLResponse
 
 from server.pages.items import items_of
 from server.pages.rendering import render
+from server.pages.rights import actor_of
 from server.pages.sheet import OPEN, SHEET_NUMBERS, SHEETS, SheetView
+from server.pages.store_of import store_of
 from server.pages.strip_view import (
     FindingLine,
     ScenarioTab,
@@ -71,6 +73,8 @@ class Frame:
     sets: tuple[Choice, ...]
     next: Next | None
     edited: str
+    can_undo: bool
+    can_redo: bool
     merged: str
     under_title: str
     sources_sheet: Sheet
@@ -112,6 +116,7 @@ def page_of(sheet: Sheet) -> SheetPage | None:
 def frame_of(sheet: SheetView, merged: str = "") -> Frame:
     """Return what stands round an opened sheet."""
     has_strip = sheet.sheet not in WITHOUT_STRIP
+    own = store_of(sheet.request).own_steps(sheet.station_id, actor_of(sheet.request).name)
     return Frame(
         spine=spine(sheet),
         strip=strip_view(sheet) if has_strip else None,
@@ -125,6 +130,8 @@ def frame_of(sheet: SheetView, merged: str = "") -> Frame:
         ),
         next=next_of(sheet),
         edited=when(sheet.loaded.edited_at),
+        can_undo=bool(own.undoable),
+        can_redo=bool(own.redoable),
         merged=merged,
         under_title=", ".join(
             part

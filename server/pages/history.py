@@ -291,10 +291,13 @@ def compare(request: Request, station_id: str, left: int, right: int) -> HTMLRes
 @router.post("/stations/{station_id}/restore", name="restore", dependencies=[needs("edit")])
 def restore(request: Request, station_id: str, number: Annotated[int, Form()]) -> Response:
     """Make an old revision the newest; what stood between stays in the history."""
+    store = store_of(request)
     try:
-        store_of(request).restore(station_id, number, actor_of(request).name)
+        before = store.load(station_id).newest
+        restored = store.restore(station_id, number, actor_of(request).name)
     except KeyError as missing:
         raise HTTPException(404, "There is no such station or revision.") from missing
     except BadStation as bad:
         raise HTTPException(409, bad.faults[0].sentence) from bad
-    return RedirectResponse(open_sheet(request, station_id, "history").href(), 303)
+    said = "same" if restored.number == before else None
+    return RedirectResponse(open_sheet(request, station_id, "history").href(said=said), 303)

@@ -107,7 +107,8 @@ def asked(posted: Posted, station: Station, view: View) -> Asked:
     match posted.op:
         case "insert":
             new = new_item(station, posted.path)
-            return Asked((Edit("insert", posted.path, new),), _focus(posted.path, new))
+            edits = (Edit("insert", posted.path, new), *_proposing(station, posted.path, new))
+            return Asked(edits, _focus(posted.path, new))
         case "answer":
             answer = {
                 **new_item(station, posted.path),
@@ -168,6 +169,14 @@ def _expect_place(posted: Posted, station: Station) -> None:
     if not kinds.get(posted.op, False):
         sentence = f"{paths.subject(station, posted.path)} cannot be changed in this way."
         raise _refused(posted.path, posted.op, "another operation", sentence)
+
+
+def _proposing(station: Station, list_path: str, new: JsonValue) -> tuple[Edit, ...]:
+    """Return the edit that proposes the first set made: with one set there is no choice."""
+    first = list_path == "/sets" and not station.sets and station.proposed_set is None
+    if not first or not isinstance(new, dict):
+        return ()
+    return (Edit("set", "/proposed_set", new["id"]),)
 
 
 def _default_edit(path: str, view: View) -> Edit:

@@ -22,6 +22,12 @@ from server.units import View
 SHEET_TITLES = fields.SHEET_TITLES
 SHEETS: tuple[tuple[Sheet, str], ...] = tuple(SHEET_TITLES.items())
 SHEET_NUMBERS: dict[Sheet, int] = {sheet: number for number, (sheet, _) in enumerate(SHEETS, 1)}
+# what a sheet says once after it was led to, by the word in its address
+SAID = {
+    "undo": "There is nothing of yours to undo.",
+    "redo": "There is nothing of yours to make again.",
+    "same": "That revision holds the same as the newest one, so nothing was changed.",
+}
 OPEN = (Severity.STOP, Severity.FAIL, Severity.CAUTION)
 
 
@@ -62,6 +68,11 @@ class SheetView:
     def read_only(self) -> bool:
         """Whether the sheet shows an old revision, or an archived station."""
         return self.at is not None or self.loaded.archived
+
+    @property
+    def said(self) -> str:
+        """What the address asks to be said on top of the sheet, empty for nothing."""
+        return SAID.get(self.request.query_params.get("said", ""), "")
 
     @property
     def title(self) -> str:

@@ -16,7 +16,7 @@ from server.store import revisions
 from server.store.documents import Documents
 from server.store.engine import FILE_NAME, Database, make_engine
 from server.store.places import make_usable
-from server.store.revisions import Kind, RevisionRow
+from server.store.revisions import Kind, OwnSteps, RevisionRow
 from server.store.schema_steps import bring_up
 from server.store.station_ids import new_station_id
 from server.store.tables import revision, station
@@ -143,6 +143,11 @@ class Store:
         with self._database.reading() as connection:
             _known(connection, station_id)
             return revisions.every(connection, station_id)
+
+    def own_steps(self, station_id: str, author: str) -> OwnSteps:
+        """Return which revisions an author could undo and redo; none of an unknown station."""
+        with self._database.reading() as connection:
+            return revisions.own_steps(connection, station_id, author)
 
     def save(self, station_id: str, edits: Sequence[Edit], base: int, author: str) -> Loaded:
         """Apply edits that were made on revision `base` to the newest document.

@@ -15,6 +15,7 @@ from fastapi.testclient import TestClient
 
 from server.app import create_app
 from server.demo import load_demo
+from server.serving import spare_collector
 from server.settings import Settings
 from tests.bench.registry import Measurement, bench
 
@@ -64,7 +65,9 @@ def editor() -> Iterator[Editor]:
         app = create_app(Settings(Path(folder)))
         headers = {"Sec-Fetch-Site": "same-origin"}
         with TestClient(app, base_url="http://127.0.0.1", headers=headers) as client:
-            yield Editor(client, load_demo(app.state.store)[0])
+            demo = load_demo(app.state.store)[0]
+            spare_collector()  # as a served program does
+            yield Editor(client, demo)
 
 
 @bench("web: saved edit")

@@ -237,11 +237,45 @@ def test_undo_and_redo_lead_to_what_they_changed(client, send, demo_id, now):
     assert now().site.altitude.value == 100
 
 
-def test_nothing_to_undo_is_said_on_the_sheet(client, demo_id):
-    answer = client.post(f"/stations/{demo_id}/undo")
+@pytest.mark.parametrize(("step", "told"), [("undo", "to undo"), ("redo", "to make again")])
+def test_nothing_to_undo_is_said_on_the_sheet_it_came_from(client, demo_id, step, told):
+    address = f"http://127.0.0.1/stations/{demo_id}/demand"
+    answer = client.post(f"/stations/{demo_id}/{step}", headers={"Referer": address})
 
-    assert answer.status_code == 409
-    assert "nothing of yours to undo" in answer.text
+    assert answer.status_code == 303
+    assert f"/stations/{demo_id}/demand?" in answer.headers["location"]
+    page = ReadPage(client.get(answer.headers["location"]).text)
+    assert f"There is nothing of yours {told}." in page.words
+    assert not [link for link in page.links if "said=" in link]
+
+
+def test_undo_and_redo_are_offered_only_when_there_is_something_to_take(
+    client, demo_id, opened, send
+):
+    def offered(page):
+        steps = {form.action.rpartition("/")[2] for form in page.forms}
+        return steps & {"undo", "redo"}
+
+    assert offered(opened("supply")) == set()
+    assert offered(ReadPage(send("/site/altitude", "100", base="1").text)) == {"undo"}
+    client.post(f"/stations/{demo_id}/undo")
+    assert offered(opened("supply")) == {"redo"}
+
+
+def test_the_first_set_made_is_proposed_in_the_same_edit(client, send, now, demo_id):
+    empty = client.post("/stations", data={"title": "New"}).headers["location"].split("/")[2]
+    send("/sets", base="1", op="insert", sheet="sets", station=empty)
+    first = now(empty).sets[0].id
+    assert now(empty).proposed_set == first
+    assert (
+        "proposed set" in ReadPage(client.get(f"/stations/{empty}/history").text).words.lower()
+    )
+
+    send("/sets", base="2", op="insert", sheet="sets", station=empty)
+    assert now(empty).proposed_set == first
+    for _ in range(2):
+        assert client.post(f"/stations/{empty}/undo").status_code == 303
+    assert (now(empty).sets, now(empty).proposed_set) == ((), None)
 
 
 def test_an_edit_of_no_station_is_404(client):

@@ -51,6 +51,14 @@ def test_an_old_revision_is_restored_as_a_new_one(client, demo_id, send, now):
     assert "Revision 3" in client.get(f"/stations/{demo_id}/history").text
 
 
+def test_restoring_what_stands_already_says_so(client, demo_id, send):
+    answer = client.post(f"/stations/{demo_id}/restore", data={"number": "1"})
+    page = ReadPage(client.get(answer.headers["location"]).text)
+
+    assert "holds the same as the newest one, so nothing was changed" in page.words
+    assert "Revision 2" not in page.words
+
+
 @pytest.mark.parametrize("number", ["99", "x", ""])
 def test_restoring_what_is_not_there_says_so(client, demo_id, number):
     answer = client.post(f"/stations/{demo_id}/restore", data={"number": number})
