@@ -245,9 +245,7 @@ class _Reader:
     def number(self, typed: str) -> Fraction:
         mantissa, power = (*re.split("[eE]", typed), "0")[:2]
         if abs(int(power)) > 330:
-            raise self.refuse(
-                f"{typed} is outside what can be entered; write {self.allowed}."
-            )
+            raise self.refuse(f"{typed} is outside what can be entered; write {self.allowed}.")
         if "," in mantissa and not _COMMAS.fullmatch(mantissa):
             if re.fullmatch(r"[0-9]{1,3},[0-9]{3}", mantissa):
                 whole, point = mantissa.replace(",", ""), mantissa.replace(",", ".")

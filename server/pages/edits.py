@@ -17,6 +17,7 @@ from server.pages.forms import GOVERNING, field_view, pattern_of, with_rule_titl
 from server.pages.frame import SheetPage, frame_of, page_of, show
 from server.pages.history import shown_value
 from server.pages.posted import Asked, Posted, asked, posted_form
+from server.pages.renamed import renamed
 from server.pages.rendering import render
 from server.pages.rights import actor_of, needs
 from server.pages.sheet import Refusal, SheetView, view_of
@@ -250,6 +251,7 @@ def _stored(
         answer.grid(None)
     elif posted.look != "source":
         answer.fields = (posted.path,)
+        answer.renamed = renamed(posted.path, base.station, sheet.station)
     if sheet.loaded.number > base.number + 1:
         answer.merged = "Merged with what was changed elsewhere."
     return answer.response(200)
@@ -272,6 +274,7 @@ class _Answer:
         self.sheet, self.posted = sheet, posted
         self.fields: tuple[str, ...] = ()
         self.frame = self.content = False
+        self.renamed: tuple[str, str] | None = None
         self.message = self.merged = self.saved = self.focus = ""
         self.events: dict[str, object] = {}
 
@@ -298,6 +301,7 @@ class _Answer:
             "results": page.results if page and self.frame and not self.content else None,
             "fields": tuple(field_view(sheet, path, posted.shape) for path in self.fields),
             "said": said,
+            "renamed": self.renamed,
             "number": sheet.loaded.number if self.saved else None,
             "message": "" if said else self.message,
             "saved": self.saved,

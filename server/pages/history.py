@@ -301,3 +301,10 @@ def restore(request: Request, station_id: str, number: Annotated[int, Form()]) -
         raise HTTPException(409, bad.faults[0].sentence) from bad
     said = "same" if restored.number == before else None
     return RedirectResponse(open_sheet(request, station_id, "history").href(said=said), 303)
+
+
+@router.get("/stations/{station_id}/undo", name="undo_opened", dependencies=[needs("read")])
+@router.get("/stations/{station_id}/redo", name="redo_opened", dependencies=[needs("read")])
+def step_opened(request: Request, station_id: str) -> Response:
+    """Lead from the address of a step, opened again, to what has been done."""
+    return RedirectResponse(open_sheet(request, station_id, "history").href(), 303)

@@ -63,6 +63,7 @@ class ItemTable:
     caption: str
     note: str
     columns: tuple[Column, ...]
+    pasted: tuple[Column, ...]
     rows: tuple[Row, ...]
     adding: Adding
     empty: str
@@ -70,6 +71,7 @@ class ItemTable:
     action: str
     base: int
     refusal: Refusal | None
+    owner: Steps | None
 
 
 def items_of(sheet: SheetView, list_path: str) -> tuple[str, ...]:
@@ -121,8 +123,14 @@ def item_table(
     *,
     note: str = "",
     empty: str = "",
+    pasted: Sequence[str] = (),
+    owner: Steps | None = None,
 ) -> ItemTable:
-    """Return the list at `list_path` as a table with a column for each of `names`."""
+    """Return the list at `list_path` as a table with a column for each of `names`.
+
+    `pasted` names fields that rows from a spreadsheet may bring behind those shown; `owner` is
+    the item whose name ends the caption.
+    """
     columns = tuple(_column(sheet, f"{list_path}/*/{name}", name) for name in names)
     rows = tuple(
         Row(
@@ -137,6 +145,8 @@ def item_table(
         caption=caption,
         note=note,
         columns=columns,
+        pasted=columns
+        + tuple(_column(sheet, f"{list_path}/*/{name}", name) for name in pasted),
         rows=rows,
         adding=adding(sheet, list_path),
         empty=empty or f"No {fields.part_for(list_path).item.lower()} yet.",
@@ -144,6 +154,7 @@ def item_table(
         action=sheet.action("edits"),
         base=sheet.loaded.number,
         refusal=sheet.refused.get(list_path),
+        owner=owner,
     )
 
 

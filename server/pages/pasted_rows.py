@@ -15,6 +15,12 @@ from server.station.typed_text import value_from_text
 from server.units import UNITS, View
 
 LONGEST_PASTE = 500
+# a wall that is pasted by one law alone is read by that law
+BY_LAW = {
+    "roughness/new": "colebrook", "roughness/aged": "colebrook",
+    "roughness/coefficient_new": "hazen_williams",
+    "roughness/coefficient_aged": "hazen_williams",
+}  # fmt: skip
 
 
 def typed_value(
@@ -92,6 +98,13 @@ def pasted_rows(
                     )
                     for fault in bad.faults
                 )
+        laws = {
+            BY_LAW[name]
+            for name, cell in zip(names, cells, strict=False)
+            if name in BY_LAW and cell.strip()
+        }
+        if len(laws) == 1:
+            edits.append(Edit("set", f"{items[at + number]}/roughness/law", laws.pop()))
     if faults:
         raise BadStation(faults)
     return tuple(edits)
@@ -133,17 +146,18 @@ def _head_read(
         For a head or a unit that cannot be read: neither is ever guessed.
     """
     titles = {_title(f"{list_path}/*/{name}").lower(): name for name in names}
+    every = {title: set(title.replace(",", " ").split()) for title in titles}
     found: list[str] = []
     units: dict[str, str] = {}
     for number, cell in enumerate(cells):
         said, _, unit = cell.strip().lower().partition("(")
         if not any(c.strip() for c in cells[number:]):
             break
-        words = said.split()
+        words = set(said.replace(",", " ").split())
         like = (
             [said.strip()]
             if said.strip() in titles
-            else [title for title in titles if words and set(words) <= set(title.split())]
+            else [title for title in titles if words and words <= every[title]]
         )
         if len(like) != 1 or titles[like[0]] in found:
             known = ", ".join(titles)

@@ -41,6 +41,7 @@ def reaches_view(sheet: SheetView, list_path: str, caption: str) -> ReachesView:
             COLUMNS,
             caption,
             note="Reaches in series, in the direction of flow.",
+            pasted=COLEBROOK + HAZEN_WILLIAMS,
         ),
         tuple(_card(sheet, item) for item in items_of(sheet, list_path)),
     )
@@ -51,16 +52,17 @@ def _card(sheet: SheetView, item: str) -> ReachCard:
     first, second = COLEBROOK, HAZEN_WILLIAMS
     if law == "hazen_williams":
         first, second = second, first
-    title = paths.item_title(sheet.station, item)
+    steps = steps_of(sheet, item)
     return ReachCard(
-        steps_of(sheet, item),
+        steps,
         field_views(sheet, item, LAW + first),
         field_views(sheet, item, second),
         item_table(
             sheet,
             f"{item}/fittings",
             FITTING,
-            f"Fittings of {title}",
+            "Fittings",
+            owner=steps,
             empty="No fittings listed singly; the sum of K above holds them all.",
         ),
     )

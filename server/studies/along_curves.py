@@ -61,9 +61,7 @@ def along_control(
     held = ("zone_point_pressure", "discharge_pressure", "flow_compensated")
     if lowered.control.kind in held:
         return _along_set_point(lowered, result, drawn, flow, shift, pipes == "aged")
-    return tuple(
-        _at_full_speed(lowered, result, k, shift, pipes == "aged") for k in drawn
-    )
+    return tuple(_at_full_speed(lowered, result, k, shift, pipes == "aged") for k in drawn)
 
 
 def _along_set_point(

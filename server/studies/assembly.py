@@ -184,9 +184,9 @@ def assembled(
         discharge_without_water=(gauge < lowest)[rows],
         discharge_grade=solved.discharge_grade[rows],
         discharge_pressure=np.where(gauge < lowest, np.nan, gauge)[rows],
-        zone_entry_grade=np.where(
-            np.isfinite(states.station_head), zone.entry_grade, np.nan
-        )[rows],
+        zone_entry_grade=np.where(np.isfinite(states.station_head), zone.entry_grade, np.nan)[
+            rows
+        ],
         tank_level=zone.tank_level[rows],
         tank_flow=(zone.tank_flow * np.where(np.isfinite(states.flow), 1.0, np.nan))[rows],
         tank_draws_down=zone.tank_draws_down[rows],

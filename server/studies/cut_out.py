@@ -29,9 +29,7 @@ def cut_out(
     chosen = running.scenario_chosen[::STATES]
     stages = stage_combinations(of, low, masks) if of.floats else [()] * chosen.size
     pairs = [
-        (c, k)
-        for c, own in enumerate(chosen)
-        for k in sorted({int(own), *stages[c]} - {-1})
+        (c, k) for c, own in enumerate(chosen) for k in sorted({int(own), *stages[c]} - {-1})
     ]
     rows = np.array(pairs, dtype=np.intp).reshape(-1, 2)
     c, k = rows[:, 0], rows[:, 1]

@@ -162,9 +162,7 @@ def _at_speeds(legs: list[LegCurve], speeds: Floats) -> tuple[Floats, Floats]:
 def _running_set(lowered: LoweredSet, result: DutyResult, combination: int) -> RunningSet:
     units = _units(lowered, result, combination)
     slots = [int(n) for n in np.flatnonzero(result.combinations[combination])]
-    flow, head = _at_speeds(
-        [lowered.units[u].leg for u in units], full_speeds(lowered)[slots]
-    )
+    flow, head = _at_speeds([lowered.units[u].leg for u in units], full_speeds(lowered)[slots])
     small = all(lowered.slots[n].facts.role == "jockey" for n in slots)
     outline = _preferred(lowered, slots) if len(set(units)) == 1 else (np.empty(0), np.empty(0))
     return RunningSet(combination, len(units), small, flow, head, *outline)

@@ -115,9 +115,7 @@ def choose_filling(
     return chosen, classes
 
 
-def stage_rows(
-    stages: Sequence[Sequence[int]], chosen: Indices
-) -> tuple[Indices, Indices]:
+def stage_rows(stages: Sequence[Sequence[int]], chosen: Indices) -> tuple[Indices, Indices]:
     """Return the further cases: rows of the cases and the combination that runs in each.
 
     Every stage of every case but the one that is chosen there.

@@ -55,9 +55,7 @@ class Running:
         """Return the head asked; at a tank that of the flow, or at rest where nothing runs."""
         if required.ndim == 1:
             return required[self.rows]
-        return np.where(
-            self.chosen >= 0, self.at_chosen(required), zone.static_head[self.rows]
-        )
+        return np.where(self.chosen >= 0, self.at_chosen(required), zone.static_head[self.rows])
 
 
 def running_of(
@@ -103,9 +101,7 @@ def _spare(of: LoweredSet, solved: "Solved") -> Floats:
     return np.asarray(np.fmin.reduce(over, axis=2, initial=np.inf))
 
 
-def _filling(
-    of: LoweredSet, cases: Cases, masks: Sequence[Mask], solved: "Solved"
-) -> Running:
+def _filling(of: LoweredSet, cases: Cases, masks: Sequence[Mask], solved: "Solved") -> Running:
     states = solved.states
     stages = stage_combinations(of, cases, masks)
     known = np.isfinite(solved.zone.static_head) & solved.some_supply

@@ -57,9 +57,7 @@ class RawStates:
     valve_loss: Floats | None = None  # [m]
 
 
-def states_of(
-    of: LoweredSet, combinations: Flags, raw: RawStates, known: Flags
-) -> SetStates:
+def states_of(of: LoweredSet, combinations: Flags, raw: RawStates, known: Flags) -> SetStates:
     """Return the states with every reading of every slot.
 
     Parameters
@@ -163,9 +161,7 @@ def _readings(
             continue
         # running slots of one kind carry the same flow: the first of them is read for all
         first = slots[np.argmax(combinations[np.ix_(columns, slots)], axis=1)]
-        one = unit_readings(
-            of, unit, leg_flow[:, columns, first], speed[:, columns, first]
-        )
+        one = unit_readings(of, unit, leg_flow[:, columns, first], speed[:, columns, first])
         running = combinations[np.ix_(columns, slots)]
         for name, values in one.items():
             slot[name][:, columns[:, None], slots] = np.where(

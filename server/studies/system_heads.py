@@ -85,9 +85,7 @@ def reach_velocities(of: LoweredSet, flow: Floats, way: ArrayLike) -> Floats:
     return velocity
 
 
-def _asked(
-    of: LoweredSet, draw: Draw, main: Floats, zone: Floats, suction: Floats
-) -> Floats:
+def _asked(of: LoweredSet, draw: Draw, main: Floats, zone: Floats, suction: Floats) -> Floats:
     """Return the grade at the discharge manifold that the control, else the zone, asks for.
 
     Behind a reducing valve where there is one. Fixed speed holds nothing: there it is the

@@ -180,6 +180,7 @@ def _opened(
     energy: Floats, draws_down: Flags,
 ) -> RawStates:  # fmt: skip
     """Return the closed states with those in which the tank is open put in their place."""
+
     def put(whole: Floats, part: Floats, where: Flags = opens) -> Floats:
         out = np.array(whole)
         extra = (...,) + (None,) * (part.ndim - 2)

@@ -18,8 +18,10 @@ for (const name of [
 ]) document.addEventListener(`htmx:${name}`, () => console.error(`htmx:${name}`));
 document.addEventListener("htmx:afterRequest", (event) => {
   const answer = new DOMParser().parseFromString(event.detail.xhr.responseText, "text/html");
-  for (const part of answer.querySelectorAll("[hx-swap-oob]"))
-    if (!document.getElementById(part.id)) console.error(`htmx:oobErrorNoTarget ${part.id}`);
+  for (const part of answer.querySelectorAll("[hx-swap-oob]")) {
+    const place = part.getAttribute("hx-swap-oob").split(":")[1] || `[id="${part.id}"]`;
+    if (!document.querySelector(place)) console.error(`htmx:oobErrorNoTarget ${place}`);
+  }
 });
 """
 

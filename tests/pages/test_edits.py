@@ -249,6 +249,14 @@ def test_nothing_to_undo_is_said_on_the_sheet_it_came_from(client, demo_id, step
     assert not [link for link in page.links if "said=" in link]
 
 
+@pytest.mark.parametrize("step", ["undo", "redo"])
+def test_the_address_of_a_step_opened_again_leads_to_the_history(client, demo_id, step):
+    answer = client.get(f"/stations/{demo_id}/{step}")
+
+    assert answer.status_code == 303
+    assert answer.headers["location"].endswith(f"/stations/{demo_id}/history")
+
+
 def test_undo_and_redo_are_offered_only_when_there_is_something_to_take(
     client, demo_id, opened, send
 ):

@@ -240,3 +240,49 @@ def test_rows_changed_by_two_people_offer_both_and_theirs_can_be_kept(send, now)
 
     send(TABLE, base="1", keep="mine", grid="0\t90\t\t\t\n10\t60\t\t\t", **form)
     assert now().pumps[0].curves[0].table.rows == ((0, 90), (10, 60))
+
+
+@pytest.mark.parametrize(
+    ("headings", "law"),
+    [("C new\tC aged", "hazen_williams"), ("Roughness, new (mm)\tRoughness aged", "colebrook")],
+)
+def test_pasted_reaches_bring_their_wall_and_its_law(client, send, now, headings, law):
+    new = client.post("/stations", data={"title": "New"}).headers["location"].split("/")[2]
+    walls = ["140\t120", "0.1\t0.5"][law == "colebrook"]
+    rows = (
+        f"Reach\tLength\tBore\t{headings}\nTrunk\t600\t250\t{walls}\nSpur\t90\t200\t{walls}\n"
+    )
+    names = "title length bore barrels roughness/new roughness/aged roughness/coefficient_new"
+    answer = send(
+        "/discharge_main/reaches", base="1", op="paste", sheet="main-and-zone", station=new,
+        columns=f"{names} roughness/coefficient_aged", rows=rows,
+    )  # fmt: skip
+    assert answer.status_code == 200
+    walls_read = [reach.roughness for reach in now(new).discharge_main.reaches]
+
+    assert [wall.law for wall in walls_read] == [law, law]
+    if law == "hazen_williams":
+        assert [wall.coefficient_aged for wall in walls_read] == [120, 120]
+    else:
+        assert [(wall.aged.value, wall.aged.unit) for wall in walls_read] == [(0.5, "mm")] * 2
+
+
+def test_the_box_for_pasted_reaches_names_the_columns_of_the_wall(opened):
+    page = opened("main-and-zone")
+    form = next(
+        form for form in page.forms
+        if form.values.get("op") == "paste"
+        and form.values["path"] == "/discharge_main/reaches"
+    )  # fmt: skip
+
+    assert "roughness/aged" in form.values["columns"]
+    assert "C, aged" in page.words
+
+
+def test_a_new_name_of_a_reach_is_put_in_every_heading_that_tells_it(send, demo):
+    reach = f"/discharge_main/reaches/{demo.discharge_main.reaches[0].id}"
+    answer = send(f"{reach}/title", "Kiln <main>", base="1", sheet="main-and-zone")
+    place = reach[1:].replace("/", "--")
+
+    assert f"innerHTML:[data-names='{place}']\">Kiln &lt;main&gt;</span>" in answer.text
+    assert f"{place}--title--field" in ReadPage(answer.text).ids

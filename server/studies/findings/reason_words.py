@@ -41,8 +41,7 @@ REASONS: dict[str, str] = {
     "diameter_outside_tested": "it lies above the largest tested diameter",
     "diameters_uneven": "two tested curves have the same diameter",
     "best_efficiency_unknown_between_diameters": (
-        "the best-efficiency flow of both tested curves must be known to read between "
-        "them"
+        "the best-efficiency flow of both tested curves must be known to read between them"
     ),
     "too_few_rows_to_smooth": "its rows are too few to smooth",
     "smoothed_rises": "the smoothed curve would rise where the rows fall",

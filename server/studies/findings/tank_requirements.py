@@ -39,9 +39,7 @@ def tank_rows(
                         lambda r: True),
         ]  # fmt: skip
     if any(fire.carried_by == "storage" for fire in station.fires):
-        rows.append(
-            table.failing("fire_storage", ("fire_storage_short",), "fire_storage")
-        )
+        rows.append(table.failing("fire_storage", ("fire_storage_short",), "fire_storage"))
     return tuple(rows)
 
 

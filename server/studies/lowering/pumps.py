@@ -75,9 +75,7 @@ def units_and_slots(
     return tuple(units), tuple(slots)
 
 
-def _unit(
-    pump: Pump, lowered: PumpCurve, leg: Leg, fixed: bool, needs: Needs
-) -> Unit | None:
+def _unit(pump: Pump, lowered: PumpCurve, leg: Leg, fixed: bool, needs: Needs) -> Unit | None:
     """Return a pump in its leg, None when its curve cannot be had."""
     suction, discharge, suction_bore, discharge_bore, cracking, open_at, assumed = branches(
         leg, needs
@@ -140,9 +138,7 @@ def _facts(
         fixed=unit.fixed,
         diameter=curve.diameter,
         trim_ratio=curve.trim_ratio,
-        smoothing_residual=(
-            None if of.smoothing is None else of.smoothing.largest_residual
-        ),
+        smoothing_residual=(None if of.smoothing is None else of.smoothing.largest_residual),
         best_efficiency_flow=None if of.best is None else of.best.flow,
         best_efficiency_flow_by_rows=None if of.fitted_best is None else of.fitted_best.flow,
         best_efficiency=None if of.best is None else of.best.efficiency,
@@ -155,9 +151,7 @@ def _facts(
         minimum_flow=limits.minimum_flow if minimum is None else minimum,
         minimum_flow_assumed=minimum is None,
         motor_power=si_or_none(pump.motor_power),
-        largest_shaft_power=_largest_power(
-            of, 1.0 if unit.fixed else highest_speed, density
-        ),
+        largest_shaft_power=_largest_power(of, 1.0 if unit.fixed else highest_speed, density),
         motor_efficiency=si_or_none(pump.motor_efficiency),
         drive_efficiency=None if math.isnan(unit.drive_efficiency) else unit.drive_efficiency,
         specific_speed=specific_speed,

@@ -45,9 +45,7 @@ def _asked(facts: Sequence[PointFacts], limits: StudyLimits) -> dict[str, Floats
     Without a fire a hydrant asks for none unless one is typed.
     """
 
-    def column(
-        typed: Sequence[float | None], default: Sequence[float]
-    ) -> NDArray[np.float64]:
+    def column(typed: Sequence[float | None], default: Sequence[float]) -> NDArray[np.float64]:
         pairs = zip(typed, default, strict=True)
         return np.array([d if t is None else t for t, d in pairs], dtype=np.float64)
 
