@@ -81,8 +81,9 @@ def supply_chart(curve: SupplyCurve, station: Station, view: View) -> Chart:
             )
         )
     shown = curve.pressure[np.isfinite(curve.pressure)]
-    top = max([float(shown.max()), *(t.static_pressure for t in curve.tests), curve.limit])
-    low = min(0.0, float(shown.min()))
+    tested = [t.static_pressure for t in curve.tests]
+    top = max([float(shown.max(initial=0.0)), *tested, curve.limit])
+    low = float(shown.min(initial=0.0))
     return Chart(
         key="supply",
         title=f"What {station.supply.title or 'the supply'} gives",

@@ -18,6 +18,9 @@ FLOW_TOLERANCE = 1e-9  # mass residual that counts as solved [m3/s]
 _STEPS = 100
 _NEWTON_ONLY = 12  # steps after which every other one is a bisection
 _JUMP = 1e-3  # energy residual that is no rounding but a jump of the largest flow [m]
+_POLISHES = 6
+_POLISH_STEP = 1e-4  # of the flow, for the slope of the system while polishing [-]
+_LEAST_FLOW = 1e-12  # that such a step has at least [m3/s]
 _ROUNDING = 1e-14  # share of the head below which a step changes nothing
 
 
@@ -257,7 +260,7 @@ def _polish(
     There a leg's curve is level, so that rounding in the head is a large step in flow. One or
     two Newton steps in the leg flows themselves, all legs and the system together, settle it.
     """
-    for _ in range(3):
+    for _ in range(_POLISHES):
         head = system.head(flow.sum(axis=1), case=every)
         energy, mass = residuals(flow, leg_state, head, legs, speed)
         rough = (energy > 1e-3 * HEAD_TOLERANCE) | (mass > 0.1 * FLOW_TOLERANCE)
@@ -273,7 +276,10 @@ def _polish(
             miss[:, n] = np.where(moving[:, n], head[rough] - s[:, n] ** 2 * leg.head(x), 0.0)
             steep = np.minimum(s[:, n] * leg.curve.slope(x), -1e-9)
             slope[:, n] = np.where(moving[:, n], steep, -np.inf)
-        system_slope = system.slope(q.sum(axis=1), case=case)
+        # read off the system itself: a tabled slope may be far off at so small a flow
+        total = q.sum(axis=1)
+        step = np.maximum(_POLISH_STEP * total, _LEAST_FLOW)
+        system_slope = (system.head(total + step, case=case) - head[rough]) / step
         change = (miss / slope).sum(axis=1) / (1.0 - system_slope * (1.0 / slope).sum(axis=1))
         moved = q + (miss + (system_slope * change)[:, None]) / slope
         flow[rough] = np.where(moving, np.maximum(moved, 0.0), q)

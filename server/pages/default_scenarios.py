@@ -1,9 +1,10 @@
-"""The scenarios a closed zone is usually judged in, made from the horizons and fires entered.
+"""The scenarios a station is usually judged in, made from the horizons and fires entered.
 
 Minimum night at low and at high supply, new pipes; average day at normal supply; maximum day
 and peak hour at low supply with the largest unit out; maximum day and fire the same, a scenario
-a fire; shut-off at high supply. Else the opening year has new pipes, later years aged ones,
-unless a horizon says otherwise.
+a fire; shut-off at high supply. Towards a tank that floats on the zone: the easiest fill (high
+supply, tank low, new pipes) and the four demands, the maximum day into the full tank. Else the
+opening year has new pipes, later years aged ones, unless a horizon says otherwise.
 """
 
 from pydantic import JsonValue
@@ -14,6 +15,14 @@ from server.station.fresh import new_item
 from server.station.station import Station
 
 LIST = "/scenarios"
+# title, demand, supply state, level of the tank, pipes (None: as old as the horizon's)
+_FILLING = (
+    ("Easiest fill", "none", "high", "low", "new"),
+    ("Minimum night", "minimum_night", "low", "top", None),
+    ("Average day", "average_day", "normal", "normal", None),
+    ("Maximum day", "maximum_day", "low", "top", None),
+    ("Peak hour", "peak_hour", "low", "low", None),
+)
 # title, demand, supply state, unit out, pipes (None: as old as the horizon's)
 _USUAL = (
     ("Minimum night", "minimum_night", "low", "none", "new"),
@@ -52,6 +61,18 @@ def default_scenarios(station: Station) -> tuple[Edit, ...]:
             }
             for title, demand, supply, out, age in _USUAL
         ]
+        if _fills_a_tank(station):
+            wanted = [
+                {
+                    "title": f"{title}, {name}",
+                    "demand": demand,
+                    "supply": supply,
+                    "tank_state": level,
+                    "out": "none",
+                    "pipes": age or pipes,
+                }
+                for title, demand, supply, level, age in _FILLING
+            ]
         wanted += [
             {
                 "title": f"{_demand_words(fire.beside)} and fire, {name}"
@@ -63,6 +84,7 @@ def default_scenarios(station: Station) -> tuple[Edit, ...]:
                 "pipes": pipes,
             }
             for fire in station.fires
+            if fire.carried_by != "storage"
         ]
         for scenario in wanted:
             key = (horizon.id, scenario["demand"], scenario["supply"], scenario.get("fire"))
@@ -75,6 +97,11 @@ def default_scenarios(station: Station) -> tuple[Edit, ...]:
     if not edits:
         raise _refused("Every usual scenario is there already.")
     return tuple(edits)
+
+
+def _fills_a_tank(station: Station) -> bool:
+    zone = station.zone
+    return zone.kind in ("tank", "both") and zone.tank.use == "floating"
 
 
 def _demand_words(demand: str) -> str:

@@ -3,11 +3,12 @@
 from hashlib import sha256
 
 from server import __version__
+from server.hydraulics.errors import SolutionNotFound
 from server.station.station import Station
 from server.studies.assembly import Solved, assembled
 from server.studies.cases import cases_of
 from server.studies.combinations import as_flags, combinations_of
-from server.studies.duty_result import DutyResult, NotSolved
+from server.studies.duty_result import DutyResult, Missing, NotSolved
 from server.studies.limits import StudyLimits
 from server.studies.lowering import lower
 from server.studies.lowering.lowered import LoweredSet
@@ -17,6 +18,7 @@ from server.studies.shapes import Stamp
 from server.studies.zone_states import zone_states
 
 NAME, VERSION = "duty", 1
+NO_SOLUTION = "no_solution_found"
 READ = (
     "site",
     "supply",
@@ -63,7 +65,11 @@ def duty(
         document=document_hash,
         inputs=_inputs_hash(station, limits),
     )
-    return duty_of(lowered, limits, stamp)
+    try:
+        return duty_of(lowered, limits, stamp)
+    except SolutionNotFound:
+        # a solve that does not reach its tolerance states nothing, and says so
+        return NotSolved(pump_set_id, (Missing(f"/sets/{pump_set_id}/slots", NO_SOLUTION),))
 
 
 def _inputs_hash(station: Station, limits: StudyLimits) -> str:

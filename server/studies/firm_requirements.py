@@ -58,7 +58,7 @@ def _refills(of: LoweredSet, limits: StudyLimits) -> tuple[Requirement, ...]:
     assert of.tank is not None
     # drawn at the tank itself, a demand does not change what the pumps meet
     part_way = bool(np.any(of.tank.before_draw < 1.0))
-    if np.isnan(of.tank.levels[-1]):
+    if np.isnan(of.tank.levels[-1]) or not limits.tank_hours > 0:
         return ()
     return tuple(
         Requirement(

@@ -12,7 +12,7 @@ import pytest
 
 from server.hydraulics.states import State
 from server.station.station import Station
-from server.studies.duty_result import DutyResult
+from server.studies.duty_result import DutyResult, NotSolved
 from tests.studies.demo import (
     SET,
     case_index,
@@ -20,6 +20,7 @@ from tests.studies.demo import (
     document,
     put,
     quantity,
+    solve,
     solved,
     station_with,
 )
@@ -270,3 +271,18 @@ def test_the_stamp_follows_what_the_study_reads_and_nothing_else() -> None:
     warmer = solved(station_with(**{"/site/altitude": quantity(111, "m")})).stamp
     assert (plain.study, plain.study_version) == ("duty", 1)
     assert titled.inputs == plain.inputs != warmer.inputs
+
+
+def test_a_solve_that_misses_its_tolerance_states_nothing_and_says_so(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    from server.hydraulics.errors import SolutionNotFound
+    from server.studies import duty as study
+
+    def missed(*_: object) -> None:
+        raise SolutionNotFound("legs in parallel", 1, 1e-3)
+
+    monkeypatch.setattr(study, "duty_of", missed)
+    result = solve(station_with())
+    assert isinstance(result, NotSolved)
+    assert [missing.reason for missing in result.missing] == ["no_solution_found"]

@@ -17,6 +17,7 @@ REASONS: dict[str, str] = {
     "bep_outside_rows": "the stated best-efficiency flow lies outside the rows",
     "only_standby_units": "all its slots stand by, and none has duty",
     "too_many_unlike_units": "its units are so unlike that there are too many numbers running",
+    "no_solution_found": "no state was found within the tolerance, so none is stated",
     "single_barrel": "the reach has one barrel, so none can be out",
     "past_the_main": "the place lies past the end of the main",
     "draw_not_beside_fire_tank": (
