@@ -13,7 +13,7 @@ from server.studies.set_ends import at_common_speed
 from server.studies.set_states import SetStates
 from server.studies.system_heads import Draw, system_heads
 
-LOOKS, ZOOMS = 65, 3  # places looked at beside each other, and how often
+LOOKS, ZOOMS = 193, 2  # places looked at beside each other, and how often
 _BINDINGS = {
     State.TOP_SPEED: Binding.HEAD,
     State.LOW_SPEED: Binding.LOWEST_SPEED,
@@ -106,7 +106,8 @@ def _zoomed(
 ) -> tuple[Floats, Floats]:
     """Return where falling gaps pass zero, and their values at the upper ends.
 
-    By looking at many places at once, three times over: to 1e-6 of the bracket and its chord.
+    By looking at many places at once, and then between two of them: to 3e-5 of the bracket, and
+    along its chord.
     """
     share, own = np.linspace(0.0, 1.0, LOOKS), np.arange(low.size)
     at_high = np.empty(low.shape)
