@@ -204,9 +204,11 @@ def _tab(
     case = None if judged is None else case_index(judged.result, scenario)
     if judged is None or case is None:
         return ScenarioTab(scenario, title, href, current, "not solved", None)
-    flow = float(judged.result.demand[case])
-    told = shown_with_unit(flow if np.isfinite(flow) else None, Dimension.FLOW, sheet.view)
     chosen = int(judged.result.chosen[case])
+    # a tank takes what the pumps give; a closed zone takes its demand, whatever they do
+    fills = judged.result.zone_kind == "floating_tank" and chosen >= 0
+    flow = float(judged.result.flow[case, chosen] if fills else judged.result.demand[case])
+    told = shown_with_unit(flow if np.isfinite(flow) else None, Dimension.FLOW, sheet.view)
     if chosen < 0:
         return ScenarioTab(scenario, title, href, current, f"{told}, no duty", None)
     telling = f"{told}, {running_words(judged, case)}"

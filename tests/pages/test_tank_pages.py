@@ -62,3 +62,9 @@ def test_the_usual_scenarios_of_a_tank_are_made(client, tank_id):
     assert ("maximum_day", "low", "top") in told
     # the tank holds the fire: no scenario pumps it
     assert not [s for s in made if s.fire]
+
+
+def test_the_scenario_row_tells_what_the_pumps_give_a_tank(client, tank_id):
+    page = ReadPage(client.get(f"/stations/{tank_id}/summary").text)
+
+    assert "58.7\u00a0L/s, T1" in page.words or "58.7 L/s, T1" in page.words
