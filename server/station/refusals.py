@@ -31,12 +31,13 @@ _SHAPES = {
 def path_of_loc(loc: Sequence[int | str], tree: object, start: str = "") -> str:
     """Return the path of the smallest field, item or group that holds a pydantic location.
 
-    Places in lists become the ids that stand there; an item without an id keeps its place.
+    Places in lists become the ids that stand there; an item without an id keeps its place. A
+    key that cannot be a part of a path ends it: the path is then that of what holds the key.
     """
     path, holder = start, tree
     for step in loc:
         node = find(path)
-        if node is not None and node.is_field:
+        if (node is not None and node.is_field) or step == "" or "/" in str(step):
             return path
         if isinstance(step, int):
             items = holder if isinstance(holder, list) else []
@@ -105,7 +106,7 @@ def fault_of(error: ErrorDetails, tree: object, start: str = "", raw: object = N
     last = str(loc[-1]) if loc else ""
 
     if kind == "extra_forbidden":
-        inner = f"{last} is not a field of {_owner(name, holder)}"
+        inner = f"{last or 'An empty key'} is not a field of {_owner(name, holder)}"
         return Fault(
             path, sheet, last, _members(holder, loc),
             f"{inner}; take it out or correct its name.",

@@ -130,3 +130,13 @@ def _holders(value):
     elif isinstance(value, list):
         for member in value:
             yield from _holders(member)
+
+
+@pytest.mark.parametrize("key", ["/", "/a", "a/", ""])
+def test_a_key_that_cannot_be_in_a_path_is_told_where_it_stands(key):
+    tree = json.loads(canonical_bytes(Station()))
+    tree["site"] = {key: 1}
+
+    with pytest.raises(BadStation) as bad:
+        read_station(json.dumps(tree).encode())
+    assert [fault.path for fault in bad.value.faults] == ["/site"]
